@@ -1,0 +1,4 @@
+//! Exact algebra: integers, monomials, multivariate polynomials over **Z**, rational functions,
+//! polynomials in `s` over **Q**, greatest common divisors, and arithmetic modulo word-sized primes.
+//!
+//! May use: nothing of this crate. Knows no circuits, no names and no units: variables are numbers.

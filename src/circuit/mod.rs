@@ -1,0 +1,17 @@
+//! The network that a text means: nodes, elements, symbols, units, values and questions.
+//!
+//! May use: nothing of this crate. This is what both the derivation and its witnesses read, so
+//! it holds facts and no methods of solution.
+
+mod model;
+mod question;
+mod unit;
+mod value;
+
+pub use model::{
+    Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, Node, NodeId, Quantity, Symbol,
+    SymbolId, SymbolRole, Tolerance,
+};
+pub use question::{Ask, Drive, Probe, Transfer};
+pub use unit::Unit;
+pub use value::{Number, Value};

@@ -1,0 +1,3 @@
+//! The program: arguments in, results out.
+
+fn main() {}
