@@ -4,6 +4,7 @@
 //! it holds facts and no methods of solution.
 
 mod model;
+mod name;
 mod question;
 mod unit;
 mod value;
@@ -12,6 +13,7 @@ pub use model::{
     Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, Node, NodeId, Quantity, Symbol,
     SymbolId, SymbolRole, Tolerance,
 };
+pub use name::compare_names;
 pub use question::{Ask, Drive, Probe, Transfer};
 pub use unit::Unit;
 pub use value::{Number, Value};

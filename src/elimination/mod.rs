@@ -1,4 +1,351 @@
 //! Exact nodal elimination on a frontier: each element is a choice, the network determinant is a
 //! sum over pairs of trees, and all of it is held in one decision diagram.
 //!
-//! May use: [`crate::circuit`], [`crate::algebra`]. Never rounds.
+//! [`system`] makes the choices, [`order`] sorts them, [`diagram`] holds all terms, [`passes`] read
+//! what is wanted from it. [`Elimination`] is the whole, for one transfer function.
+//!
+//! May use: [`crate::circuit`], [`crate::algebra`]. Never rounds, but for the passes that say so.
+//!
+//! Sources: matrix-tree theorem (Kirchhoff 1847, Maxwell 1892), two-graph tree method (Mayeda &
+//! Seshu 1965, Chen 1976), decision diagrams (Bryant 1986, Minato 1993), frontier search (Sekine,
+//! Imai & Tani 1995; Knuth, TAOCP 4A, 7.1.4).
+
+mod choice;
+mod diagram;
+mod error;
+mod frontier;
+mod independent;
+mod nested;
+mod order;
+mod parts;
+mod passes;
+mod system;
+#[cfg(test)]
+mod tests;
+mod value;
+
+use num_bigint::BigUint;
+use num_complex::Complex;
+
+use crate::algebra::{Polynomial, Var, modular::Prime};
+use crate::circuit::{Circuit, ElementId, NodeId, Transfer};
+use diagram::{Diagram, Link};
+use passes::expand::{self, TermSet};
+use passes::{count, numbers};
+use system::System;
+
+pub use error::EliminationError;
+pub use nested::{Nested, NestedFactor, NestedSum};
+pub use value::{DividesByZero, fraction_of, symbol_of, variable_of};
+
+/// What the work may cost.
+#[derive(Clone, Copy, Debug)]
+pub struct Limits {
+    /// States of the diagram that may be met; one needs about 30 bytes.
+    pub max_states: usize,
+}
+
+impl Default for Limits {
+    fn default() -> Self {
+        Self { max_states: 20_000_000 }
+    }
+}
+
+/// Numbers of terms by powers of `s`.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct TermCounts {
+    /// Of the numerator.
+    pub numerator: Vec<BigUint>,
+    /// Of the denominator.
+    pub denominator: Vec<BigUint>,
+    /// False where terms can meet (shared symbols, numbers): then the counts are before that.
+    pub exact: bool,
+}
+
+/// A transfer function as the ratio of two roots of one diagram.
+#[derive(Clone, Debug)]
+pub struct Elimination {
+    diagram: Diagram,
+    /// All weights, alternatives numbered through the choices.
+    weights: Vec<Polynomial>,
+    /// The symbols in the weights, ascending.
+    symbols: Vec<Var>,
+    numerator: Link,
+    denominator: Link,
+    distinct: bool,
+    grounded: Vec<(NodeId, Vec<NodeId>)>,
+    independent: Vec<ElementId>,
+}
+
+impl Elimination {
+    /// Eliminates `circuit` for one transfer function.
+    ///
+    /// The answer is numerator/denominator; choices that it does not depend on (a separate part, an
+    /// element across an ideal source) are taken out.
+    ///
+    /// # Errors
+    /// Where there is no unique solution, and where the diagram would be too large. The size is
+    /// predicted from the order before anything is built.
+    ///
+    /// # Cost
+    /// Grows with the exponential of the longest frontier, linearly with the number of elements.
+    pub fn new(
+        circuit: &Circuit,
+        transfer: &Transfer,
+        limits: &Limits,
+    ) -> Result<Self, EliminationError> {
+        let system = system::build(circuit, transfer)?;
+        let built = build_diagram(&system, limits)?;
+        let (numerator, denominator) =
+            (built.roots[system.numerator], built.roots[system.denominator]);
+        if denominator.is_dead() {
+            return Err(match (numerator.is_dead(), transfer.drive) {
+                (false, crate::circuit::Drive::Port(..)) => EliminationError::Infinite,
+                _ => EliminationError::Singular,
+            });
+        }
+        if numerator.is_dead() {
+            // The denominator cancels; only that it is not 0 counts.
+            return Ok(Self::zero(system));
+        }
+        let fixed = independent::find(&system, &built);
+        if fixed.is_empty() {
+            return Ok(Self::of(system, built, Vec::new()));
+        }
+        let (system, taken_out) = independent::take_out(system, &fixed);
+        let built = build_diagram(&system, limits)?;
+        Ok(Self::of(system, built, taken_out))
+    }
+
+    fn zero(system: System) -> Self {
+        Self {
+            diagram: Diagram::one(),
+            weights: Vec::new(),
+            symbols: Vec::new(),
+            numerator: Link::DEAD,
+            denominator: Link::ONE,
+            distinct: true,
+            grounded: system.grounded,
+            independent: Vec::new(),
+        }
+    }
+
+    fn of(system: System, diagram: Diagram, independent: Vec<ElementId>) -> Self {
+        let distinct = terms_never_meet(&system);
+        let weights: Vec<Polynomial> = system
+            .choices
+            .iter()
+            .flat_map(|choice| choice.alternatives.iter().map(|a| a.weight.clone()))
+            .collect();
+        let mut symbols: Vec<Var> = weights
+            .iter()
+            .flat_map(|weight| weight.variables().iter().copied())
+            .filter(|&variable| variable != Var::S)
+            .collect();
+        symbols.sort_unstable();
+        symbols.dedup();
+        Self {
+            numerator: diagram.roots[system.numerator],
+            denominator: diagram.roots[system.denominator],
+            diagram,
+            weights,
+            symbols,
+            distinct,
+            grounded: system.grounded,
+            independent,
+        }
+    }
+
+    /// Whether the answer is exactly 0: the drive does not reach what is asked.
+    pub fn is_zero(&self) -> bool {
+        self.numerator.is_dead()
+    }
+
+    /// Whether every term of an expansion is different from every other, so that counts are exact.
+    pub fn is_distinct(&self) -> bool {
+        self.distinct
+    }
+
+    /// Parts without a connection to ground: the node that was grounded, and the part.
+    pub fn grounded_parts(&self) -> &[(NodeId, Vec<NodeId>)] {
+        &self.grounded
+    }
+
+    /// Elements that the answer does not depend on.
+    pub fn independent_elements(&self) -> &[ElementId] {
+        &self.independent
+    }
+
+    /// Nodes of the diagram: what one pass costs.
+    pub fn diagram_size(&self) -> usize {
+        self.diagram.len()
+    }
+
+    /// How many terms each power of `s` has, without making them.
+    pub fn count_terms(&self) -> TermCounts {
+        let weights: Vec<_> = self.weights.iter().map(count::weight).collect();
+        let values = passes::values(&count::Counts, &self.diagram, &weights);
+        TermCounts {
+            numerator: passes::at(&count::Counts, &values, self.numerator),
+            denominator: passes::at(&count::Counts, &values, self.denominator),
+            exact: self.distinct,
+        }
+    }
+
+    /// Numerator and denominator as polynomials, terms collected; not yet in lowest terms.
+    ///
+    /// # Cost
+    /// Linear in the number of terms where none meet; see [`Self::count_terms`] before.
+    pub fn expand(&self) -> (Polynomial, Polynomial) {
+        if self.distinct {
+            if let Some(pair) = self.expand_sets::<u64>() {
+                return pair;
+            }
+            if let Some(pair) = self.expand_sets::<u128>() {
+                return pair;
+            }
+        }
+        let roots = [self.numerator, self.denominator];
+        let mut both = expand::collected(&self.diagram, &self.weights, &roots).into_iter();
+        (both.next().unwrap_or_default(), both.next().unwrap_or_default())
+    }
+
+    fn expand_sets<T: TermSet>(&self) -> Option<(Polynomial, Polynomial)> {
+        let weights = expand::as_sets::<T>(&self.weights, &self.symbols)?;
+        let roots = [self.numerator, self.denominator];
+        let mut lists = expand::listed(&self.diagram, &weights, &roots).into_iter();
+        let mut polynomial = || {
+            let lists = lists.next().unwrap_or_default();
+            expand::polynomial(lists, &self.symbols)
+        };
+        Some((polynomial(), polynomial()))
+    }
+
+    /// The number of terms of the full expansion, made and stored one by one; for measuring.
+    pub fn list_terms(&self) -> Option<usize> {
+        let weights = expand::as_sets::<u64>(&self.weights, &self.symbols)?;
+        let lists = expand::listed(&self.diagram, &weights, &[self.denominator]);
+        Some(lists.iter().flatten().map(Vec::len).sum())
+    }
+
+    /// The value at `s` with these symbol values (by index); exponents are carried, so
+    /// that large networks neither overflow nor underflow.
+    pub fn value_at(&self, s: Complex<f64>, symbols: &[f64]) -> Complex<f64> {
+        let weights: Vec<_> =
+            self.weights.iter().map(|w| numbers::complex_weight(w, s, symbols)).collect();
+        let ring = numbers::ComplexNumbers;
+        let values = passes::values(&ring, &self.diagram, &weights);
+        passes::at(&ring, &values, self.numerator).over(passes::at(
+            &ring,
+            &values,
+            self.denominator,
+        ))
+    }
+
+    /// Numerator and denominator modulo a prime; `values` holds `s` first, then the symbols.
+    pub fn remainders(&self, prime: Prime, values: &[u64]) -> (u64, u64) {
+        let weights: Vec<_> =
+            self.weights.iter().map(|w| numbers::remainder(w, prime, values)).collect();
+        let ring = numbers::Remainders(prime);
+        let values = passes::values(&ring, &self.diagram, &weights);
+        (
+            passes::at(&ring, &values, self.numerator),
+            passes::at(&ring, &values, self.denominator),
+        )
+    }
+
+    /// The diagram as named sub-expressions.
+    pub fn nested(&self) -> Nested {
+        nested::of(&self.diagram, &self.weights, self.numerator, self.denominator)
+    }
+}
+
+fn build_diagram(system: &System, limits: &Limits) -> Result<Diagram, EliminationError> {
+    if touched_in_one_graph(system) {
+        return Ok(Diagram::dead(system.choices[system.question()].alternatives.len()));
+    }
+    let touches = touches(system);
+    let order = order::search(&touches, system.nodes);
+    // About 3.3 states a level for each frontier place, where the cost takes e^0.6 = 1.8: the
+    // prediction errs on the small side, the limit on states met does the rest.
+    if order.cost > 50.0 * limits.max_states as f64 {
+        return Err(EliminationError::TooLarge { states: order.cost });
+    }
+    let plan = diagram::Plan {
+        choices: &system.choices,
+        nodes: system.nodes,
+        order: &order.choices,
+        question: system.question(),
+        first_weight: &system.first_weights(),
+        max_states: limits.max_states,
+    };
+    diagram::build(&plan).map_err(|error| EliminationError::TooLarge {
+        states: match error {
+            diagram::TooLarge::Frontier(_) => order.cost,
+            diagram::TooLarge::States(met) => met as f64,
+        },
+    })
+}
+
+fn touches(system: &System) -> Vec<order::Touch> {
+    let nodes = |pairs: &mut dyn Iterator<Item = &choice::Pair>| {
+        let mut nodes: Vec<u32> =
+            pairs.flat_map(|pair| [pair.0, pair.1]).filter(|&node| node != 0).collect();
+        nodes.sort_unstable();
+        nodes.dedup();
+        nodes
+    };
+    system
+        .choices
+        .iter()
+        .map(|choice| order::Touch {
+            current: nodes(&mut choice.alternatives.iter().flat_map(|a| &a.current)),
+            voltage: nodes(&mut choice.alternatives.iter().flat_map(|a| &a.voltage)),
+        })
+        .collect()
+}
+
+/// A node that only one of the graphs has makes every determinant 0.
+fn touched_in_one_graph(system: &System) -> bool {
+    let mut seen = vec![[false; 2]; system.nodes];
+    for touch in touches(system) {
+        for node in touch.current {
+            seen[node as usize][0] = true;
+        }
+        for node in touch.voltage {
+            seen[node as usize][1] = true;
+        }
+    }
+    seen.iter().any(|[current, voltage]| current != voltage)
+}
+
+/// Whether no two terms of an expansion can be equal: every choice has symbols of its own, and the
+/// terms of its alternatives differ in them.
+fn terms_never_meet(system: &System) -> bool {
+    let mut owner: std::collections::BTreeMap<Var, usize> = std::collections::BTreeMap::new();
+    for (index, choice) in system.choices.iter().enumerate() {
+        if index == system.question() {
+            continue;
+        }
+        let mut seen: Vec<Vec<(Var, u32)>> = Vec::new();
+        for alternative in &choice.alternatives {
+            for term in alternative.weight.terms() {
+                let symbols: Vec<(Var, u32)> =
+                    term.powers().filter(|&(variable, _)| variable != Var::S).collect();
+                if symbols.iter().any(|&(variable, _)| {
+                    *owner.entry(variable).or_insert(index) != index
+                }) {
+                    return false;
+                }
+                seen.push(symbols);
+            }
+        }
+        let total = seen.len();
+        seen.sort();
+        seen.dedup();
+        if seen.len() != total && !system.forced[index] {
+            return false;
+        }
+    }
+    true
+}
