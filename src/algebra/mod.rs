@@ -2,3 +2,10 @@
 //! polynomials in `s` over **Q**, greatest common divisors, and arithmetic modulo word-sized primes.
 //!
 //! May use: nothing of this crate. Knows no circuits, no names and no units: variables are numbers.
+
+mod integer;
+mod monomial;
+mod polynomial;
+
+pub use monomial::Var;
+pub use polynomial::Polynomial;
