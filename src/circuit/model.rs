@@ -6,7 +6,7 @@
 use super::{Ask, Number, Unit, Value};
 
 /// A node of the circuit; 0 is the reference node.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub struct NodeId(pub u32);
 
 /// The reference node.

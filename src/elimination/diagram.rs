@@ -104,7 +104,12 @@ pub(crate) fn build(plan: &Plan<'_>) -> Result<Diagram, TooLarge> {
         if level.choice == question {
             below = (0..roots)
                 .map(|root| {
-                    level.links.chunks(roots).map(|links| follow(links[root], &below[0])).collect()
+                    // The weights of the question are 1 and −1.
+                    let weight = &plan.choices[plan.question].alternatives[root].weight;
+                    let link = |links: &[Link]| {
+                        follow(links[root], &below[0]).signed(weight.is_negative())
+                    };
+                    level.links.chunks(roots).map(link).collect()
                 })
                 .collect();
             continue;
@@ -223,13 +228,8 @@ struct Reducer {
 
 impl Reducer {
     fn new() -> Self {
-        // Node 0, the determinant 1, has no edges.
-        Self {
-            starts: vec![0, 0],
-            edges: Vec::new(),
-            choice_of: vec![u32::MAX],
-            unique: FxHashMap::default(),
-        }
+        let Diagram { starts, edges, choice_of, .. } = Diagram::one();
+        Self { starts, edges, choice_of, unique: FxHashMap::default() }
     }
 
     fn node(
@@ -285,6 +285,16 @@ impl Reducer {
 }
 
 impl Diagram {
+    /// The determinant 1 alone.
+    pub(crate) fn one() -> Self {
+        Self { starts: vec![0, 0], edges: Vec::new(), choice_of: vec![u32::MAX], roots: Vec::new() }
+    }
+
+    /// Roots that are all 0.
+    pub(crate) fn dead(roots: usize) -> Self {
+        Self { roots: vec![Link::DEAD; roots], ..Self::one() }
+    }
+
     /// How many nodes there are, the determinant 1 among them.
     pub(crate) fn len(&self) -> usize {
         self.choice_of.len()

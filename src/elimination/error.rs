@@ -3,11 +3,14 @@
 use crate::circuit::{ElementId, NodeId};
 
 /// What stands against a unique solution, or against finding it.
-#[derive(Clone, Debug, PartialEq, Eq, thiserror::Error)]
+#[derive(Clone, Debug, PartialEq, thiserror::Error)]
 pub enum EliminationError {
     /// The determinant is 0 whatever the element values.
     #[error("the circuit has no unique solution")]
     Singular,
+    /// The quantity below the fraction bar is 0 whatever the element values.
+    #[error("the answer is infinite")]
+    Infinite,
     /// The driving current enters one part of the circuit and would have to leave another.
     #[error("the driving current has no way back")]
     NoReturnPath(NodeId, NodeId),

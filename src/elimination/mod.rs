@@ -22,16 +22,19 @@ mod passes;
 mod system;
 #[cfg(test)]
 mod tests;
+#[cfg(test)]
+mod testing;
 mod value;
 
-use num_bigint::BigUint;
+use num_bigint::{BigInt, BigUint};
 use num_complex::Complex;
+use num_rational::BigRational;
 
-use crate::algebra::{Polynomial, Var, modular::Prime};
+use crate::algebra::{Polynomial, Var, modular::Field};
 use crate::circuit::{Circuit, ElementId, NodeId, Transfer};
 use diagram::{Diagram, Link};
 use passes::expand::{self, TermSet};
-use passes::{count, numbers};
+use passes::{coefficients, count, numbers};
 use system::System;
 
 pub use error::EliminationError;
@@ -68,6 +71,10 @@ pub struct Elimination {
     diagram: Diagram,
     /// All weights, alternatives numbered through the choices.
     weights: Vec<Polynomial>,
+    /// For each choice the number of its first weight.
+    first_weight: Vec<u32>,
+    /// For each choice its place in the order of elimination.
+    level_of: Vec<u32>,
     /// The symbols in the weights, ascending.
     symbols: Vec<Var>,
     numerator: Link,
@@ -95,7 +102,7 @@ impl Elimination {
         limits: &Limits,
     ) -> Result<Self, EliminationError> {
         let system = system::build(circuit, transfer)?;
-        let built = build_diagram(&system, limits)?;
+        let (built, level_of) = build_diagram(&system, limits)?;
         let (numerator, denominator) =
             (built.roots[system.numerator], built.roots[system.denominator]);
         if denominator.is_dead() {
@@ -110,17 +117,19 @@ impl Elimination {
         }
         let fixed = independent::find(&system, &built);
         if fixed.is_empty() {
-            return Ok(Self::of(system, built, Vec::new()));
+            return Ok(Self::of(system, built, level_of, Vec::new()));
         }
         let (system, taken_out) = independent::take_out(system, &fixed);
-        let built = build_diagram(&system, limits)?;
-        Ok(Self::of(system, built, taken_out))
+        let (built, level_of) = build_diagram(&system, limits)?;
+        Ok(Self::of(system, built, level_of, taken_out))
     }
 
     fn zero(system: System) -> Self {
         Self {
             diagram: Diagram::one(),
             weights: Vec::new(),
+            first_weight: Vec::new(),
+            level_of: Vec::new(),
             symbols: Vec::new(),
             numerator: Link::DEAD,
             denominator: Link::ONE,
@@ -130,7 +139,12 @@ impl Elimination {
         }
     }
 
-    fn of(system: System, diagram: Diagram, independent: Vec<ElementId>) -> Self {
+    fn of(
+        system: System,
+        diagram: Diagram,
+        level_of: Vec<u32>,
+        independent: Vec<ElementId>,
+    ) -> Self {
         let distinct = terms_never_meet(&system);
         let weights: Vec<Polynomial> = system
             .choices
@@ -139,7 +153,7 @@ impl Elimination {
             .collect();
         let mut symbols: Vec<Var> = weights
             .iter()
-            .flat_map(|weight| weight.variables().iter().copied())
+            .flat_map(Polynomial::variables)
             .filter(|&variable| variable != Var::S)
             .collect();
         symbols.sort_unstable();
@@ -149,6 +163,8 @@ impl Elimination {
             denominator: diagram.roots[system.denominator],
             diagram,
             weights,
+            first_weight: system.first_weights(),
+            level_of,
             symbols,
             distinct,
             grounded: system.grounded,
@@ -207,7 +223,8 @@ impl Elimination {
         }
         let roots = [self.numerator, self.denominator];
         let mut both = expand::collected(&self.diagram, &self.weights, &roots).into_iter();
-        (both.next().unwrap_or_default(), both.next().unwrap_or_default())
+        let mut next = || both.next().unwrap_or_else(Polynomial::zero);
+        (next(), next())
     }
 
     fn expand_sets<T: TermSet>(&self) -> Option<(Polynomial, Polynomial)> {
@@ -242,16 +259,27 @@ impl Elimination {
         ))
     }
 
-    /// Numerator and denominator modulo a prime; `values` holds `s` first, then the symbols.
-    pub fn remainders(&self, prime: Prime, values: &[u64]) -> (u64, u64) {
+    /// Numerator and denominator modulo the prime of a field; `values` holds `s` first, then the symbols.
+    pub fn remainders(&self, field: Field, values: &[u64]) -> (u64, u64) {
         let weights: Vec<_> =
-            self.weights.iter().map(|w| numbers::remainder(w, prime, values)).collect();
-        let ring = numbers::Remainders(prime);
+            self.weights.iter().map(|w| numbers::remainder(w, field, values)).collect();
+        let ring = numbers::Remainders(field);
         let values = passes::values(&ring, &self.diagram, &weights);
         (
             passes::at(&ring, &values, self.numerator),
             passes::at(&ring, &values, self.denominator),
         )
+    }
+
+    /// Numerator and denominator as integer polynomials in `s` (lowest power first) for these symbol
+    /// values, exactly; up to one common factor, not in lowest terms.
+    ///
+    /// # Cost
+    /// One product of large integers for each edge of the diagram and power of `s`.
+    pub fn coefficients(&self, symbol: impl Fn(Var) -> BigRational) -> [Vec<BigInt>; 2] {
+        let scaled = coefficients::scale(&self.weights, &self.first_weight, &symbol);
+        let roots = [self.numerator, self.denominator];
+        coefficients::of(&self.diagram, &scaled, &self.level_of, roots)
     }
 
     /// The diagram as named sub-expressions.
@@ -260,9 +288,14 @@ impl Elimination {
     }
 }
 
-fn build_diagram(system: &System, limits: &Limits) -> Result<Diagram, EliminationError> {
+/// The diagram, and for each choice its place in the order.
+fn build_diagram(
+    system: &System,
+    limits: &Limits,
+) -> Result<(Diagram, Vec<u32>), EliminationError> {
     if touched_in_one_graph(system) {
-        return Ok(Diagram::dead(system.choices[system.question()].alternatives.len()));
+        let roots = system.choices[system.question()].alternatives.len();
+        return Ok((Diagram::dead(roots), Vec::new()));
     }
     let touches = touches(system);
     let order = order::search(&touches, system.nodes);
@@ -279,12 +312,17 @@ fn build_diagram(system: &System, limits: &Limits) -> Result<Diagram, Eliminatio
         first_weight: &system.first_weights(),
         max_states: limits.max_states,
     };
-    diagram::build(&plan).map_err(|error| EliminationError::TooLarge {
+    let diagram = diagram::build(&plan).map_err(|error| EliminationError::TooLarge {
         states: match error {
             diagram::TooLarge::Frontier(_) => order.cost,
             diagram::TooLarge::States(met) => met as f64,
         },
-    })
+    })?;
+    let mut level_of = vec![0; system.choices.len()];
+    for (level, &choice) in order.choices.iter().enumerate() {
+        level_of[choice as usize] = level as u32;
+    }
+    Ok((diagram, level_of))
 }
 
 fn touches(system: &System) -> Vec<order::Touch> {
@@ -331,7 +369,7 @@ fn terms_never_meet(system: &System) -> bool {
         for alternative in &choice.alternatives {
             for term in alternative.weight.terms() {
                 let symbols: Vec<(Var, u32)> =
-                    term.powers().filter(|&(variable, _)| variable != Var::S).collect();
+                    term.0.filter(|&(variable, _)| variable != Var::S).collect();
                 if symbols.iter().any(|&(variable, _)| {
                     *owner.entry(variable).or_insert(index) != index
                 }) {

@@ -13,8 +13,8 @@ pub(crate) struct Counts;
 /// How many terms a weight has at each power of `s`.
 pub(crate) fn weight(polynomial: &Polynomial) -> Vec<(usize, u64)> {
     let mut counts: Vec<(usize, u64)> = Vec::new();
-    for term in polynomial.terms() {
-        let power = term.power_of(Var::S) as usize;
+    for (mut powers, _) in polynomial.terms() {
+        let power = powers.find(|power| power.0 == Var::S).map_or(0, |power| power.1 as usize);
         match counts.iter_mut().find(|(known, _)| *known == power) {
             Some((_, count)) => *count += 1,
             None => counts.push((power, 1)),

@@ -6,6 +6,9 @@
 //! is dropped after its last use. The work is linear in the output and needs no comparison.
 //! Everywhere else the values are polynomials, and terms that meet are collected.
 
+use num_bigint::BigInt;
+use num_traits::ToPrimitive;
+
 use super::{Ring, at, values};
 use crate::algebra::{Polynomial, Var};
 use crate::elimination::diagram::{Diagram, Link};
@@ -99,14 +102,14 @@ pub(crate) fn as_sets<T: TermSet>(
         .map(|weight| {
             weight
                 .terms()
-                .map(|term| {
-                    let mut set = match term.coefficient_i64()? {
+                .map(|(powers, coefficient)| {
+                    let mut set = match coefficient.to_i64()? {
                         1 => T::default(),
                         -1 => T::sign(),
                         _ => return None,
                     };
                     let mut power = 0;
-                    for (variable, exponent) in term.powers() {
+                    for (variable, exponent) in powers {
                         if variable == Var::S {
                             power = exponent as usize;
                         } else if exponent == 1 {
@@ -176,4 +179,21 @@ pub(crate) fn listed<T: TermSet>(
             list
         })
         .collect()
+}
+
+/// The polynomial of these lists.
+pub(crate) fn polynomial<T: TermSet>(lists: TermLists<T>, symbols: &[Var]) -> Polynomial {
+    let terms = lists.into_iter().zip(0_u32..).flat_map(|(terms, power)| {
+        terms.into_iter().map(move |term| {
+            let powers = symbols
+                .iter()
+                .enumerate()
+                .filter(move |&(index, _)| term.contains(index))
+                .map(|(_, &variable)| (variable, 1))
+                .chain((power > 0).then_some((Var::S, power)))
+                .collect::<Vec<_>>();
+            (powers, BigInt::from(if term.is_negative() { -1 } else { 1 }))
+        })
+    });
+    Polynomial::from_terms(terms)
 }

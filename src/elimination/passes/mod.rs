@@ -4,6 +4,7 @@
 //! weight × value of the child. What a value is decides what comes out: a number of terms, a
 //! complex number, a remainder modulo a prime, a polynomial in `s`, a polynomial in the symbols.
 
+pub(crate) mod coefficients;
 pub(crate) mod count;
 pub(crate) mod expand;
 pub(crate) mod gradient;

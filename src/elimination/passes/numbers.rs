@@ -1,9 +1,11 @@
 //! Passes whose values are numbers: complex ones at one frequency, and remainders modulo a prime.
 
+use num_bigint::BigInt;
 use num_complex::Complex;
+use num_traits::ToPrimitive;
 
 use super::Ring;
-use crate::algebra::{Polynomial, Var, modular::Prime};
+use crate::algebra::{Polynomial, Var, modular::Field};
 use crate::elimination::value::symbol_of;
 
 /// A complex number times a power of two: products of a thousand admittances leave the range of a
@@ -97,9 +99,9 @@ impl Ring for ComplexNumbers {
 /// The value of a weight at `s` and these symbol values.
 pub(crate) fn complex_weight(weight: &Polynomial, s: Complex<f64>, symbols: &[f64]) -> Scaled {
     let mut sum = Scaled::ZERO;
-    for term in weight.terms() {
-        let mut product = Scaled::new(Complex::new(term.coefficient_f64(), 0.0), 0);
-        for (variable, power) in term.powers() {
+    for (powers, coefficient) in weight.terms() {
+        let mut product = scaled_integer(&coefficient);
+        for (variable, power) in powers {
             let base = match symbol_of(variable) {
                 Some(symbol) => Complex::new(symbols[symbol.0 as usize], 0.0),
                 None => s,
@@ -113,8 +115,15 @@ pub(crate) fn complex_weight(weight: &Polynomial, s: Complex<f64>, symbols: &[f6
     sum
 }
 
+/// An integer of any size, rounded to a double's mantissa.
+fn scaled_integer(integer: &BigInt) -> Scaled {
+    let shift = integer.bits().saturating_sub(64);
+    let mantissa = (integer >> shift).to_f64().unwrap_or(0.0);
+    Scaled::new(Complex::new(mantissa, 0.0), shift as i32)
+}
+
 /// Remainders modulo a prime.
-pub(crate) struct Remainders(pub(crate) Prime);
+pub(crate) struct Remainders(pub(crate) Field);
 
 impl Ring for Remainders {
     type Weight = u64;
@@ -139,6 +148,6 @@ impl Ring for Remainders {
 }
 
 /// The remainder of a weight; `symbols` holds `s` first, then the symbols.
-pub(crate) fn remainder(weight: &Polynomial, prime: Prime, values: &[u64]) -> u64 {
-    weight.evaluate_modulo(prime, &|variable: Var| values[variable.0 as usize])
+pub(crate) fn remainder(weight: &Polynomial, field: Field, values: &[u64]) -> u64 {
+    weight.evaluate_modulo(&field, |variable: Var| values[variable.0 as usize])
 }

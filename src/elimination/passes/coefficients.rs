@@ -1,0 +1,116 @@
+//! Numeric coefficients: polynomials in `s` with integer coefficients, exactly.
+//!
+//! Every choice is scaled by a factor of its own that makes its weights integers; the factors
+//! multiply numerator and denominator alike. A level that the diagram leaves out has the weight 1
+//! there, which has become that factor: an edge is multiplied by the factors of the levels it skips.
+
+use num_bigint::BigInt;
+use num_integer::Integer;
+use num_rational::BigRational;
+use num_traits::{One, Zero};
+
+use crate::algebra::{Polynomial, Var};
+use crate::elimination::diagram::{Diagram, Link};
+
+/// Coefficients by powers of `s`, lowest first.
+pub(crate) type Coefficients = Vec<BigInt>;
+
+/// The weights of each choice as integer polynomials in `s`, and the choice's factor.
+pub(crate) struct Scaled {
+    weights: Vec<Coefficients>,
+    factors: Vec<BigInt>,
+}
+
+/// Puts numbers into the weights; `symbol` gives a symbol's value.
+pub(crate) fn scale(
+    weights: &[Polynomial],
+    first_weight: &[u32],
+    symbol: &dyn Fn(Var) -> BigRational,
+) -> Scaled {
+    let mut scaled = Scaled { weights: Vec::new(), factors: Vec::new() };
+    for (choice, &first) in first_weight.iter().enumerate() {
+        let last = first_weight.get(choice + 1).map_or(weights.len(), |&next| next as usize);
+        let values: Vec<Vec<BigRational>> = weights[first as usize..last]
+            .iter()
+            .map(|weight| {
+                weight
+                    .coefficients(Var::S)
+                    .iter()
+                    .map(|coefficient| coefficient.evaluate(symbol))
+                    .collect()
+            })
+            .collect();
+        let all = || values.iter().flatten().filter(|value| !value.is_zero());
+        let denominator =
+            all().fold(BigInt::one(), |common, value| common.lcm(value.denom()));
+        let content = all().fold(BigInt::zero(), |common, value| {
+            common.gcd(&(value.numer() * (&denominator / value.denom())))
+        });
+        let content = if content.is_zero() { BigInt::one() } else { content };
+        for weight in values {
+            scaled.weights.push(
+                weight
+                    .into_iter()
+                    .map(|value| value.numer() * (&denominator / value.denom()) / &content)
+                    .collect(),
+            );
+        }
+        // Only whole when a weight 1 stands in the choice; else no level of it is ever left out.
+        scaled.factors.push(&denominator / &content);
+    }
+    scaled
+}
+
+/// Numerator and denominator, up to one common factor.
+pub(crate) fn of(
+    diagram: &Diagram,
+    scaled: &Scaled,
+    level_of: &[u32],
+    roots: [Link; 2],
+) -> [Coefficients; 2] {
+    let mut factor_at = vec![BigInt::one(); level_of.len()];
+    for (choice, &level) in level_of.iter().enumerate() {
+        factor_at[level as usize] = scaled.factors[choice].clone();
+    }
+    let levels = level_of.len();
+    let level = |node: usize| {
+        if node == 0 { levels } else { level_of[diagram.choice(node) as usize] as usize }
+    };
+    let skipped = |from: usize, to: usize| -> BigInt {
+        factor_at[from..to].iter().filter(|factor| !factor.is_one()).product()
+    };
+    let mut values: Vec<Coefficients> = vec![vec![BigInt::one()]];
+    for node in 1..diagram.len() {
+        let mut sum = Coefficients::new();
+        for edge in diagram.edges(node) {
+            let child = edge.link.node();
+            let mut factor = skipped(level(node) + 1, level(child));
+            if edge.link.is_negative() {
+                factor = -factor;
+            }
+            for (power, weight) in scaled.weights[edge.weight as usize].iter().enumerate() {
+                if weight.is_zero() {
+                    continue;
+                }
+                let weight = weight * &factor;
+                if sum.len() < values[child].len() + power {
+                    sum.resize(values[child].len() + power, BigInt::zero());
+                }
+                for (at, value) in values[child].iter().enumerate() {
+                    sum[at + power] += value * &weight;
+                }
+            }
+        }
+        values.push(sum);
+    }
+    roots.map(|root| {
+        if root.is_dead() {
+            return Coefficients::new();
+        }
+        let mut factor = skipped(0, level(root.node()));
+        if root.is_negative() {
+            factor = -factor;
+        }
+        values[root.node()].iter().map(|value| value * &factor).collect()
+    })
+}
