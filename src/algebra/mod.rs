@@ -4,6 +4,7 @@
 //! May use: nothing of this crate. Knows no circuits, no names and no units: variables are numbers.
 
 mod integer;
+pub mod modular;
 mod monomial;
 mod polynomial;
 

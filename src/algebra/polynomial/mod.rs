@@ -13,6 +13,7 @@ mod calculus;
 mod display;
 mod division;
 mod multiplication;
+mod residues;
 #[cfg(test)]
 pub(crate) mod tests;
 
