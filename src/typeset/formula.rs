@@ -18,7 +18,8 @@ use std::sync::Arc;
 use num_rational::BigRational;
 use num_traits::{One, Signed, Zero, pow};
 
-use super::plain::{self, Dialect};
+use super::linear::Dialect;
+use super::plain;
 use super::symbol::SymbolTable;
 
 /// An expression as it is to be written.

@@ -10,10 +10,15 @@
 mod evaluate;
 mod formula;
 mod greek;
+pub mod json;
+pub mod latex;
 mod latex_name;
+mod linear;
 pub mod number;
 pub mod plain;
+pub mod screen;
 mod symbol;
 
 pub use formula::{Formula, Letter, View};
+pub use linear::Dialect;
 pub use symbol::{Style, SymbolName, SymbolTable};

@@ -40,8 +40,14 @@ pub fn is_short(value: &BigRational) -> bool {
 /// digits, else a fraction (`1/3`).
 #[must_use]
 pub fn shortest(value: &BigRational) -> String {
+    shortest_in(value, Medium::Ascii)
+}
+
+/// As [`shortest`], with the medium's minus sign and power of ten.
+#[must_use]
+pub fn shortest_in(value: &BigRational, medium: Medium) -> String {
     match exact_decimal(value) {
-        Some(decimal) => decimal.general(Medium::Ascii, -4, 15),
+        Some(decimal) => decimal.general(medium, -4, 15),
         None => value.to_string(),
     }
 }

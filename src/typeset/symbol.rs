@@ -18,6 +18,8 @@ use super::greek;
 pub enum Style {
     /// As in the source.
     Source,
+    /// As in the source, with the names of Greek letters and codes of others.
+    Ascii,
     /// ASCII letters, digits and `_`, beginning with a letter or `_`.
     Identifier,
     /// LaTeX, mathematics mode.
@@ -30,6 +32,7 @@ pub enum Style {
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct SymbolName {
     source: String,
+    ascii: String,
     identifier: String,
     latex: String,
     unicode: String,
@@ -39,6 +42,7 @@ impl SymbolName {
     fn new(source: &str, identifier: String) -> Self {
         Self {
             source: source.to_owned(),
+            ascii: ascii_name(source),
             identifier,
             latex: super::latex_name::latex_name(source),
             unicode: unicode_name(source),
@@ -50,6 +54,7 @@ impl SymbolName {
     pub fn styled(&self, style: Style) -> &str {
         match style {
             Style::Source => &self.source,
+            Style::Ascii => &self.ascii,
             Style::Identifier => &self.identifier,
             Style::Latex => &self.latex,
             Style::Unicode => &self.unicode,
@@ -127,7 +132,7 @@ impl SymbolTable {
             Letter::S => "s".into(),
             Letter::Frequency => "f".into(),
             Letter::Pi => match style {
-                Style::Source | Style::Identifier => "pi".into(),
+                Style::Source | Style::Ascii | Style::Identifier => "pi".into(),
                 Style::Latex => "\\pi".into(),
                 Style::Unicode => "π".into(),
             },
@@ -153,21 +158,24 @@ impl SymbolTable {
     }
 }
 
-/// The name with Greek letters spelt out, `_` for `.`, and hexadecimal codes for what is not ASCII.
-fn ascii_identifier(source: &str) -> String {
-    let mut identifier = String::with_capacity(source.len());
-    if source.starts_with(|c: char| c.is_ascii_digit()) || source.is_empty() {
-        identifier.push('_');
-    }
+/// The name with Greek letters spelt out, and hexadecimal codes for other letters.
+fn ascii_name(source: &str) -> String {
+    let mut name = String::with_capacity(source.len());
     for c in source.chars() {
-        match (c, greek::name_of(c)) {
-            (_, Some(name)) => identifier.push_str(name),
-            ('a'..='z' | 'A'..='Z' | '0'..='9', None) => identifier.push(c),
-            ('_' | '.', None) => identifier.push('_'),
-            _ => identifier.push_str(&format!("u{:04X}", u32::from(c))),
+        match greek::name_of(c) {
+            Some(greek) => name.push_str(greek),
+            None if c.is_ascii() => name.push(c),
+            None => name.push_str(&format!("u{:04X}", u32::from(c))),
         }
     }
-    identifier
+    name
+}
+
+/// The ASCII name with `_` for `.` and for all else that is neither letter nor digit.
+fn ascii_identifier(source: &str) -> String {
+    let replaced = |c: char| if c.is_ascii_alphanumeric() { c } else { '_' };
+    let name: String = ascii_name(source).chars().map(replaced).collect();
+    if name.starts_with(|c: char| !c.is_ascii_digit()) { name } else { format!("_{name}") }
 }
 
 fn unique(wanted: String, taken: &mut BTreeSet<String>) -> String {

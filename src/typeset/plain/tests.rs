@@ -6,6 +6,7 @@ use num_traits::{One, Zero};
 use proptest::prelude::*;
 
 use super::*;
+use crate::typeset::Letter;
 
 fn names() -> SymbolTable {
     SymbolTable::new(["R1", "R2", "C1", "Q1.gm", "β"])
