@@ -1,0 +1,355 @@
+//! LaTeX for mathematics mode, with `amsmath` only.
+//!
+//! Quotients are `\frac`, products are set off by thin spaces, parallels are `\parallel`.
+//! Parentheses stand where the layout itself does not group, and are `\left( \right)` only around
+//! what is tall. A sum wider than the limit becomes the rows of an `aligned`, wherever it stands.
+//!
+//! Width and height of each part are found in one pass beforehand; like the writer, it keeps its
+//! own stack, so the whole is linear in the formula and its depth is no burden.
+
+use std::fmt;
+
+use num_rational::BigRational;
+use num_traits::ToPrimitive;
+use rustc_hash::FxHashMap;
+
+use super::linear::{self, Mark};
+use super::number::{self, Medium};
+use super::{Formula, Style, SymbolTable, View};
+
+/// How strongly the typeset form holds together.
+#[derive(Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
+enum Binding {
+    Sum,
+    Parallel,
+    Product,
+    /// A fraction or a power: closed, except under an exponent.
+    Closed,
+    Atom,
+}
+
+/// How a part will look.
+#[derive(Clone, Copy, Default)]
+struct Extent {
+    /// Symbols, operators and numbers side by side.
+    width: usize,
+    /// True where parentheses must grow.
+    tall: bool,
+}
+
+enum Piece<'a> {
+    Text(&'static str),
+    Exponent(u32),
+    /// A formula, in parentheses when it binds more weakly than that.
+    Formula(&'a Formula, Binding),
+}
+
+/// Writes formulas with these names, breaking sums beyond that width.
+pub struct Latex<'a> {
+    /// The names of the symbols.
+    pub names: &'a SymbolTable,
+    /// The widest sum that stays in one row, in symbols: names, numbers and operators each count 1.
+    pub width: usize,
+}
+
+impl Latex<'_> {
+    /// The formula as a string.
+    #[must_use]
+    pub fn text(&self, formula: &Formula) -> String {
+        let mut out = String::new();
+        // Writing to a string does not fail.
+        let _ = self.write(&mut out, formula);
+        out
+    }
+
+    /// `left = formula`, where `left` is LaTeX; a long sum is aligned behind the equals sign.
+    #[must_use]
+    pub fn equation(&self, left: &str, formula: &Formula) -> String {
+        let mut out = String::new();
+        let extents = extents(formula);
+        let writer = Writer { latex: self, extents: &extents };
+        // Writing to a string does not fail.
+        let _ = match formula.view() {
+            View::Sum(terms) if writer.is_broken(formula) => {
+                out.push_str("\\begin{aligned}\n");
+                out.push_str(left);
+                out.push_str(" &= ");
+                let pieces = writer.rows(terms, " \\\\\n&\\quad ");
+                writer.write(&mut out, pieces).map(|()| out.push_str("\n\\end{aligned}"))
+            }
+            _ => {
+                out.push_str(left);
+                out.push_str(" = ");
+                writer.write(&mut out, vec![Piece::Formula(formula, Binding::Sum)])
+            }
+        };
+        out
+    }
+
+    /// Writes the formula; linear in its length.
+    ///
+    /// # Errors
+    /// Only those of the writer.
+    pub fn write(&self, out: &mut impl fmt::Write, formula: &Formula) -> fmt::Result {
+        let extents = extents(formula);
+        let writer = Writer { latex: self, extents: &extents };
+        writer.write(out, vec![Piece::Formula(formula, Binding::Sum)])
+    }
+}
+
+/// Extents by address: the formula is borrowed, so addresses stay.
+type Extents = FxHashMap<*const Formula, Extent>;
+
+struct Writer<'a> {
+    latex: &'a Latex<'a>,
+    extents: &'a Extents,
+}
+
+impl Writer<'_> {
+    /// Writes pieces that are given in reading order.
+    fn write(&self, out: &mut impl fmt::Write, pieces: Vec<Piece<'_>>) -> fmt::Result {
+        let mut stack = pieces;
+        stack.reverse();
+        while let Some(piece) = stack.pop() {
+            match piece {
+                Piece::Text(text) => out.write_str(text)?,
+                Piece::Exponent(exponent) => write!(out, "^{{{exponent}}}")?,
+                Piece::Formula(formula, least) => {
+                    if binding(formula) < least {
+                        let tall = self.extent(formula).tall || self.is_broken(formula);
+                        let (open, close) = if tall { ("\\left(", "\\right)") } else { ("(", ")") };
+                        out.write_str(open)?;
+                        stack.push(Piece::Text(close));
+                    }
+                    match formula.view() {
+                        View::Number(value) => out.write_str(&number_text(value))?,
+                        View::Letter(letter) => {
+                            out.write_str(&self.latex.names.letter(letter, Style::Latex))?;
+                        }
+                        _ => {
+                            let first = stack.len();
+                            self.split(formula, &mut stack);
+                            stack[first..].reverse();
+                        }
+                    }
+                }
+            }
+        }
+        Ok(())
+    }
+
+    fn extent(&self, formula: &Formula) -> Extent {
+        self.extents.get(&std::ptr::from_ref(formula)).copied().unwrap_or_default()
+    }
+
+    fn is_broken(&self, formula: &Formula) -> bool {
+        matches!(formula.view(), View::Sum(_)) && self.latex.width < self.extent(formula).width
+    }
+
+    /// The pieces of an operation, in reading order.
+    fn split<'f>(&self, formula: &'f Formula, pieces: &mut Vec<Piece<'f>>) {
+        match formula.view() {
+            View::Number(_) | View::Letter(_) => {}
+            View::Sum(terms) if self.is_broken(formula) => {
+                pieces.push(Piece::Text("\\begin{aligned}\n&"));
+                pieces.append(&mut self.rows(terms, " \\\\\n&"));
+                pieces.push(Piece::Text("\n\\end{aligned}"));
+            }
+            View::Sum(terms) => {
+                for (index, term) in terms.iter().enumerate() {
+                    pieces.extend(term_pieces(term, index));
+                }
+            }
+            View::Negative(operand) => {
+                pieces.extend([Piece::Text("-"), Piece::Formula(operand, Binding::Product)]);
+            }
+            View::Product(factors) => {
+                for (index, factor) in factors.iter().enumerate() {
+                    if index > 0 {
+                        pieces.push(Piece::Text(self.between(factor)));
+                    }
+                    pieces.push(Piece::Formula(factor, Binding::Product));
+                }
+            }
+            View::Quotient(above, below) => pieces.extend([
+                Piece::Text("\\frac{"),
+                Piece::Formula(above, Binding::Sum),
+                Piece::Text("}{"),
+                Piece::Formula(below, Binding::Sum),
+                Piece::Text("}"),
+            ]),
+            View::Power(base, exponent) => {
+                pieces.extend([Piece::Formula(base, Binding::Atom), Piece::Exponent(exponent)]);
+            }
+            View::Parallel(operands) => {
+                for (index, operand) in operands.iter().enumerate() {
+                    if index > 0 {
+                        pieces.push(Piece::Text(" \\parallel "));
+                    }
+                    pieces.push(Piece::Formula(operand, Binding::Product));
+                }
+            }
+        }
+    }
+
+    /// What stands before a factor that is not the first. `\left(` brings its own thin space.
+    fn between(&self, factor: &Formula) -> &'static str {
+        if begins_with_number(factor) {
+            return " \\cdot ";
+        }
+        let grown = self.extent(factor).tall || self.is_broken(factor);
+        if binding(factor) < Binding::Product && grown { " " } else { "\\," }
+    }
+
+    /// The terms of a sum in rows, each filled up to the width.
+    fn rows<'f>(&self, terms: &'f [Formula], new_row: &'static str) -> Vec<Piece<'f>> {
+        let mut pieces = Vec::new();
+        let mut used = 0;
+        for (index, term) in terms.iter().enumerate() {
+            let width = self.extent(term).width + 1;
+            if used > 0 && self.latex.width < used + width {
+                pieces.push(Piece::Text(new_row));
+                used = 0;
+            }
+            used += width;
+            pieces.extend(term_pieces(term, index));
+        }
+        pieces
+    }
+}
+
+/// A term of a sum with its sign.
+fn term_pieces(term: &Formula, index: usize) -> [Piece<'_>; 2] {
+    let (sign, term) = linear::signed(term, index == 0);
+    let sign = match sign {
+        None => "",
+        Some(Mark::Negative) => "-",
+        Some(Mark::Minus) => " - ",
+        Some(_) => " + ",
+    };
+    // A relation sign beside a plus would read the wrong way round: a parallel gets parentheses.
+    [Piece::Text(sign), Piece::Formula(term, Binding::Product)]
+}
+
+fn binding(formula: &Formula) -> Binding {
+    match formula.view() {
+        View::Letter(_) => Binding::Atom,
+        View::Number(value) => match number_form(value) {
+            NumberForm::Digits => Binding::Atom,
+            NumberForm::Fraction => Binding::Closed,
+            NumberForm::Power => Binding::Product,
+        },
+        View::Quotient(..) | View::Power(..) => Binding::Closed,
+        View::Product(_) => Binding::Product,
+        View::Parallel(_) => Binding::Parallel,
+        View::Sum(_) | View::Negative(_) => Binding::Sum,
+    }
+}
+
+/// True where digits would run into the number before.
+fn begins_with_number(formula: &Formula) -> bool {
+    match formula.view() {
+        View::Number(_) => true,
+        View::Power(base, _) => {
+            matches!(base.view(), View::Number(value) if number_form(value) == NumberForm::Digits)
+        }
+        View::Quotient(above, below) => {
+            [above, below]
+                .iter()
+                .all(|part| matches!(part.view(), View::Number(_) | View::Power(..)))
+                && begins_with_number(above)
+        }
+        _ => false,
+    }
+}
+
+#[derive(PartialEq)]
+enum NumberForm {
+    /// `12`, `0.25`.
+    Digits,
+    /// `\frac{1}{3}`.
+    Fraction,
+    /// `4.7\cdot 10^{-9}`.
+    Power,
+}
+
+/// Fractions of small numbers are fractions; other numbers are decimals if they are short.
+fn number_form(value: &BigRational) -> NumberForm {
+    const SMALL: u32 = 100;
+    if value.is_integer() && value.numer().bits() < 50 {
+        return NumberForm::Digits;
+    }
+    let is_small = |part: Option<u32>| part.is_some_and(|part| part < SMALL);
+    if is_small(value.numer().to_u32()) && is_small(value.denom().to_u32()) {
+        return NumberForm::Fraction;
+    }
+    if !number::is_short(value) {
+        return NumberForm::Fraction;
+    }
+    if number::shortest(value).contains('e') { NumberForm::Power } else { NumberForm::Digits }
+}
+
+fn number_text(value: &BigRational) -> String {
+    match number_form(value) {
+        NumberForm::Fraction => format!("\\frac{{{}}}{{{}}}", value.numer(), value.denom()),
+        NumberForm::Digits => number::shortest(value),
+        NumberForm::Power => number::shortest_in(value, Medium::Latex),
+    }
+}
+
+/// Extents of all parts, operands before operations.
+fn extents(formula: &Formula) -> Extents {
+    let mut extents = Extents::default();
+    let mut pending = vec![(formula, false)];
+    while let Some((formula, operands_done)) = pending.pop() {
+        let address = std::ptr::from_ref(formula);
+        if !operands_done {
+            // A shared part is measured once.
+            if !extents.contains_key(&address) {
+                pending.push((formula, true));
+                pending.extend(formula.operands().iter().map(|operand| (operand, false)));
+            }
+            continue;
+        }
+        let extent = measure(formula, |part| {
+            extents.get(&std::ptr::from_ref(part)).copied().unwrap_or_default()
+        });
+        extents.insert(address, extent);
+    }
+    extents
+}
+
+/// The extent of an operation from those of its operands.
+fn measure(formula: &Formula, extent: impl Fn(&Formula) -> Extent) -> Extent {
+    let side_by_side = |operands: &[Formula], between: usize| {
+        operands.iter().map(&extent).fold(Extent::default(), |all, part| Extent {
+            width: all.width + part.width + if all.width > 0 { between } else { 0 },
+            tall: all.tall || part.tall,
+        })
+    };
+    match formula.view() {
+        View::Number(value) => {
+            Extent { width: 1, tall: number_form(value) == NumberForm::Fraction }
+        }
+        View::Letter(_) => Extent { width: 1, tall: false },
+        // A subtracted term has counted its sign.
+        View::Sum(terms) => {
+            let signs = terms.iter().filter(|term| !term.is_negative()).count().saturating_sub(1);
+            let all = side_by_side(terms, 0);
+            Extent { width: all.width + signs, ..all }
+        }
+        View::Product(factors) => side_by_side(factors, 0),
+        View::Parallel(operands) => side_by_side(operands, 1),
+        View::Negative(operand) => {
+            let part = extent(operand);
+            Extent { width: part.width + 1, ..part }
+        }
+        View::Quotient(above, below) => {
+            Extent { width: extent(above).width.max(extent(below).width), tall: true }
+        }
+        View::Power(base, _) => extent(base),
+    }
+}
+
+#[cfg(test)]
+mod tests;
