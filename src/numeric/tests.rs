@@ -1,0 +1,1 @@
+//! Circuits whose answers are known.
