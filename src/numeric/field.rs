@@ -1,0 +1,203 @@
+//! Fields in which a circuit is solved: exact rationals, a prime field, complex numbers.
+//!
+//! A field is an object, because a prime field must know its prime. Its elements are plain data.
+//! Arithmetic never panics: an inverse that does not exist is `None`.
+
+use std::fmt::Debug;
+
+use num_complex::Complex;
+use num_traits::{One, Signed, ToPrimitive, Zero};
+
+use crate::circuit::Number;
+
+/// The four operations over some kind of number.
+pub trait Field {
+    /// The numbers of the field.
+    type Element: Clone + Debug + PartialEq;
+    /// 0.
+    fn zero(&self) -> Self::Element;
+    /// 1.
+    fn one(&self) -> Self::Element;
+    /// The image of a rational; `None` where its denominator becomes 0.
+    fn number(&self, number: &Number) -> Option<Self::Element>;
+    /// a + b.
+    fn add(&self, a: &Self::Element, b: &Self::Element) -> Self::Element;
+    /// a · b.
+    fn multiply(&self, a: &Self::Element, b: &Self::Element) -> Self::Element;
+    /// −a.
+    fn negative(&self, a: &Self::Element) -> Self::Element;
+    /// 1/a; `None` for 0.
+    fn inverse(&self, a: &Self::Element) -> Option<Self::Element>;
+    /// Whether a is 0.
+    fn is_zero(&self, a: &Self::Element) -> bool;
+    /// A size by which pivots are compared; 0 for 0 and only for it.
+    fn magnitude(&self, a: &Self::Element) -> f64;
+
+    /// a − b.
+    fn subtract(&self, a: &Self::Element, b: &Self::Element) -> Self::Element {
+        self.add(a, &self.negative(b))
+    }
+
+    /// a to an integer power, by repeated squaring; `None` for a negative power of 0.
+    fn power(&self, a: &Self::Element, exponent: i32) -> Option<Self::Element> {
+        let mut square = if exponent < 0 { self.inverse(a)? } else { a.clone() };
+        let mut left = exponent.unsigned_abs();
+        let mut result = self.one();
+        while left > 0 {
+            if left & 1 == 1 {
+                result = self.multiply(&result, &square);
+            }
+            left >>= 1;
+            if left > 0 {
+                square = self.multiply(&square, &square);
+            }
+        }
+        Some(result)
+    }
+}
+
+/// The rational numbers.
+#[derive(Clone, Copy, Debug, Default)]
+pub struct Rationals;
+
+impl Field for Rationals {
+    type Element = Number;
+    fn zero(&self) -> Number {
+        Number::zero()
+    }
+    fn one(&self) -> Number {
+        Number::one()
+    }
+    fn number(&self, number: &Number) -> Option<Number> {
+        Some(number.clone())
+    }
+    fn add(&self, a: &Number, b: &Number) -> Number {
+        a + b
+    }
+    fn multiply(&self, a: &Number, b: &Number) -> Number {
+        a * b
+    }
+    fn negative(&self, a: &Number) -> Number {
+        -a
+    }
+    fn inverse(&self, a: &Number) -> Option<Number> {
+        (!a.is_zero()).then(|| a.recip())
+    }
+    fn is_zero(&self, a: &Number) -> bool {
+        a.is_zero()
+    }
+    fn magnitude(&self, a: &Number) -> f64 {
+        if a.is_zero() { 0.0 } else { a.abs().to_f64().unwrap_or(1.0).max(f64::MIN_POSITIVE) }
+    }
+}
+
+/// Complex numbers in double precision.
+#[derive(Clone, Copy, Debug, Default)]
+pub struct Complexes;
+
+impl Field for Complexes {
+    type Element = Complex<f64>;
+    fn zero(&self) -> Complex<f64> {
+        Complex::new(0.0, 0.0)
+    }
+    fn one(&self) -> Complex<f64> {
+        Complex::new(1.0, 0.0)
+    }
+    fn number(&self, number: &Number) -> Option<Complex<f64>> {
+        number.to_f64().filter(|value| value.is_finite()).map(|value| Complex::new(value, 0.0))
+    }
+    fn add(&self, a: &Complex<f64>, b: &Complex<f64>) -> Complex<f64> {
+        a + b
+    }
+    fn multiply(&self, a: &Complex<f64>, b: &Complex<f64>) -> Complex<f64> {
+        a * b
+    }
+    fn negative(&self, a: &Complex<f64>) -> Complex<f64> {
+        -a
+    }
+    fn inverse(&self, a: &Complex<f64>) -> Option<Complex<f64>> {
+        // `finv` scales, so that tiny and huge numbers do not under- or overflow.
+        let inverse = a.finv();
+        (!self.is_zero(a) && inverse.is_finite()).then_some(inverse)
+    }
+    fn is_zero(&self, a: &Complex<f64>) -> bool {
+        a.re == 0.0 && a.im == 0.0
+    }
+    fn magnitude(&self, a: &Complex<f64>) -> f64 {
+        size(*a)
+    }
+}
+
+/// |re| + |im|: within √2 of the modulus, and far cheaper.
+pub(crate) fn size(value: Complex<f64>) -> f64 {
+    value.re.abs() + value.im.abs()
+}
+
+/// The integers modulo a prime below 2^63.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct PrimeField {
+    prime: u64,
+}
+
+impl PrimeField {
+    /// The field of that many elements. The modulus is taken to be prime; with another one
+    /// inverses are missing or wrong, but nothing panics above 1.
+    pub fn new(prime: u64) -> Self {
+        Self { prime: prime.clamp(2, (1 << 63) - 1) }
+    }
+
+    /// The modulus.
+    pub fn prime(&self) -> u64 {
+        self.prime
+    }
+}
+
+impl Field for PrimeField {
+    type Element = u64;
+    fn zero(&self) -> u64 {
+        0
+    }
+    fn one(&self) -> u64 {
+        1
+    }
+    fn number(&self, number: &Number) -> Option<u64> {
+        let residue = |integer: &num_bigint::BigInt| {
+            let magnitude = (integer.magnitude() % self.prime).to_u64().unwrap_or(0);
+            if integer.is_negative() { self.negative(&magnitude) } else { magnitude }
+        };
+        let inverse = self.inverse(&residue(number.denom()))?;
+        Some(self.multiply(&residue(number.numer()), &inverse))
+    }
+    fn add(&self, a: &u64, b: &u64) -> u64 {
+        let sum = a + b;
+        if sum >= self.prime { sum - self.prime } else { sum }
+    }
+    #[expect(clippy::cast_possible_truncation, reason = "a residue fits its modulus")]
+    fn multiply(&self, a: &u64, b: &u64) -> u64 {
+        (u128::from(*a) * u128::from(*b) % u128::from(self.prime)) as u64
+    }
+    fn negative(&self, a: &u64) -> u64 {
+        if *a == 0 { 0 } else { self.prime - a }
+    }
+    fn inverse(&self, a: &u64) -> Option<u64> {
+        if *a == 0 {
+            return None;
+        }
+        // Fermat: a^(p−2).
+        let (mut square, mut left, mut result) = (*a, self.prime - 2, 1);
+        while left > 0 {
+            if left & 1 == 1 {
+                result = self.multiply(&result, &square);
+            }
+            square = self.multiply(&square, &square);
+            left >>= 1;
+        }
+        Some(result)
+    }
+    fn is_zero(&self, a: &u64) -> bool {
+        *a == 0
+    }
+    fn magnitude(&self, a: &u64) -> f64 {
+        if *a == 0 { 0.0 } else { 1.0 }
+    }
+}
