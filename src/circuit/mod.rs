@@ -3,6 +3,7 @@
 //! May use: nothing of this crate. This is what both the derivation and its witnesses read, so
 //! it holds facts and no methods of solution.
 
+pub mod graph;
 mod model;
 mod name;
 mod question;

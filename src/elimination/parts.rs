@@ -8,6 +8,7 @@
 use super::choice::Pair;
 use super::error::EliminationError;
 use super::system::{System, circuit_nodes};
+use crate::circuit::graph::NodeSets;
 use crate::circuit::{Circuit, Drive, Law, NodeId, Transfer};
 
 /// Grounds one node of each part that hangs in the air.
@@ -23,20 +24,24 @@ pub(crate) fn ground_floating(
     let is_voltage = matches!(transfer.drive, Drive::Source(id)
         if matches!(circuit[id].law, Law::VoltageSource));
     let question = system.question();
-    let mut current = Parts::new(system.nodes);
-    let mut voltage = Parts::new(system.nodes);
+    let mut current = NodeSets::new(system.nodes);
+    let mut voltage = NodeSets::new(system.nodes);
     for choice in &system.choices[..question] {
         for alternative in &choice.alternatives {
-            alternative.current.iter().for_each(|&pair| current.join(pair));
-            alternative.voltage.iter().for_each(|&pair| voltage.join(pair));
+            for pair in &alternative.current {
+                current.join(pair.0, pair.1);
+            }
+            for pair in &alternative.voltage {
+                voltage.join(pair.0, pair.1);
+            }
         }
     }
     if is_voltage {
         // A voltage source joins its nodes in both graphs, whatever is asked.
         for alternative in &system.choices[question].alternatives {
             for &port in &alternative.current {
-                current.join(port);
-                voltage.join(port);
+                current.join(port.0, port.1);
+                voltage.join(port.0, port.1);
             }
         }
     }
@@ -56,11 +61,14 @@ pub(crate) fn ground_floating(
             }
         }
     }
+    let voltage_groups = voltage.groups();
     let floating: Vec<Vec<u32>> = current
         .groups()
         .into_iter()
-        .filter(|group| group[0] != 0 && voltage.is_group(group))
-        .filter(|group| group.len() > 1)
+        .filter(|group| group[0] != 0 && group.len() > 1)
+        .filter(|group| voltage_groups.binary_search_by_key(&group[0], |g| g[0]).is_ok_and(
+            |at| voltage_groups[at] == *group,
+        ))
         .collect();
     let mut moved: Vec<u32> = (0..system.nodes as u32).collect();
     for group in floating {
@@ -79,48 +87,4 @@ pub(crate) fn ground_floating(
         }
     }
     Ok(())
-}
-
-/// Disjoint sets of nodes (Tarjan 1975).
-struct Parts {
-    parent: Vec<u32>,
-}
-
-impl Parts {
-    fn new(nodes: usize) -> Self {
-        Self { parent: (0..nodes as u32).collect() }
-    }
-
-    fn find(&mut self, node: u32) -> u32 {
-        let mut root = node;
-        while self.parent[root as usize] != root {
-            self.parent[root as usize] = self.parent[self.parent[root as usize] as usize];
-            root = self.parent[root as usize];
-        }
-        root
-    }
-
-    /// The smaller node becomes the root.
-    fn join(&mut self, pair: Pair) {
-        let (a, b) = (self.find(pair.0), self.find(pair.1));
-        self.parent[a.max(b) as usize] = a.min(b);
-    }
-
-    /// Every set, its members ascending.
-    fn groups(&mut self) -> Vec<Vec<u32>> {
-        let mut groups: Vec<Vec<u32>> = vec![Vec::new(); self.parent.len()];
-        for node in 0..self.parent.len() as u32 {
-            let root = self.find(node);
-            groups[root as usize].push(node);
-        }
-        groups.retain(|group| !group.is_empty());
-        groups
-    }
-
-    /// Whether these nodes are one whole set.
-    fn is_group(&mut self, nodes: &[u32]) -> bool {
-        let root = self.find(nodes[0]);
-        let all = (0..self.parent.len() as u32).filter(|&node| self.find(node) == root).count();
-        all == nodes.len() && nodes.iter().all(|&node| self.find(node) == root)
-    }
 }
