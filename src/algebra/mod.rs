@@ -3,10 +3,12 @@
 //!
 //! May use: nothing of this crate. Knows no circuits, no names and no units: variables are numbers.
 
+mod gcd;
 mod integer;
 pub mod modular;
 mod monomial;
 mod polynomial;
 
+pub use gcd::{gcd, gcd_all, gcd_cofactors, subresultant_gcd};
 pub use monomial::Var;
 pub use polynomial::Polynomial;

@@ -142,6 +142,18 @@ impl Polynomial {
         parts.iter().rev().fold(Self::zero(), |sum, part| &(&sum * value) + part)
     }
 
+    /// With all variables but the given ones, ascending, set to 1; terms that coincide
+    /// afterwards are added. Cost: a sort.
+    pub(crate) fn projected(&self, kept: &[Var]) -> Self {
+        let fields = self.layout.fields().iter();
+        let left = fields.filter(|field| kept.contains(&field.variable));
+        let layout = Layout::new(left.map(|field| (field.variable, field.bits)));
+        let keys: Vec<LongKey> = Packing::new(&self.layout, &layout).keys(self.len(), &self.words);
+        let mut terms: Vec<_> = keys.into_iter().zip(self.coefficients.iter().cloned()).collect();
+        terms.sort_by(|a, b| b.0.cmp(&a.0));
+        Self::from_sorted(layout, terms)
+    }
+
     /// Gives variables other names; what coincides afterwards is collected.
     pub fn renamed(&self, name: impl Fn(Var) -> Var) -> Self {
         let terms = self.coefficients.iter().enumerate().map(|(term, coefficient)| {

@@ -36,3 +36,9 @@ impl fmt::Display for Polynomial {
         Ok(())
     }
 }
+
+impl fmt::Debug for Polynomial {
+    fn fmt(&self, out: &mut fmt::Formatter<'_>) -> fmt::Result {
+        fmt::Display::fmt(self, out)
+    }
+}

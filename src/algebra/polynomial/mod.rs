@@ -23,7 +23,7 @@ use super::integer::Integer;
 use super::monomial::{Key, Layout, LongKey, Packing, Var, bits_for};
 
 /// A polynomial in any number of variables with integer coefficients.
-#[derive(Clone, Debug, PartialEq, Eq, Hash)]
+#[derive(Clone, PartialEq, Eq, Hash)]
 pub struct Polynomial {
     pub(crate) layout: Layout,
     /// `layout.words()` words for each term.
