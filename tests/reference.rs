@@ -145,3 +145,37 @@ fn every_circuit_is_asked() {
     assert_eq!(files, asked);
     assert!(sections >= 40, "{sections} checks");
 }
+
+#[test]
+fn values_that_are_off_are_refused() {
+    // 1/(1 + s)^2 with a root finder, a response and exact coefficients to get wrong.
+    let result = serde_json::json!({
+        "numeric": {"numerator": ["1"], "denominator": ["1", "2", "1"]},
+        "denominator": null,
+        "term_counts": {"numerator": ["1"], "denominator": ["2", "3", "4"]},
+    });
+    let check = |quantity: &str, published: &str, tolerance: &str, fits: bool| {
+        let outcome = quantity::judge(&result, quantity, published, tolerance);
+        assert_eq!(outcome.is_ok(), fits, "{quantity} | {published} | {tolerance}: {outcome:?}");
+    };
+    check("dc", "1", "exact", true);
+    check("2 * dc", "1", "exact", false);
+    check("high", "0", "exact", true);
+    check("delay", "2", "1e-12", true);
+    check("terms", "9", "exact", true);
+    check("terms", "10", "exact", false);
+    check("denominator", "1, 2, 1", "exact", true);
+    check("denominator", "1, 2", "exact", false);
+    check("denominator", "1, 2.001, 1", "1e-4 relative", false);
+    check("ratio", "3 over 3, 6, 3", "exact", true);
+    check("ratio", "3 over 3, 6, 4", "exact", false);
+    check("poles", "-1, -1", "1e-6", true);
+    check("poles", "-1, -1.1", "1e-6", false);
+    check("poles", "-1", "1e-6", false);
+    check("modulus at 1 rad/s", "0.5", "1e-12", true);
+    check("level at 1 rad/s re 0 Hz", "-6.02", "0.01", true);
+    check("level at 1 rad/s re 0 Hz", "-6.05", "0.01", false);
+    check("phase at 1 rad/s", "-90", "1e-9", true);
+    check("modulus at 1 rad/s", "0.51", "1 %", false);
+    check("attenuation at 1 rad/s", "0.5", "1", false);
+}
