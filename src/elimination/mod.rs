@@ -282,6 +282,16 @@ impl Elimination {
         coefficients::of(&self.diagram, &scaled, &self.level_of, roots)
     }
 
+    /// As [`Self::coefficients`], where the number of products is at most `affordable`.
+    pub fn coefficients_within(
+        &self,
+        symbol: impl Fn(Var) -> BigRational,
+        affordable: u64,
+    ) -> Option<[Vec<BigInt>; 2]> {
+        let products = coefficients::products(&self.diagram, &self.weights);
+        (products <= affordable).then(|| self.coefficients(symbol))
+    }
+
     /// The diagram as named sub-expressions.
     pub fn nested(&self) -> Nested {
         nested::of(&self.diagram, &self.weights, self.numerator, self.denominator)

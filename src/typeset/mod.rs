@@ -4,9 +4,11 @@
 //! which, what is parallel to what. The caller chooses the form and the order; a printer keeps
 //! both and adds only what its medium needs (parentheses, bars, line breaks).
 //!
-//! Nothing here knows circuits: a symbol is an index into a [`SymbolTable`].
-//! May use: [`crate::algebra`].
+//! Trees and printers know no circuits: a symbol is an index into a [`SymbolTable`]. [`shape`] makes
+//! trees from polynomials, [`answer`] puts a whole answer together.
+//! May use: [`crate::circuit`], [`crate::algebra`], [`crate::elimination`], [`crate::analysis`].
 
+pub mod answer;
 mod evaluate;
 mod formula;
 mod greek;
@@ -17,6 +19,7 @@ mod linear;
 pub mod number;
 pub mod plain;
 pub mod screen;
+pub mod shape;
 mod symbol;
 
 pub use formula::{Formula, Letter, View};

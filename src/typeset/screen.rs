@@ -60,6 +60,12 @@ impl Screen {
         line.broken(&left, indent, self.width)
     }
 
+    /// The formula on one line, however long.
+    #[must_use]
+    pub fn one_line(self, formula: &Formula, names: &SymbolTable) -> String {
+        line::Line::new(formula, names, self.medium()).broken("", 0, usize::MAX)
+    }
+
     fn medium(self) -> Medium {
         if self.ascii { Medium::Ascii } else { Medium::Unicode }
     }

@@ -61,6 +61,23 @@ pub(crate) fn scale(
     scaled
 }
 
+/// How many products of integers [`of`] takes.
+pub(crate) fn products(diagram: &Diagram, weights: &[Polynomial]) -> u64 {
+    let mut degrees: Vec<u32> = vec![0];
+    let mut products = 0_u64;
+    for node in 1..diagram.len() {
+        let mut degree = 0;
+        for edge in diagram.edges(node) {
+            let below = degrees[edge.link.node()];
+            let weight = &weights[edge.weight as usize];
+            products += u64::from(below + 1) * u64::from(weight.degree(Var::S) + 1);
+            degree = degree.max(below + weight.degree(Var::S));
+        }
+        degrees.push(degree);
+    }
+    products
+}
+
 /// Numerator and denominator, up to one common factor.
 pub(crate) fn of(
     diagram: &Diagram,

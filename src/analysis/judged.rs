@@ -1,0 +1,104 @@
+//! The closed form as the witnesses see it.
+
+use num_bigint::BigInt;
+use num_complex::Complex;
+use num_traits::ToPrimitive;
+
+use super::closed_form::ClosedForm;
+use crate::algebra::modular::{Field, primes};
+use crate::algebra::{Polynomial, Var};
+use crate::circuit::Number;
+use crate::elimination::{Elimination, Nested, NestedFactor, NestedSum, symbol_of};
+use crate::numeric::Candidate;
+
+/// Products of big integers that the exact comparison may take.
+const AFFORDABLE: u64 = 3_000_000;
+
+/// A closed form and the elimination it came from.
+///
+/// The formula itself is judged: in the prime field it is evaluated as it will be printed, expanded
+/// or nested. Only where a nested form would leave the range of a double is the diagram asked instead.
+pub(crate) struct Judged<'a> {
+    pub(crate) elimination: &'a Elimination,
+    pub(crate) form: &'a ClosedForm,
+}
+
+impl Candidate for Judged<'_> {
+    fn value_at(&self, s: Complex<f64>, symbols: &[f64]) -> Complex<f64> {
+        self.elimination.value_at(s, symbols)
+    }
+
+    fn coefficients(&self, symbols: &[Number]) -> Option<(Vec<Number>, Vec<Number>)> {
+        let value = |variable: Var| symbol_value(symbols, variable);
+        let whole = |numbers: Vec<BigInt>| numbers.into_iter().map(Number::from_integer).collect();
+        match self.form {
+            ClosedForm::Expanded(fraction) => {
+                let of = |polynomial: &Polynomial| {
+                    polynomial.coefficients(Var::S).iter().map(|p| p.evaluate(value)).collect()
+                };
+                Some((of(fraction.numerator()), of(fraction.denominator())))
+            }
+            ClosedForm::Nested(_) => {
+                let [numerator, denominator] =
+                    self.elimination.coefficients_within(value, AFFORDABLE)?;
+                Some((whole(numerator), whole(denominator)))
+            }
+        }
+    }
+
+    fn value_modulo(&self, prime: u64, s: u64, symbols: &[u64]) -> Option<u64> {
+        let field = primes().find(|field| field.modulus() == prime)?;
+        let value = |variable: Var| match symbol_of(variable) {
+            Some(symbol) => symbols[symbol.0 as usize],
+            None => s,
+        };
+        let (numerator, denominator) = match self.form {
+            ClosedForm::Expanded(fraction) => (
+                fraction.numerator().evaluate_modulo(&field, value),
+                fraction.denominator().evaluate_modulo(&field, value),
+            ),
+            ClosedForm::Nested(nested) => nested_modulo(nested, &field, &value),
+        };
+        (denominator != 0).then(|| field.mul(numerator, field.inverse(denominator)))
+    }
+}
+
+fn symbol_value(symbols: &[Number], variable: Var) -> Number {
+    symbol_of(variable)
+        .and_then(|symbol| symbols.get(symbol.0 as usize).cloned())
+        .unwrap_or_else(|| Number::from_integer(0.into()))
+}
+
+fn nested_modulo(nested: &Nested, field: &Field, value: &impl Fn(Var) -> u64) -> (u64, u64) {
+    let mut definitions: Vec<u64> = Vec::with_capacity(nested.definitions.len());
+    for definition in &nested.definitions {
+        let sum = sum_modulo(definition, field, value, &definitions);
+        definitions.push(sum);
+    }
+    (
+        sum_modulo(&nested.numerator, field, value, &definitions),
+        sum_modulo(&nested.denominator, field, value, &definitions),
+    )
+}
+
+/// Sums nest only a few levels deep: the elimination names them beyond that.
+fn sum_modulo(
+    sum: &NestedSum,
+    field: &Field,
+    value: &impl Fn(Var) -> u64,
+    definitions: &[u64],
+) -> u64 {
+    sum.terms.iter().fold(0, |total, (weight, factor)| {
+        let factor = match factor {
+            NestedFactor::One => 1,
+            NestedFactor::Definition(index) => definitions[*index],
+            NestedFactor::Sum(inner) => sum_modulo(inner, field, value, definitions),
+        };
+        field.add(total, field.mul(weight.evaluate_modulo(field, value), factor))
+    })
+}
+
+/// The nearest double of an exact number, also where its parts leave the range.
+pub(crate) fn to_f64(number: &Number) -> f64 {
+    number.to_f64().unwrap_or(f64::NAN)
+}

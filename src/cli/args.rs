@@ -1,0 +1,104 @@
+//! What was typed. Holds text and choices; opens nothing.
+
+use std::path::PathBuf;
+
+use clap::{Args, Parser, Subcommand, ValueEnum};
+
+/// Exact, closed-form answers about linear circuits.
+#[derive(Debug, Parser)]
+#[command(name = "cofactor", version, about, disable_help_subcommand = true)]
+pub(crate) struct Arguments {
+    #[command(subcommand)]
+    pub(crate) command: Command,
+}
+
+#[derive(Debug, Subcommand)]
+pub(crate) enum Command {
+    /// Closed forms, each cross-checked against a floating-point solve
+    Derive(Derive),
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Derive {
+    #[command(flatten)]
+    pub(crate) input: Input,
+    #[command(flatten)]
+    pub(crate) output: Output,
+    /// How formulas are written; by default the shortest that one would write by hand
+    #[arg(long, value_enum)]
+    pub(crate) shape: Option<ShapeName>,
+    /// Expand up to this many terms; longer formulas are nested
+    #[arg(long, value_name = "N", default_value_t = 20_000)]
+    pub(crate) max_terms: usize,
+    /// End after this many seconds with what was reached
+    #[arg(long, value_name = "SECONDS", value_parser = seconds)]
+    pub(crate) stop_after: Option<f64>,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Input {
+    /// The circuit file; `-` reads standard input
+    pub(crate) file: PathBuf,
+    /// What to derive: `V(out) / Vin`, or the name of one of the file's questions; all of them by default
+    #[arg(value_name = "QUERY")]
+    pub(crate) queries: Vec<String>,
+    /// Only these stay symbols, the rest take their numbers, exactly
+    #[arg(long, value_name = "SYMBOLS", value_delimiter = ',')]
+    pub(crate) keep: Option<Vec<String>>,
+    /// Where numbers are compared: "10 Hz to 1 MHz"
+    #[arg(long, value_name = "BAND")]
+    pub(crate) band: Option<String>,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Output {
+    /// How results are printed
+    #[arg(long, value_enum, default_value_t = Format::Text)]
+    pub(crate) format: Format,
+    /// ASCII only
+    #[arg(long)]
+    pub(crate) ascii: bool,
+    /// Colours in messages; NO_COLOR is respected
+    #[arg(long, value_enum, default_value_t = Colour::Auto)]
+    pub(crate) color: Colour,
+    /// Results only: no numbers, no evidence, no notices
+    #[arg(long)]
+    pub(crate) quiet: bool,
+}
+
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum Format {
+    /// For a terminal
+    Text,
+    /// A fragment for a document that uses amsmath
+    Latex,
+    /// For other programs
+    Json,
+}
+
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum Colour {
+    /// When a terminal reads it
+    Auto,
+    /// Always
+    Always,
+    /// Never
+    Never,
+}
+
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum ShapeName {
+    /// Numerator over denominator by powers of s
+    Powers,
+    /// Gain, power of s, and polynomials that begin with 1
+    Bode,
+    /// Named sub-expressions
+    Nested,
+}
+
+fn seconds(text: &str) -> Result<f64, String> {
+    match text.parse::<f64>() {
+        Ok(value) if value.is_finite() && value > 0.0 => Ok(value),
+        _ => Err("a number of seconds above 0 is needed".to_owned()),
+    }
+}
