@@ -9,8 +9,8 @@ mod unit;
 mod value;
 
 pub use model::{
-    Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, Node, NodeId, Quantity, Symbol,
-    SymbolId, SymbolRole, Tolerance,
+    Band, Circuit, Class, Control, Definition, Element, ElementId, GROUND, Law, Node, NodeId,
+    Quantity, Symbol, SymbolId, SymbolRole, Tolerance,
 };
 pub use question::{Ask, Drive, Probe, Transfer};
 pub use unit::Unit;
