@@ -11,8 +11,8 @@ mod unit;
 mod value;
 
 pub use model::{
-    Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, Node, NodeId, Quantity, Symbol,
-    SymbolId, SymbolRole, Tolerance,
+    Band, Circuit, Class, Control, Definition, Element, ElementId, GROUND, Law, Node, NodeId,
+    Quantity, Symbol, SymbolId, SymbolRole, Tolerance,
 };
 pub use name::compare_names;
 pub use question::{Ask, Drive, Probe, Transfer};

@@ -38,6 +38,18 @@ pub struct Circuit {
     pub asks: Vec<Ask>,
     /// Where numbers are compared, in hertz.
     pub band: Option<Band>,
+    /// Names that stand for an expression and are no symbols: matched elements, abbreviations
+    /// made by `let`, device parameters that are tied to something. Hand-derived formulas may use them.
+    pub definitions: Vec<Definition>,
+}
+
+/// A name that stands for an expression.
+#[derive(Clone, Debug)]
+pub struct Definition {
+    /// As written: `R2`, `tau`, `Q2.gm`.
+    pub name: String,
+    /// What it stands for.
+    pub value: Value,
 }
 
 /// A node and its names.

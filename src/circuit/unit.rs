@@ -65,3 +65,64 @@ impl Unit {
         self.times(other.power(-1))
     }
 }
+
+impl std::fmt::Display for Unit {
+    /// The SI name where there is one (`Ω`, `V²/Hz`), else a product of powers (`V·A⁻²·s`).
+    fn fmt(&self, out: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        const NAMES: [(Unit, &str); 12] = [
+            (Unit::ONE, "1"),
+            (Unit::OHM, "Ω"),
+            (Unit::SIEMENS, "S"),
+            (Unit::FARAD, "F"),
+            (Unit::HENRY, "H"),
+            (Unit::VOLT, "V"),
+            (Unit::AMPERE, "A"),
+            (Unit::SECOND, "s"),
+            (Unit::HERTZ, "Hz"),
+            (Unit::of(2, 0, 1), "V²/Hz"),
+            (Unit::of(0, 2, 1), "A²/Hz"),
+            (Unit { kelvin: 1, ..Unit::ONE }, "K"),
+        ];
+        if let Some((_, name)) = NAMES.iter().find(|(unit, _)| unit == self) {
+            return out.write_str(name);
+        }
+        let factors =
+            [("V", self.volt), ("A", self.ampere), ("s", self.second), ("K", self.kelvin)];
+        let mut first = true;
+        for (name, exponent) in factors.into_iter().filter(|(_, exponent)| *exponent != 0) {
+            if !first {
+                out.write_str("·")?;
+            }
+            first = false;
+            out.write_str(name)?;
+            if exponent != 1 {
+                for digit in exponent.to_string().chars() {
+                    const SUPERSCRIPTS: [char; 10] =
+                        ['⁰', '¹', '²', '³', '⁴', '⁵', '⁶', '⁷', '⁸', '⁹'];
+                    let raised =
+                        digit.to_digit(10).map_or('⁻', |value| SUPERSCRIPTS[value as usize]);
+                    write!(out, "{raised}")?;
+                }
+            }
+        }
+        Ok(())
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::Unit;
+    use pretty_assertions::assert_eq;
+
+    #[test]
+    fn units_print_by_their_si_names() {
+        let check = |unit: Unit, expected: &str| assert_eq!(unit.to_string(), expected);
+        check(Unit::ONE, "1");
+        check(Unit::OHM, "Ω");
+        check(Unit::VOLT.over(Unit::AMPERE), "Ω");
+        check(Unit::OHM.times(Unit::FARAD), "s");
+        check(Unit::VOLT.power(2).over(Unit::HERTZ), "V²/Hz");
+        check(Unit::VOLT.over(Unit::AMPERE.power(2)).times(Unit::SECOND), "V·A⁻²·s");
+        check(Unit::SECOND.power(-12), "s⁻¹²");
+    }
+}

@@ -1,4 +1,111 @@
 //! The circuit language: pest grammars, the syntax tree with spans, diagnostics, and the step from
 //! a syntax tree to a [`crate::circuit::Circuit`].
 //!
+//! The text is folded (look-alike characters become one), cut into logical lines, and each line is read by
+//! itself; names, values and units are resolved over the whole file. Nothing here panics or
+//! takes quadratic time, whatever the text.
+//!
 //! May use: [`crate::circuit`].
+
+mod ask;
+mod build;
+mod claim;
+mod definitions;
+mod devices;
+mod diagnostic;
+mod expression;
+mod fault;
+mod names;
+mod nodes;
+mod parse;
+mod quantity;
+mod source;
+mod sources;
+mod syntax;
+mod units;
+mod walks;
+
+pub use diagnostic::{Diagnostic, Label, Severity, Span, line_and_column, render};
+
+use crate::circuit::{Ask, Band, Circuit, Value};
+use build::Builder;
+use parse::{Reader, Rule};
+use source::Source;
+
+/// What was understood of a text.
+#[derive(Debug)]
+pub struct Reading {
+    /// The circuit; `None` if any diagnostic is an error.
+    pub circuit: Option<Circuit>,
+    /// What there is to say, in the order of the text.
+    pub diagnostics: Vec<Diagnostic>,
+}
+
+/// Reads a circuit file.
+pub fn read(text: &str) -> Reading {
+    let source = Source::new(text);
+    let mut faults = Vec::new();
+    let mut statements = Vec::new();
+    for line in source.logical_lines() {
+        statements.extend(parse::statement(&source, &line, &mut faults));
+    }
+    let (circuit, mut diagnostics) = Builder::new(&source, faults).build(statements);
+    diagnostics.sort_by_key(|diagnostic| (diagnostic.severity, diagnostic.span));
+    Reading { circuit, diagnostics }
+}
+
+/// Reads a query of the command line: `V(out) / Vin`, or the name of an `ask` of the file.
+///
+/// # Errors
+/// What cannot be read or is unknown; spans are places in `text`.
+pub fn query(circuit: &Circuit, text: &str) -> Result<Ask, Vec<Diagnostic>> {
+    if let Some(ask) = circuit.asks.iter().find(|ask| ask.name == text.trim()) {
+        return Ok(ask.clone());
+    }
+    let source = Source::new(text);
+    let mut faults = Vec::new();
+    let range = 0..source.text.len();
+    let read = parse::tokens(&source, &range, Rule::query_text, &mut faults)
+        .and_then(|pair| Reader { source: &source, offset: 0, faults: &mut faults }.query(pair));
+    match read {
+        Some(query) => ask::resolve(circuit, &query),
+        None => Err(faults),
+    }
+}
+
+/// Reads a band of the command line: `10 Hz to 1 MHz`.
+///
+/// # Errors
+/// What cannot be read; spans are places in `text`.
+pub fn band(text: &str) -> Result<Band, Vec<Diagnostic>> {
+    let source = Source::new(text);
+    let mut faults = Vec::new();
+    let range = 0..source.text.len();
+    let read = parse::tokens(&source, &range, Rule::band_text, &mut faults)
+        .and_then(|pair| Reader { source: &source, offset: 0, faults: &mut faults }.band(pair));
+    match read {
+        Some((from, to)) => build::make_band(&from, &to).map_err(|fault| vec![fault]),
+        None => Err(faults),
+    }
+}
+
+/// Reads an expression over the symbols of a circuit, as a claim or a printed result holds it.
+///
+/// A space multiplies. A symbol with a dot may be written by its identifier (`Q1_gm`) where nothing
+/// else bears that name; names that stand for expressions are replaced.
+///
+/// # Errors
+/// What cannot be read or is unknown; spans are places in `text`.
+pub fn parse_expression(circuit: &Circuit, text: &str) -> Result<Value, Vec<Diagnostic>> {
+    let source = Source::new(text);
+    let mut faults = Vec::new();
+    let range = 0..source.text.len();
+    let read =
+        parse::tokens(&source, &range, Rule::expression_text, &mut faults).and_then(|pair| {
+            Reader { source: &source, offset: 0, faults: &mut faults }.whole_expression(pair)
+        });
+    match read {
+        Some(expression) => claim::resolve(circuit, &expression),
+        None => Err(faults),
+    }
+}

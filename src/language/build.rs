@@ -1,0 +1,813 @@
+//! From the statements of a file to its circuit.
+//!
+//! One pass over the statements names nodes, elements and parameters and joins wired nodes; then
+//! definitions are settled, laws are made, units are solved and symbols are numbered in reference order.
+//! Questions come last: they are asked of the finished circuit.
+
+use super::ask;
+use super::definitions::{Definition, Definitions, Meaning, find_call, visit_names};
+use super::diagnostic::{Diagnostic, Severity, Span};
+use super::names::{self, is_ground, nearest};
+use super::nodes::Nodes;
+use super::source::Source;
+use super::sources::{self, Access, Term};
+use super::syntax::{
+    Content, Expression, LimitPoint, Name, Quantity, Query, Statement, StatementKind,
+};
+use super::units::UnitSolver;
+use crate::circuit::{
+    Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, NodeId, SymbolId, SymbolRole,
+    Unit, Value,
+};
+use num_traits::Signed;
+use rustc_hash::FxHashMap;
+
+/// An element before its value is known; nodes are numbers of [`Nodes`].
+#[derive(Debug)]
+pub(crate) struct Draft {
+    pub(crate) name: Name,
+    pub(crate) class: Class,
+    pub(crate) plus: usize,
+    pub(crate) minus: usize,
+    pub(crate) law: DraftLaw,
+}
+
+#[derive(Debug)]
+pub(crate) enum DraftLaw {
+    /// A two-terminal element whose value is this definition.
+    Passive(usize),
+    /// An independent source.
+    Source,
+    /// A dependent source as written; empty for 0 V and 0 A.
+    Controlled(Option<Expression>),
+    /// A dependent source of a device: the value of a definition times the voltage between two nodes.
+    ByVoltage(usize, usize, usize),
+    /// Nullator between these nodes.
+    Nullor(usize, usize),
+}
+
+/// What is being built.
+pub(crate) struct Builder<'s> {
+    pub(crate) source: &'s Source,
+    pub(crate) nodes: Nodes,
+    pub(crate) drafts: Vec<Draft>,
+    /// Elements by name.
+    pub(crate) elements: FxHashMap<String, usize>,
+    /// Devices by name.
+    pub(crate) devices: FxHashMap<String, Span>,
+    pub(crate) definitions: Definitions,
+    pub(crate) faults: Vec<Diagnostic>,
+    /// True if a line could not be read: then unknown names prove nothing.
+    pub(crate) incomplete: bool,
+    title: Option<(String, Span)>,
+    band: Option<(Band, Span)>,
+    queries: Vec<(Query, Span)>,
+    claims: Vec<(Name, Expression)>,
+}
+
+impl<'s> Builder<'s> {
+    pub(crate) fn new(source: &'s Source, faults: Vec<Diagnostic>) -> Self {
+        Self {
+            source,
+            nodes: Nodes::default(),
+            drafts: Vec::new(),
+            elements: FxHashMap::default(),
+            devices: FxHashMap::default(),
+            definitions: Definitions::default(),
+            incomplete: !faults.is_empty(),
+            faults,
+            title: None,
+            band: None,
+            queries: Vec::new(),
+            claims: Vec::new(),
+        }
+    }
+
+    /// Takes in all statements and makes the circuit; `None` if there is an error.
+    pub(crate) fn build(
+        mut self,
+        statements: Vec<Statement>,
+    ) -> (Option<Circuit>, Vec<Diagnostic>) {
+        for statement in statements {
+            self.statement(statement);
+        }
+        let circuit = self.finish();
+        let sound = !self.faults.iter().any(|fault| fault.severity == Severity::Error);
+        (circuit.filter(|_| sound), self.faults)
+    }
+
+    pub(crate) fn error(&mut self, code: &'static str, span: Span, message: impl Into<String>) {
+        self.faults.push(Diagnostic::error(code, span, message));
+    }
+
+    fn statement(&mut self, statement: Statement) {
+        let span = statement.span;
+        match statement.kind {
+            StatementKind::Title(title) => {
+                if let Some((_, first)) = &self.title {
+                    let fault = Diagnostic::error("duplicate", span, "a second title")
+                        .label(*first, "the first one");
+                    self.faults.push(fault);
+                } else {
+                    self.title = Some((title, span));
+                }
+            }
+            StatementKind::Walk(steps) => self.walk(steps),
+            StatementKind::Device(device) => self.device(device),
+            StatementKind::Let(name, value) => self.let_name(name, value),
+            StatementKind::Band(from, to) => self.band(&from, &to, span),
+            StatementKind::Ask(query) => self.queries.push((query, span)),
+            StatementKind::Claim(name, expression) => {
+                self.not_yet(span, "`claim`");
+                self.claims.push((name, expression));
+            }
+            StatementKind::Limit(name, point) => {
+                let to = if point == LimitPoint::Zero { "0" } else { "infinity" };
+                self.not_yet(span, &format!("`limit {} to {to}`", name.text));
+            }
+            StatementKind::Temperature(quantity) => {
+                if !quantity.value.is_positive() {
+                    self.error("temperature", quantity.span, "a temperature must be above 0 K");
+                }
+            }
+            StatementKind::BlockStart(block) => {
+                let [terminals, parameters] = [block.terminals.len(), block.parameters.len()];
+                let block = format!(
+                    "a block (`{}`, {terminals} terminals, {parameters} parameters)",
+                    block.name.text
+                );
+                self.not_yet(span, &block);
+                self.incomplete = true;
+            }
+            StatementKind::BlockEnd => self.not_yet(span, "`end` of a block"),
+            StatementKind::Use(device) => {
+                self.not_yet(span, &format!("`use {}`", device.kind.text));
+                self.incomplete = true;
+            }
+        }
+    }
+
+    pub(crate) fn not_yet(&mut self, span: Span, what: &str) {
+        self.error("not-yet", span, format!("{what} is not yet supported"));
+    }
+
+    fn band(&mut self, from: &Quantity, to: &Quantity, span: Span) {
+        if let Some((_, first)) = &self.band {
+            let fault = Diagnostic::error("duplicate", span, "a second band")
+                .label(*first, "the first one");
+            self.faults.push(fault);
+            return;
+        }
+        match make_band(from, to) {
+            Ok(band) => self.band = Some((band, span)),
+            Err(fault) => self.faults.push(fault),
+        }
+    }
+
+    fn let_name(&mut self, name: Name, value: Option<Content>) {
+        if self.refuse_name(&name) {
+            return;
+        }
+        if let Some(known) = self.definitions.find(&name.text) {
+            let first = self.definitions.list[known].span;
+            let fault = Diagnostic::error(
+                "duplicate",
+                name.span,
+                format!("`{}` is already defined", name.text),
+            )
+            .label(first, "here");
+            self.faults.push(fault);
+            return;
+        }
+        let (meaning, unit) = match value {
+            None => (Meaning::Symbol { nominal: None, tolerance: None }, None),
+            Some(Content::Quantity(quantity)) => (
+                Meaning::Symbol { nominal: Some(quantity.value), tolerance: quantity.tolerance },
+                quantity.unit,
+            ),
+            Some(Content::Expression(expression)) => {
+                self.refuse_call(&expression, &name.text);
+                (Meaning::Expression(expression), None)
+            }
+        };
+        self.definitions.add(Definition {
+            name: name.text,
+            span: name.span,
+            role: SymbolRole::Parameter,
+            meaning,
+            unit,
+            uses: 0,
+            implicit: false,
+            by_let: true,
+        });
+    }
+
+    /// Reports a name that cannot be given: reserved, or with a sign or a dot in it.
+    pub(crate) fn refuse_name(&mut self, name: &Name) -> bool {
+        if names::is_reserved(&name.text) {
+            self.error("reserved", name.span, format!("`{}` is a word of the language", name.text));
+            return true;
+        }
+        let good = name.text.chars().all(|c| c.is_ascii_alphanumeric() || c == '_')
+            && !name.text.starts_with(|c: char| c.is_ascii_digit());
+        if !good {
+            self.faults.push(
+                Diagnostic::error("bad-name", name.span, format!("`{}` is no name", name.text))
+                    .help("a name is made of letters, digits and `_` and begins with a letter"),
+            );
+        }
+        !good
+    }
+
+    /// Reports V(..), I(..) and other calls where only names and numbers may stand.
+    pub(crate) fn refuse_call(&mut self, expression: &Expression, owner: &str) {
+        if let Some(call) = find_call(expression) {
+            let fault = match sources::access(call) {
+                Err(fault) => fault,
+                Ok(_) => Diagnostic::error(
+                    "access",
+                    call.span,
+                    format!("the value of `{owner}` names a voltage or a current"),
+                )
+                .help(
+                    "only sources depend on others: write `current` or `voltage` before the name",
+                ),
+            };
+            self.faults.push(fault);
+        }
+    }
+
+    fn finish(&mut self) -> Option<Circuit> {
+        let terms = self.source_terms();
+        self.name_parameters(&terms);
+        let mut faults = std::mem::take(&mut self.faults);
+        self.definitions.settle(&mut faults);
+        self.faults = faults;
+        if self.faults.iter().any(|fault| fault.severity == Severity::Error) {
+            // What follows would only repeat what the first errors caused.
+            return None;
+        }
+        let units = self.solve_units(&terms);
+        let mut circuit = Circuit {
+            title: self.title.take().map(|(title, _)| title),
+            nodes: self.nodes.list(),
+            band: self.band.take().map(|(band, _)| band),
+            ..Circuit::default()
+        };
+        self.make_elements(&terms, &mut circuit);
+        self.number_symbols(&units, &mut circuit);
+        self.resolve_queries(&mut circuit);
+        self.warn(&circuit);
+        Some(circuit)
+    }
+
+    /// The sums of all dependent sources, in the order of the drafts.
+    fn source_terms(&mut self) -> Vec<Vec<Term>> {
+        let mut all = Vec::with_capacity(self.drafts.len());
+        for index in 0..self.drafts.len() {
+            let draft = &self.drafts[index];
+            let mut terms = Vec::new();
+            if let DraftLaw::Controlled(Some(expression)) = &draft.law {
+                match sources::terms(expression) {
+                    Ok(found) => terms = found,
+                    Err(fault) => {
+                        let fault = self.explain_source(expression, fault);
+                        self.faults.push(fault);
+                    }
+                }
+            }
+            all.push(terms);
+        }
+        all
+    }
+
+    /// A value like `k*Vin` is answered with `k*V(in)`.
+    fn explain_source(&self, expression: &Expression, fault: Diagnostic) -> Diagnostic {
+        let mut hint = None;
+        visit_names(expression, &mut |name, span| {
+            if hint.is_none()
+                && let Some(fault) = self.source_in_expression(name, span)
+            {
+                hint = Some(fault);
+            }
+        });
+        hint.unwrap_or(fault)
+    }
+
+    /// The error for a source's or a device's name inside an expression.
+    fn source_in_expression(&self, name: &str, span: Span) -> Option<Diagnostic> {
+        if let Some(draft) = self.elements.get(name).map(|index| &self.drafts[*index])
+            && self.definitions.find(name).is_none()
+        {
+            let plus = self.nodes.name(draft.plus);
+            let quantity = match draft.class {
+                Class::Voltage | Class::Opamp if self.nodes.is_ground(draft.minus) => {
+                    format!("V({plus})")
+                }
+                Class::Voltage | Class::Opamp => {
+                    format!("V({plus}, {})", self.nodes.name(draft.minus))
+                }
+                _ => format!("I({name})"),
+            };
+            return Some(
+                Diagnostic::error(
+                    "source-in-value",
+                    span,
+                    format!("`{name}` is a source, and a value holds symbols"),
+                )
+                .help(format!("write `{quantity}` for what it gives")),
+            );
+        }
+        self.devices.contains_key(name).then(|| {
+            Diagnostic::error("device-in-value", span, format!("`{name}` is a device"))
+                .help(format!("name one of its parameters, as in `{name}.gm`"))
+        })
+    }
+
+    /// Makes a parameter of every name that nothing defines, and counts uses.
+    fn name_parameters(&mut self, terms: &[Vec<Term>]) {
+        let mut used: Vec<(String, Span)> = Vec::new();
+        let mut note = |name: &str, span: Span| used.push((name.to_owned(), span));
+        for definition in &self.definitions.list {
+            if let Meaning::Expression(expression) = &definition.meaning {
+                visit_names(expression, &mut note);
+            }
+        }
+        for term in terms.iter().flatten() {
+            visit_names(&term.gain, &mut note);
+        }
+        for (_, claim) in &self.claims {
+            visit_names(claim, &mut |name, span| {
+                if self.definitions.find(name).is_some() {
+                    note(name, span);
+                }
+            });
+        }
+        for (name, span) in used {
+            if let Some(id) = self.definitions.find(&name) {
+                self.definitions.list[id].uses += 1;
+                continue;
+            }
+            if let Some(fault) = self.name_fault(&name, span) {
+                self.faults.push(fault);
+                continue;
+            }
+            let pi = name == "pi";
+            self.definitions.add(Definition {
+                name,
+                span,
+                role: if pi { SymbolRole::Pi } else { SymbolRole::Parameter },
+                meaning: Meaning::Symbol { nominal: None, tolerance: None },
+                unit: pi.then_some(Unit::ONE),
+                uses: 1,
+                implicit: !pi,
+                by_let: false,
+            });
+        }
+    }
+
+    /// What is wrong with a name in an expression that no definition bears.
+    fn name_fault(&self, name: &str, span: Span) -> Option<Diagnostic> {
+        if let Some(fault) = self.source_in_expression(name, span) {
+            return Some(fault);
+        }
+        if let Some((owner, parameter)) = name.split_once('.') {
+            if self.incomplete {
+                return None;
+            }
+            let fault = Diagnostic::error("unknown-name", span, format!("no `{name}` is known"));
+            let known = self.definitions.list.iter().map(|definition| definition.name.as_str());
+            return Some(match nearest(name, known.filter(|known| known.contains('.'))) {
+                Some(near) => fault.help(format!("is it `{near}`?")),
+                None if self.devices.contains_key(owner) => {
+                    fault.help(format!("`{owner}` was given no parameter `{parameter}`"))
+                }
+                None => fault.help(format!("there is no device `{owner}`")),
+            });
+        }
+        reserved_in_expression(name, span)
+    }
+
+    fn solve_units(&mut self, terms: &[Vec<Term>]) -> Vec<Unit> {
+        let mut solver = UnitSolver::new(&self.definitions);
+        solver.read_definitions();
+        for (draft, terms) in self.drafts.iter().zip(terms) {
+            let given = if draft.class == Class::Voltage { Unit::VOLT } else { Unit::AMPERE };
+            for term in terms {
+                solver.demand(&term.gain, given.over(term.access.unit()), "factor");
+            }
+        }
+        let units = (0..self.definitions.list.len()).map(|id| solver.unit(id)).collect();
+        let faults = solver.faults;
+        self.faults.extend(faults);
+        units
+    }
+
+    fn make_elements(&mut self, terms: &[Vec<Term>], circuit: &mut Circuit) {
+        let drafts = std::mem::take(&mut self.drafts);
+        for (draft, terms) in drafts.iter().zip(terms) {
+            let Some(law) = self.law(draft, terms) else { continue };
+            circuit.elements.push(Element {
+                name: draft.name.text.clone(),
+                class: draft.class,
+                plus: self.nodes.id(draft.plus),
+                minus: self.nodes.id(draft.minus),
+                law,
+                line: self.source.line(draft.name.span.start),
+            });
+        }
+        self.drafts = drafts;
+    }
+
+    fn law(&mut self, draft: &Draft, terms: &[Term]) -> Option<Law> {
+        Some(match &draft.law {
+            DraftLaw::Passive(id) => {
+                let settled = self.definitions.settled(*id)?;
+                let value = settled.value.clone();
+                let free = matches!(draft.class, Class::Impedance | Class::Admittance);
+                if settled.measure.holds_s && !free {
+                    self.faults.push(
+                        Diagnostic::error(
+                            "s-in-value",
+                            draft.name.span,
+                            format!("the value of `{}` depends on `s`", draft.name.text),
+                        )
+                        .help("an `impedance` or an `admittance` may depend on `s`"),
+                    );
+                }
+                match draft.class {
+                    Class::Inductor => Law::Impedance(times_s(value)),
+                    Class::Capacitor => Law::Admittance(times_s(value)),
+                    Class::Conductance | Class::Admittance => Law::Admittance(value),
+                    _ => Law::Impedance(value),
+                }
+            }
+            DraftLaw::Source if draft.class == Class::Voltage => Law::VoltageSource,
+            DraftLaw::Source => Law::CurrentSource,
+            DraftLaw::Nullor(a, b) => Law::Nullor(self.nodes.id(*a), self.nodes.id(*b)),
+            DraftLaw::ByVoltage(id, a, b) => {
+                let gain = self.definitions.settled(*id)?.value.clone();
+                let voltage =
+                    crate::circuit::Quantity::Voltage(self.nodes.id(*a), self.nodes.id(*b));
+                controlled(draft.class, vec![Control { gain, quantity: voltage }])
+            }
+            DraftLaw::Controlled(_) => {
+                let mut controls = Vec::with_capacity(terms.len());
+                for term in terms {
+                    let mut faults = Vec::new();
+                    let gain = self.definitions.value(&term.gain, &mut faults);
+                    self.faults.append(&mut faults);
+                    let quantity = self.quantity(&term.access);
+                    if let (Some(gain), Some(quantity)) = (gain, quantity) {
+                        controls.push(Control { gain: gain.value, quantity });
+                    }
+                }
+                controlled(draft.class, controls)
+            }
+        })
+    }
+
+    fn quantity(&mut self, access: &Access) -> Option<crate::circuit::Quantity> {
+        match access {
+            Access::Voltage(plus, minus) => {
+                let plus = self.known_node(plus)?;
+                let minus = match minus {
+                    Some(minus) => self.known_node(minus)?,
+                    None => GROUND,
+                };
+                Some(crate::circuit::Quantity::Voltage(plus, minus))
+            }
+            Access::Current(name) => {
+                if let Some(index) = self.elements.get(&name.text) {
+                    // Elements are made in the order of the drafts, one for each.
+                    return Some(crate::circuit::Quantity::Current(ElementId(
+                        u32::try_from(*index).ok()?,
+                    )));
+                }
+                let known = self.elements.keys().map(String::as_str);
+                let near = nearest(&name.text, known).map(str::to_owned);
+                let device = self.devices.contains_key(&name.text);
+                self.faults.push(ask::unknown_element(name, near.as_deref(), device));
+                None
+            }
+        }
+    }
+
+    fn known_node(&mut self, name: &Name) -> Option<NodeId> {
+        if let Some(node) = self.nodes.find(&name.text) {
+            return Some(self.nodes.id(node));
+        }
+        let near = nearest(&name.text, self.nodes.names()).map(str::to_owned);
+        self.faults.push(ask::unknown_node(name, near.as_deref()));
+        None
+    }
+
+    /// Lists the symbols that occur, in reference order, and renumbers the values.
+    fn number_symbols(&self, units: &[Unit], circuit: &mut Circuit) {
+        let mut occurs = vec![false; self.definitions.list.len()];
+        for value in values(circuit) {
+            mark(value, &mut occurs);
+        }
+        let mut order: Vec<usize> = (0..occurs.len()).filter(|id| occurs[*id]).collect();
+        order.sort_by_cached_key(|id| {
+            let definition = &self.definitions.list[*id];
+            (definition.role, names::natural_key(&definition.name))
+        });
+        let mut numbers = vec![None; occurs.len()];
+        for (number, id) in order.iter().enumerate() {
+            let definition = &self.definitions.list[*id];
+            numbers[*id] = u32::try_from(number).ok().map(SymbolId);
+            let Meaning::Symbol { nominal, tolerance } = &definition.meaning else { continue };
+            circuit.symbols.push(crate::circuit::Symbol {
+                name: definition.name.clone(),
+                role: definition.role,
+                unit: units[*id],
+                nominal: nominal.clone(),
+                tolerance: tolerance.clone(),
+            });
+        }
+        for (id, definition) in self.definitions.list.iter().enumerate() {
+            let Meaning::Expression(_) = definition.meaning else { continue };
+            let Some(settled) = self.definitions.settled(id) else { continue };
+            if all_occur(&settled.value, &occurs) {
+                circuit.definitions.push(crate::circuit::Definition {
+                    name: definition.name.clone(),
+                    value: settled.value.clone(),
+                });
+            }
+        }
+        for value in values_mut(circuit) {
+            renumber(value, &numbers);
+        }
+    }
+
+    fn resolve_queries(&mut self, circuit: &mut Circuit) {
+        let mut asks = Vec::new();
+        let mut names: FxHashMap<String, Span> = FxHashMap::default();
+        for (query, span) in std::mem::take(&mut self.queries) {
+            let name = &query.name;
+            if self.refuse_name(name) {
+                continue;
+            }
+            let taken = circuit.symbol(&name.text).is_some()
+                || circuit.element(&name.text).is_some()
+                || self.definitions.find(&name.text).is_some();
+            if taken {
+                self.faults.push(
+                    Diagnostic::error(
+                        "ask-name",
+                        name.span,
+                        format!("`{}` already names something of the circuit", name.text),
+                    )
+                    .help("give the result another name"),
+                );
+                continue;
+            }
+            if let Some(first) = names.insert(name.text.clone(), name.span) {
+                self.faults.push(
+                    Diagnostic::error(
+                        "duplicate",
+                        name.span,
+                        format!("a second `ask {}`", name.text),
+                    )
+                    .label(first, "the first one"),
+                );
+                continue;
+            }
+            match ask::resolve(circuit, &query) {
+                Ok(mut found) => {
+                    found.line = self.source.line(span.start);
+                    asks.push(found);
+                }
+                Err(faults) => self.faults.extend(faults),
+            }
+        }
+        circuit.asks = asks;
+    }
+
+    fn warn(&mut self, circuit: &Circuit) {
+        let mut warnings = Vec::new();
+        let declared: Vec<&str> = self
+            .definitions
+            .list
+            .iter()
+            .filter(|definition| !definition.implicit || definition.uses > 1)
+            .map(|definition| definition.name.as_str())
+            .collect();
+        for definition in &self.definitions.list {
+            let name = &definition.name;
+            if definition.implicit && definition.uses == 1 {
+                if let Some(near) = nearest(name, declared.iter().copied()) {
+                    warnings.push(
+                        Diagnostic::warning(
+                            "near-miss",
+                            definition.span,
+                            format!("`{name}` is used once and declared nowhere"),
+                        )
+                        .help(format!("is it `{near}`? If not, declare it: `let {name}`")),
+                    );
+                }
+            } else if definition.by_let && definition.uses == 0 {
+                warnings.push(
+                    Diagnostic::warning(
+                        "unused",
+                        definition.span,
+                        format!("`{name}` is declared and never used"),
+                    )
+                    .help("remove the line, or use the name"),
+                );
+            }
+        }
+        self.warn_open_ends(circuit, &mut warnings);
+        self.faults.append(&mut warnings);
+    }
+
+    /// An element with one end on nothing else does nothing, unless that node is asked for.
+    fn warn_open_ends(&self, circuit: &Circuit, warnings: &mut Vec<Diagnostic>) {
+        let mut touched = vec![0_u32; circuit.nodes.len()];
+        let mut touch = |node: NodeId, times: u32| touched[node.0 as usize] += times;
+        touch(GROUND, 2);
+        for element in &circuit.elements {
+            touch(element.plus, 1);
+            touch(element.minus, 1);
+            match &element.law {
+                Law::Nullor(a, b) => {
+                    touch(*a, 1);
+                    touch(*b, 1);
+                }
+                Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls) => {
+                    for control in controls {
+                        if let crate::circuit::Quantity::Voltage(a, b) = control.quantity {
+                            touch(a, 1);
+                            touch(b, 1);
+                        }
+                    }
+                }
+                _ => {}
+            }
+        }
+        for node in circuit.asks.iter().flat_map(ask::nodes) {
+            touch(node, 2);
+        }
+        for (element, draft) in circuit.elements.iter().zip(&self.drafts) {
+            // A transistor tied as a diode has such parts by right.
+            if element.name.contains('.') {
+                continue;
+            }
+            if element.plus == element.minus {
+                warnings.push(Diagnostic::warning(
+                    "both-ends",
+                    draft.name.span,
+                    format!("both ends of `{}` are on one node", element.name),
+                ));
+                continue;
+            }
+            for node in [element.plus, element.minus] {
+                if touched[node.0 as usize] == 1 {
+                    warnings.push(Diagnostic::warning(
+                        "open-end",
+                        draft.name.span,
+                        format!(
+                            "nothing else is tied to `{}` at node `{}`",
+                            element.name, circuit[node].name
+                        ),
+                    ));
+                }
+            }
+        }
+    }
+}
+
+/// The messages for names that other notations give a meaning.
+pub(crate) fn reserved_in_expression(name: &str, span: Span) -> Option<Diagnostic> {
+    let fault = |what: &str, help: &str| {
+        Some(Diagnostic::error("reserved", span, what.to_owned()).help(help))
+    };
+    match name {
+        "j" | "jw" | "jomega" => fault(
+            "the imaginary unit is no part of an expression",
+            "write `s` for the complex frequency (s = jω on the axis)",
+        ),
+        "w" | "omega" => fault(
+            "the angular frequency is no part of an expression",
+            "write `s` for the complex frequency (s = jω on the axis), or `let` with another name",
+        ),
+        "V" | "I" => fault(
+            "a voltage or a current needs its place in parentheses",
+            "write `V(node)`, `V(a, b)` or `I(element)`",
+        ),
+        _ if is_ground(name) || names::is_reserved(name) => {
+            fault(&format!("`{name}` is a word of the language"), "choose another name")
+        }
+        _ => None,
+    }
+}
+
+/// A band from its ends.
+///
+/// # Errors
+/// A diagnostic if a unit is not hertz, or the ends are not in order.
+pub(crate) fn make_band(from: &Quantity, to: &Quantity) -> Result<Band, Diagnostic> {
+    for end in [from, to] {
+        if end.unit.is_some_and(|unit| unit != Unit::HERTZ) {
+            return Err(Diagnostic::error("wrong-unit", end.span, "a band is given in hertz"));
+        }
+        if end.tolerance.is_some() {
+            return Err(Diagnostic::error("band", end.span, "a band has no tolerance"));
+        }
+        if !end.value.is_positive() {
+            return Err(Diagnostic::error("band", end.span, "a band begins above 0 Hz"));
+        }
+    }
+    if from.value >= to.value {
+        return Err(Diagnostic::error(
+            "band",
+            from.span.join(to.span),
+            "a band goes from a lower to a higher frequency",
+        ));
+    }
+    Ok(Band { from: from.value.clone(), to: to.value.clone() })
+}
+
+fn controlled(class: Class, controls: Vec<Control>) -> Law {
+    if class == Class::Voltage {
+        Law::ControlledVoltage(controls)
+    } else {
+        Law::ControlledCurrent(controls)
+    }
+}
+
+/// `s` times a value, flat.
+fn times_s(value: Value) -> Value {
+    match value {
+        Value::Product(mut factors) => {
+            factors.insert(0, Value::S);
+            Value::Product(factors)
+        }
+        other => Value::Product(vec![Value::S, other]),
+    }
+}
+
+/// All values of a circuit's elements.
+fn values(circuit: &Circuit) -> impl Iterator<Item = &Value> {
+    circuit.elements.iter().flat_map(|element| -> Vec<&Value> {
+        match &element.law {
+            Law::Impedance(value) | Law::Admittance(value) => vec![value],
+            Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls) => {
+                controls.iter().map(|control| &control.gain).collect()
+            }
+            _ => Vec::new(),
+        }
+    })
+}
+
+fn values_mut(circuit: &mut Circuit) -> impl Iterator<Item = &mut Value> {
+    let elements = circuit.elements.iter_mut().flat_map(|element| -> Vec<&mut Value> {
+        match &mut element.law {
+            Law::Impedance(value) | Law::Admittance(value) => vec![value],
+            Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls) => {
+                controls.iter_mut().map(|control| &mut control.gain).collect()
+            }
+            _ => Vec::new(),
+        }
+    });
+    elements.chain(circuit.definitions.iter_mut().map(|definition| &mut definition.value))
+}
+
+/// Calls `visit` for every symbol of a value.
+fn visit_symbols(value: &Value, visit: &mut impl FnMut(SymbolId)) {
+    match value {
+        Value::Number(_) | Value::S => {}
+        Value::Symbol(id) => visit(*id),
+        Value::Sum(list) | Value::Product(list) | Value::Parallel(list) => {
+            list.iter().for_each(|child| visit_symbols(child, visit));
+        }
+        Value::Power(inner, _) | Value::Negative(inner) => visit_symbols(inner, visit),
+    }
+}
+
+fn mark(value: &Value, occurs: &mut [bool]) {
+    visit_symbols(value, &mut |id| occurs[id.0 as usize] = true);
+}
+
+fn renumber(value: &mut Value, numbers: &[Option<SymbolId>]) {
+    match value {
+        Value::Number(_) | Value::S => {}
+        Value::Symbol(id) => {
+            if let Some(number) = numbers[id.0 as usize] {
+                *id = number;
+            }
+        }
+        Value::Sum(list) | Value::Product(list) | Value::Parallel(list) => {
+            list.iter_mut().for_each(|child| renumber(child, numbers));
+        }
+        Value::Power(inner, _) | Value::Negative(inner) => renumber(inner, numbers),
+    }
+}
+
+/// True if all symbols of a value occur.
+fn all_occur(value: &Value, occurs: &[bool]) -> bool {
+    let mut all = true;
+    visit_symbols(value, &mut |id| all &= occurs[id.0 as usize]);
+    all
+}
