@@ -1,3 +1,9 @@
 //! The program: arguments in, results out.
 
-fn main() {}
+mod cli;
+
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    cli::run()
+}

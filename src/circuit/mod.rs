@@ -7,6 +7,7 @@ pub mod graph;
 mod model;
 mod name;
 mod question;
+mod substitute;
 mod unit;
 mod value;
 

@@ -3,10 +3,12 @@
 
 mod evidence;
 mod json;
+mod latex;
 mod text;
 
 pub use evidence::evidence;
 pub use json::{result, symbols, warning};
+pub use latex::latex;
 pub use text::{TextStyle, text};
 
 use super::shape::{Layered, Lettering, Shape, write};

@@ -1,0 +1,195 @@
+//! `cofactor derive`: closed forms with their evidence.
+
+use std::sync::mpsc;
+use std::time::{Duration, Instant};
+
+use cofactor::analysis::{self, AnalysisError, ClosedForm, Derivation, Options, total};
+use cofactor::circuit::{Ask, Circuit};
+use cofactor::language::{Severity, line_and_column};
+use cofactor::typeset::answer::{self, Answer, TextStyle};
+use cofactor::typeset::json;
+use cofactor::typeset::latex::Latex;
+use cofactor::typeset::screen::Screen;
+use cofactor::typeset::shape::Shape;
+
+use super::args::{Derive, Format, ShapeName};
+use super::failure::Failure;
+use super::input::{self, Loaded};
+use super::messages::Messages;
+use super::{STACK, width, write_results};
+
+/// Runs the command; the exit code is 0, or 1 when a witness disagrees.
+pub(crate) fn run(arguments: &Derive, messages: &Messages) -> Result<u8, Failure> {
+    let loaded = input::load(&arguments.input, messages)?;
+    let shape = match arguments.shape {
+        None => Shape::Compact,
+        Some(ShapeName::Powers) => Shape::Powers,
+        Some(ShapeName::Bode) => Shape::Bode,
+        Some(ShapeName::Nested) => Shape::Nested,
+    };
+    let options = Options { max_terms: arguments.max_terms, ..Options::default() };
+    let mut printer = Printer { arguments, messages, loaded: &loaded, shape, results: Vec::new(), warnings: Vec::new(), passed: true, printed: 0 };
+    let outcome = answers(&loaded, options, arguments.stop_after, &mut |ask, derivations| {
+        printer.take(ask, derivations)
+    });
+    // What was reached is printed, whatever came afterwards.
+    printer.finish()?;
+    outcome?;
+    Ok(u8::from(!printer.passed))
+}
+
+/// Answers the questions one after the other; under a deadline in a thread that is left behind.
+fn answers(
+    loaded: &Loaded,
+    options: Options,
+    stop_after: Option<f64>,
+    take: &mut dyn FnMut(&Ask, &[Derivation]) -> Result<(), Failure>,
+) -> Result<(), Failure> {
+    let Some(seconds) = stop_after else {
+        for ask in &loaded.asks {
+            take(ask, &derive(&loaded.circuit, ask, &options)?)?;
+        }
+        return Ok(());
+    };
+    let deadline = Instant::now() + Duration::from_secs_f64(seconds.min(1e9));
+    let (sender, receiver) = mpsc::channel();
+    let (circuit, asks) = (loaded.circuit.clone(), loaded.asks.clone());
+    let worker = std::thread::Builder::new().stack_size(STACK).spawn(move || {
+        for ask in &asks {
+            if sender.send(derive(&circuit, ask, &options)).is_err() {
+                return;
+            }
+        }
+    });
+    worker.map_err(|error| Failure::output(&error))?;
+    for ask in &loaded.asks {
+        let left = deadline.saturating_duration_since(Instant::now());
+        match receiver.recv_timeout(left) {
+            Ok(derivations) => take(ask, &derivations?)?,
+            Err(_) => {
+                return Err(Failure::bound(
+                    "time",
+                    format!("{}: not finished after {seconds} s", ask.name),
+                    "give more time, or put numbers in with `--keep`",
+                ));
+            }
+        }
+    }
+    Ok(())
+}
+
+fn derive(circuit: &Circuit, ask: &Ask, options: &Options) -> Result<Vec<Derivation>, Failure> {
+    ask.transfers
+        .iter()
+        .map(|transfer| analysis::derive(circuit, transfer, options))
+        .collect::<Result<_, AnalysisError>>()
+        .map_err(|error| Failure::analysis(&ask.name, &error))
+}
+
+struct Printer<'a> {
+    arguments: &'a Derive,
+    messages: &'a Messages,
+    loaded: &'a Loaded,
+    shape: Shape,
+    /// Under JSON everything is printed at the end.
+    results: Vec<json::Result>,
+    warnings: Vec<json::Warning>,
+    passed: bool,
+    printed: usize,
+}
+
+impl Printer<'_> {
+    /// Prints one answer, or keeps it for the end.
+    fn take(&mut self, ask: &Ask, derivations: &[Derivation]) -> Result<(), Failure> {
+        self.check_shape(ask, derivations)?;
+        let answer =
+            Answer { circuit: &self.loaded.circuit, ask, derivations, shape: self.shape };
+        for derivation in derivations {
+            self.passed &= derivation.evidence.passed();
+            for notice in &derivation.notices {
+                self.messages.notice(&ask.name, notice);
+                self.warnings.push(answer::warning(notice));
+            }
+        }
+        let output = &self.arguments.output;
+        match output.format {
+            Format::Json => self.results.push(answer::result(&answer)),
+            Format::Text => {
+                let screen = Screen { width: width(Format::Text), ascii: output.ascii };
+                let style = TextStyle { screen, quiet: output.quiet };
+                let mut text = String::new();
+                if self.printed == 0 && !output.quiet {
+                    if let Some(title) = &self.loaded.circuit.title {
+                        text.push_str(title);
+                        text.push_str("\n\n");
+                    }
+                } else if self.printed > 0 {
+                    text.push('\n');
+                }
+                text.push_str(&answer::text(&answer, style));
+                write_results(&text)?;
+            }
+            Format::Latex => write_results(&answer::latex(&answer))?,
+        }
+        self.printed += 1;
+        Ok(())
+    }
+
+    /// A shape that needs the expansion is refused where that is too long.
+    fn check_shape(&self, ask: &Ask, derivations: &[Derivation]) -> Result<(), Failure> {
+        if !matches!(self.shape, Shape::Powers | Shape::Bode) {
+            return Ok(());
+        }
+        for derivation in derivations {
+            if let ClosedForm::Nested(_) = derivation.form {
+                let about = if derivation.counts.exact { "" } else { "up to " };
+                return Err(Failure::bound(
+                    "terms",
+                    format!(
+                        "{}: this shape needs the expansion, which has {about}{} terms, more than \
+                         the {} that `--max-terms` allows",
+                        ask.name,
+                        total(&derivation.counts),
+                        self.arguments.max_terms
+                    ),
+                    "use the nested shape, allow more terms, or put numbers in with `--keep`",
+                ));
+            }
+        }
+        Ok(())
+    }
+
+    fn finish(&mut self) -> Result<(), Failure> {
+        if self.arguments.output.format != Format::Json {
+            return Ok(());
+        }
+        let loaded = self.loaded;
+        let remarks = loaded.remarks.iter().map(|diagnostic| {
+            let (line, column) = line_and_column(&loaded.text, diagnostic.span.start);
+            debug_assert!(diagnostic.severity != Severity::Error, "errors end the run before");
+            json::Warning {
+                code: diagnostic.code.to_owned(),
+                message: diagnostic.message.clone(),
+                line: Some(line),
+                column: Some(column),
+            }
+        });
+        let mut warnings: Vec<json::Warning> = remarks.collect();
+        for warning in std::mem::take(&mut self.warnings) {
+            if !warnings.contains(&warning) {
+                warnings.push(warning);
+            }
+        }
+        let whole = json::Derive {
+            schema: json::DERIVE_SCHEMA,
+            circuit: loaded.circuit.title.clone(),
+            symbols: answer::symbols(&loaded.circuit),
+            results: std::mem::take(&mut self.results),
+            warnings,
+        };
+        let mut text = serde_json::to_string_pretty(&whole)
+            .map_err(|error| Failure::output(&error.into()))?;
+        text.push('\n');
+        write_results(&text)
+    }
+}
