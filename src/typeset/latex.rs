@@ -74,7 +74,7 @@ impl Latex<'_> {
                 out.push_str("\\begin{aligned}\n");
                 out.push_str(left);
                 out.push_str(" &= ");
-                let pieces = writer.rows(terms, " \\\\\n&\\quad ");
+                let pieces = writer.rows(terms, " \\\\\n&\\quad");
                 writer.write(&mut out, pieces).map(|()| out.push_str("\n\\end{aligned}"))
             }
             _ => {

@@ -33,14 +33,14 @@ fn second_order() -> Formula {
 
 #[track_caller]
 fn check(formula: Formula, width: usize, expected: Expect) {
-    let text = Screen { width, ascii: false }.equation("H", &formula, &names());
+    let text = Screen { width, characters: Characters::Unicode }.equation("H", &formula, &names());
     assert!(text.lines().all(|line| line.width() <= width), "too wide:\n{text}");
     expected.assert_eq(&text);
 }
 
 #[track_caller]
 fn check_ascii(formula: Formula, width: usize, expected: Expect) {
-    let text = Screen { width, ascii: true }.equation("H", &formula, &names());
+    let text = Screen { width, characters: Characters::Ascii }.equation("H", &formula, &names());
     assert!(text.is_ascii());
     assert!(text.lines().all(|line| line.width() <= width), "too wide:\n{text}");
     expected.assert_eq(&text);
@@ -73,6 +73,7 @@ fn fractions_have_bars() {
                    R1"#]],
     );
 }
+
 #[test]
 fn short_inner_fractions_stay_in_line() {
     let pole = Formula::sum([n(1), Formula::quotient(Formula::s(), x(7))]);
@@ -221,7 +222,11 @@ fn a_wide_denominator_is_broken_under_its_bar() {
 
 #[test]
 fn without_room_it_sticks_out() {
-    let text = Screen { width: 3, ascii: false }.equation("H(s)", &second_order(), &names());
+    let text = Screen { width: 3, characters: Characters::Unicode }.equation(
+        "H(s)",
+        &second_order(),
+        &names(),
+    );
     expect![[r#"
         H(s) = 1
             + s
@@ -234,7 +239,8 @@ fn without_room_it_sticks_out() {
             ·C1
             ·C2"#]]
     .assert_eq(&text);
-    let text = Screen { width: 0, ascii: true }.equation("", &Formula::s(), &names());
+    let text =
+        Screen { width: 0, characters: Characters::Ascii }.equation("", &Formula::s(), &names());
     assert_eq!(text, "s");
 }
 
@@ -244,10 +250,10 @@ fn deep_and_long_formulas_are_lines() {
     for _ in 0..50_000 {
         deep = Formula::quotient(n(1), Formula::sum([x(1), deep]));
     }
-    let text = Screen { width: 80, ascii: false }.equation("Z", &deep, &names());
+    let text = Screen { width: 80, characters: Characters::Unicode }.equation("Z", &deep, &names());
     // Only the closing parentheses at the end cannot be broken.
     assert_eq!(text.lines().filter(|line| line.width() > 80).count(), 1);
     let long = Formula::sum((0..50_000).map(|index| product([x(index % 8), Formula::s()])));
-    let text = Screen { width: 80, ascii: false }.equation("Z", &long, &names());
+    let text = Screen { width: 80, characters: Characters::Unicode }.equation("Z", &long, &names());
     assert!(text.lines().all(|line| line.width() <= 80));
 }
