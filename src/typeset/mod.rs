@@ -4,6 +4,16 @@
 //! which, what is parallel to what. The caller chooses the form and the order; a printer keeps
 //! both and adds only what its medium needs (parentheses, bars, line breaks).
 //!
+//! ```
+//! use cofactor::typeset::{Dialect, Formula, SymbolTable, plain};
+//!
+//! let names = SymbolTable::new(["R1", "C1"]);
+//! let time_constant = Formula::product([Formula::s(), Formula::symbol(0), Formula::symbol(1)]);
+//! let pole = Formula::sum([Formula::integer(1), time_constant]);
+//! let low_pass = Formula::quotient(Formula::integer(1), pole);
+//! assert_eq!(plain::text(&low_pass, &names, Dialect::Expression), "1/(1 + s*R1*C1)");
+//! ```
+//!
 //! Nothing here knows circuits: a symbol is an index into a [`SymbolTable`].
 //! May use: [`crate::algebra`].
 
@@ -16,6 +26,8 @@ mod latex_name;
 mod linear;
 pub mod number;
 pub mod plain;
+#[cfg(test)]
+mod random;
 pub mod screen;
 mod symbol;
 

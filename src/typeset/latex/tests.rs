@@ -1,8 +1,10 @@
 //! LaTeX as written. Each expected text was typeset once by KaTeX with errors on.
 
 use expect_test::{Expect, expect};
+use proptest::prelude::*;
 
 use super::*;
+use crate::typeset::random::tree;
 
 fn names() -> SymbolTable {
     SymbolTable::new(["R1", "R2", "C1", "C2", "tau", "Q1.rpi", "U1.gain", "wp"])
@@ -159,4 +161,18 @@ fn deep_and_long_formulas() {
     assert!(latex.text(&deep).starts_with(r"\frac{1}{\begin{aligned}"));
     let long = Formula::sum((0..100_000).map(|index| product([x(index % 8), Formula::s()])));
     assert_eq!(latex.text(&long).matches(" + ").count(), 99_999);
+}
+
+proptest! {
+    #[test]
+    fn groups_are_balanced(formula in tree(), width in 1_usize..30) {
+        let text = Latex { names: &names(), width }.equation("H", &formula);
+        let count = |part: &str| text.matches(part).count();
+        prop_assert_eq!(count("{"), count("}"));
+        prop_assert_eq!(count("("), count(")"));
+        prop_assert_eq!(count("\\left("), count("\\right)"));
+        prop_assert_eq!(count("\\begin{"), count("\\end{"));
+        // A second script of the same kind on one base is an error in TeX.
+        prop_assert_eq!(count("}^{2}^{"), 0);
+    }
 }

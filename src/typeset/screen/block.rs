@@ -190,7 +190,10 @@ impl Setter<'_> {
                 self.negative(operand)
             }
             View::Product(factors) => {
-                let factors = factors.iter().map(|factor| self.set(factor, Binding::Product, bars));
+                let last = factors.len() - 1;
+                let factors = factors.iter().enumerate().map(|(index, factor)| {
+                    self.set(factor, linear::factor_binding(factor, index == last), bars)
+                });
                 let (tight, wide) =
                     (self.characters.choose("·", "*"), self.characters.choose(" · ", " * "));
                 joined(factors, |a, b| if a.height().max(b.height()) > 1 { wide } else { tight })

@@ -1,9 +1,11 @@
 //! Layouts as they appear, and their widths.
 
 use expect_test::{Expect, expect};
+use proptest::prelude::*;
 use unicode_width::UnicodeWidthStr;
 
 use super::*;
+use crate::typeset::random::tree;
 
 fn names() -> SymbolTable {
     SymbolTable::new(["R1", "R2", "C1", "C2", "tau", "β", "A0", "wp"])
@@ -256,4 +258,28 @@ fn deep_and_long_formulas_are_lines() {
     let long = Formula::sum((0..50_000).map(|index| product([x(index % 8), Formula::s()])));
     let text = Screen { width: 80, characters: Characters::Unicode }.equation("Z", &long, &names());
     assert!(text.lines().all(|line| line.width() <= 80));
+}
+
+proptest! {
+    #[test]
+    fn broken_lines_hold_the_whole_line(formula in tree(), width in 10_usize..60) {
+        for characters in [Characters::Unicode, Characters::Ascii] {
+            let line = line::Line::new(&formula, &names(), characters);
+            let broken = line.broken("", 2, width);
+            let squeezed = |text: &str| text.split_whitespace().collect::<String>();
+            prop_assert_eq!(squeezed(&broken), squeezed(&line.into_text()));
+        }
+    }
+
+    #[test]
+    fn layouts_keep_to_the_width(formula in tree(), width in 40_usize..120) {
+        let text = Screen { width, characters: Characters::Ascii }.equation("H", &formula, &names());
+        prop_assert!(text.is_ascii());
+        // What cannot be broken: a number, or a run of parentheses.
+        let sticks_out = |line: &str| {
+            width < line.width() && line.split_whitespace().all(|word| word.width() + 12 < width)
+        };
+        prop_assert!(!text.lines().any(sticks_out), "{}", text);
+        prop_assert!(text.lines().all(|line| !line.ends_with(' ')), "{}", text);
+    }
 }
