@@ -194,9 +194,9 @@ impl Decimal {
         Self { negative, digits, exponent }
     }
 
-    /// Rounds half to even; `digits` below 1 counts as 1.
+    /// Rounds half to even, to 1 to 1000 digits.
     fn round(value: &BigRational, digits: u32) -> Self {
-        let digits = i64::from(digits.max(1));
+        let digits = i64::from(digits.clamp(1, 1000));
         let magnitude = value.abs();
         if magnitude.is_zero() {
             return Self::from_integer(false, magnitude.numer(), 0);

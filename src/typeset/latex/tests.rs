@@ -123,9 +123,8 @@ fn parallels() {
 
 #[test]
 fn long_sums_are_aligned() {
-    let narrow = Latex { names: &names(), width: 10 };
     let names = names();
-    let narrow = Latex { names: &names, ..narrow };
+    let narrow = Latex { names: &names, width: 10 };
     expect![[r#"
         \frac{1}{\begin{aligned}
         &1 + s\,C_{2}\,(R_{1} + R_{2}) \\
@@ -146,6 +145,13 @@ fn long_sums_are_aligned() {
         & + R_{2}
         \end{aligned}\right)"#]]
     .assert_eq(&narrow.equation("D", &product([x(2), difference])));
+    let power = Formula::power(product([x(2), second_order()]), 2);
+    expect![[r#"
+        \left(C_{1} \left(\begin{aligned}
+        &1 + s\,C_{2}\,(R_{1} + R_{2}) \\
+        & + s^{2}\,R_{1}\,R_{2}\,C_{1}\,C_{2}
+        \end{aligned}\right)\right)^{2}"#]]
+    .assert_eq(&narrow.text(&power));
     expect!["R = R_{1} - R_{2}"]
         .assert_eq(&narrow.equation("R", &Formula::sum([x(0), x(1).negative()])));
 }
