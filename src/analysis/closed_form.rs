@@ -43,7 +43,7 @@ pub fn close(elimination: &Elimination, max_terms: usize) -> Closed {
     let allowed = if counts.exact { max_terms } else { max_terms.saturating_mul(30) };
     if products <= BigUint::from(allowed) {
         let (numerator, denominator) = elimination.expand();
-        if let Some(fraction) = Fraction::new(numerator, denominator) {
+        if let Some(fraction) = Fraction::new(&numerator, &denominator) {
             let counts = counted(&fraction);
             if fraction.numerator().len() + fraction.denominator().len() <= max_terms {
                 return Closed { form: ClosedForm::Expanded(fraction), counts };

@@ -9,7 +9,7 @@ use cofactor::language::{Severity, line_and_column};
 use cofactor::typeset::answer::{self, Answer, TextStyle};
 use cofactor::typeset::json;
 use cofactor::typeset::latex::Latex;
-use cofactor::typeset::screen::Screen;
+use cofactor::typeset::screen::{Characters, Screen};
 use cofactor::typeset::shape::Shape;
 
 use super::args::{Derive, Format, ShapeName};
@@ -92,7 +92,7 @@ struct Printer<'a> {
     loaded: &'a Loaded,
     shape: Shape,
     /// Under JSON everything is printed at the end.
-    results: Vec<json::Result>,
+    results: Vec<json::DeriveResult>,
     warnings: Vec<json::Warning>,
     passed: bool,
     printed: usize,
@@ -115,7 +115,9 @@ impl Printer<'_> {
         match output.format {
             Format::Json => self.results.push(answer::result(&answer)),
             Format::Text => {
-                let screen = Screen { width: width(Format::Text), ascii: output.ascii };
+                let characters =
+                    if output.ascii { Characters::Ascii } else { Characters::Unicode };
+                let screen = Screen { width: width(Format::Text), characters };
                 let style = TextStyle { screen, quiet: output.quiet };
                 let mut text = String::new();
                 if self.printed == 0 && !output.quiet {

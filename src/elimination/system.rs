@@ -233,7 +233,8 @@ impl<'c> Builder<'c> {
         let pair = self.own_pair(id);
         let is_impedance = matches!(self.circuit[id].law, Law::Impedance(_));
         let mirrors = self.mirrors.remove(&id);
-        if is_impedance && value.is_zero() {
+        let admittance = if is_impedance { value.recip() } else { Some(value) };
+        let Some(admittance) = admittance else {
             // 0 Ω: a short; its current is no function of its voltage.
             let port = mirrors_of_short(pair, mirrors.as_deref().unwrap_or_default());
             let mut origin = vec![id];
@@ -242,8 +243,7 @@ impl<'c> Builder<'c> {
                 self.push(port.choice(), origin, false);
             }
             return Ok(());
-        }
-        let admittance = if is_impedance { value.pow(-1) } else { value };
+        };
         match mirrors {
             Some(mirrors) => {
                 let mut origin = vec![id];

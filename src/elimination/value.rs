@@ -21,7 +21,9 @@ pub struct DividesByZero;
 pub fn fraction_of(value: &Value) -> Result<Fraction, DividesByZero> {
     let all = |values: &[Value]| values.iter().map(fraction_of).collect::<Result<Vec<_>, _>>();
     Ok(match value {
-        Value::Number(number) => Fraction::from_rational(number),
+        Value::Number(number) => {
+            Fraction::ratio(number.numer().clone(), number.denom().clone()).ok_or(DividesByZero)?
+        }
         Value::Symbol(symbol) => Fraction::from(Polynomial::variable(variable_of(*symbol))),
         Value::S => Fraction::from(Polynomial::variable(Var::S)),
         Value::Sum(terms) => {
@@ -32,24 +34,18 @@ pub fn fraction_of(value: &Value) -> Result<Fraction, DividesByZero> {
         }
         Value::Negative(inner) => -&fraction_of(inner)?,
         Value::Power(base, exponent) => {
-            let base = fraction_of(base)?;
-            if *exponent < 0 && base.is_zero() {
-                return Err(DividesByZero);
-            }
-            base.pow(*exponent)
+            let power = fraction_of(base)?.pow(exponent.unsigned_abs());
+            if *exponent < 0 { power.recip().ok_or(DividesByZero)? } else { power }
         }
         Value::Parallel(parts) => {
             let parts = all(parts)?;
             // One part that is 0 shorts the others; the formula's reciprocals would not exist.
-            if parts.iter().any(Fraction::is_zero) {
+            let Some(reciprocals) = parts.iter().map(Fraction::recip).collect::<Option<Vec<_>>>()
+            else {
                 return Ok(Fraction::zero());
-            }
-            let sum = parts.iter().map(|part| part.pow(-1)).reduce(|a, b| &a + &b);
-            let sum = sum.unwrap_or_else(Fraction::zero);
-            if sum.is_zero() {
-                return Err(DividesByZero);
-            }
-            sum.pow(-1)
+            };
+            let sum = reciprocals.into_iter().reduce(|a, b| &a + &b);
+            sum.and_then(|sum| sum.recip()).ok_or(DividesByZero)?
         }
     })
 }

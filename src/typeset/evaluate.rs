@@ -8,6 +8,9 @@ use num_traits::{One, Zero, pow};
 
 use super::{Formula, Letter, View};
 
+/// The longest power that is worked out, in bits.
+const MAX_POWER_BITS: u64 = 1 << 24;
+
 enum Step<'a> {
     /// Visit the operands, then combine.
     Enter(&'a Formula),
@@ -58,7 +61,12 @@ fn combine(formula: &Formula, operands: Vec<BigRational>) -> Option<BigRational>
             let (above, below) = (operands.next()?, operands.next()?);
             (!below.is_zero()).then(|| above / below)
         }
-        View::Power(_, exponent) => Some(pow(operands.next()?, exponent as usize)),
+        View::Power(_, exponent) => {
+            let base = operands.next()?;
+            let bits = base.numer().bits().max(base.denom().bits());
+            (bits.saturating_mul(exponent.into()) <= MAX_POWER_BITS)
+                .then(|| pow(base, exponent as usize))
+        }
         View::Negative(_) => Some(-operands.next()?),
         View::Parallel(_) => {
             let operands: Vec<BigRational> = operands.collect();
@@ -104,5 +112,6 @@ mod tests {
         check(Formula::quotient(a.clone(), difference), None);
         check(Formula::parallel([a.clone(), a.negative()]), None);
         check(Formula::frequency(), None);
+        check(Formula::power(Formula::s(), i32::MAX), None);
     }
 }

@@ -57,7 +57,7 @@ pub enum Letter {
 }
 
 /// The outermost operation of a formula, for reading.
-#[derive(Clone, Copy)]
+#[derive(Clone, Copy, Debug)]
 pub enum View<'a> {
     /// An exact number, not negative.
     Number(&'a BigRational),
@@ -169,7 +169,8 @@ impl Formula {
     /// The sum of the terms, in their order; 0 for none.
     ///
     /// Nested sums are flattened, zeros dropped. A sum of negatives only becomes the negative of
-    /// a sum. Numbers are not added up. Adding to an unshared sum costs only the added terms.
+    /// a sum. Numbers are not added up. Adding to a sum that nobody else holds costs only what is
+    /// added, unless it is a negative.
     #[must_use]
     pub fn sum(terms: impl IntoIterator<Item = Self>) -> Self {
         let mut flat: Vec<Self> = Vec::new();

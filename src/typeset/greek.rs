@@ -49,14 +49,16 @@ pub(crate) fn name_of(c: char) -> Option<&'static str> {
     of_char(c).map(|greek| greek.name)
 }
 
-/// A Greek letter or name at the beginning, and the rest; a name counts only where no lower-case
-/// letter follows (`tau2`, `betaF`, not `etch`).
+/// A Greek letter or name at the beginning, and the rest.
+///
+/// A name counts only where no lower-case letter follows (`tau2`, `betaF`, not `etch`), and where
+/// the letter does not look Latin: `Rho` is a resistor and not a P.
 pub(crate) fn split_leading_name(text: &str) -> Option<(&'static Greek, &str)> {
     let first = text.chars().next()?;
     if let Some(greek) = of_char(first) {
         return Some((greek, &text[first.len_utf8()..]));
     }
-    TABLE.iter().find_map(|greek| {
+    TABLE.iter().filter(|greek| greek.latex.starts_with('\\')).find_map(|greek| {
         let rest = text.strip_prefix(greek.name)?;
         (!rest.starts_with(char::is_lowercase)).then_some((greek, rest))
     })

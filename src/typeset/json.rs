@@ -19,7 +19,7 @@ pub struct Derive {
     /// The symbols of the formulas, in the order of the circuit.
     pub symbols: Vec<Symbol>,
     /// One entry for each question.
-    pub results: Vec<Result>,
+    pub results: Vec<DeriveResult>,
     /// What the reader should know besides.
     pub warnings: Vec<Warning>,
 }
@@ -41,7 +41,7 @@ pub struct Symbol {
 
 /// The answer to one question: a formula, or one for each source.
 #[derive(Clone, Debug, PartialEq, Serialize)]
-pub struct Result {
+pub struct DeriveResult {
     /// The name of the question: `H`.
     pub name: String,
     /// The question: `V(out) / Vin`.
@@ -250,7 +250,7 @@ mod tests {
             nominal: Some("0.04".to_owned()),
             tolerance: None,
         };
-        let result = Result {
+        let result = DeriveResult {
             name: "H".to_owned(),
             query: "V(out) / Vin".to_owned(),
             answer: Answer::Single(Box::new(ratio())),
@@ -268,7 +268,9 @@ mod tests {
             results: vec![result],
             warnings: vec![warning],
         };
-        check(&derive, expect![[r#"
+        check(
+            &derive,
+            expect![[r#"
             {
               "schema": "cofactor/derive/1",
               "circuit": "Anti-alias filter",
@@ -316,7 +318,8 @@ mod tests {
                   "column": 9
                 }
               ]
-            }"#]]);
+            }"#]],
+        );
     }
 
     #[test]
@@ -338,12 +341,14 @@ mod tests {
             ..ratio()
         };
         let by_source = vec![SourceRatio { source: "Vin".to_owned(), ratio: long }];
-        let result = Result {
+        let result = DeriveResult {
             name: "V".to_owned(),
             query: "V(out)".to_owned(),
             answer: Answer::Superposition { by_source },
         };
-        check(&result, expect![[r#"
+        check(
+            &result,
+            expect![[r#"
             {
               "name": "V",
               "query": "V(out)",
@@ -390,7 +395,8 @@ mod tests {
                   }
                 }
               ]
-            }"#]]);
+            }"#]],
+        );
     }
 
     #[test]
@@ -402,7 +408,9 @@ mod tests {
             column: Some(12),
             help: Some("did you mean `gnd`?".to_owned()),
         };
-        check(&Failure { error }, expect![[r#"
+        check(
+            &Failure { error },
+            expect![[r#"
             {
               "error": {
                 "code": "unknown_node",
@@ -411,6 +419,7 @@ mod tests {
                 "column": 12,
                 "help": "did you mean `gnd`?"
               }
-            }"#]]);
+            }"#]],
+        );
     }
 }

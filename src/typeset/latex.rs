@@ -66,7 +66,7 @@ impl Latex<'_> {
     #[must_use]
     pub fn equation(&self, left: &str, formula: &Formula) -> String {
         let mut out = String::new();
-        let extents = extents(formula);
+        let extents = extents(formula, self.width);
         let writer = Writer { latex: self, extents: &extents };
         // Writing to a string does not fail.
         let _ = match formula.view() {
@@ -74,7 +74,7 @@ impl Latex<'_> {
                 out.push_str("\\begin{aligned}\n");
                 out.push_str(left);
                 out.push_str(" &= ");
-                let pieces = writer.rows(terms, " \\\\\n&\\quad ");
+                let pieces = writer.rows(terms, " \\\\\n&\\quad");
                 writer.write(&mut out, pieces).map(|()| out.push_str("\n\\end{aligned}"))
             }
             _ => {
@@ -91,7 +91,7 @@ impl Latex<'_> {
     /// # Errors
     /// Only those of the writer.
     pub fn write(&self, out: &mut impl fmt::Write, formula: &Formula) -> fmt::Result {
-        let extents = extents(formula);
+        let extents = extents(formula, self.width);
         let writer = Writer { latex: self, extents: &extents };
         writer.write(out, vec![Piece::Formula(formula, Binding::Sum)])
     }
@@ -116,7 +116,7 @@ impl Writer<'_> {
                 Piece::Exponent(exponent) => write!(out, "^{{{exponent}}}")?,
                 Piece::Formula(formula, least) => {
                     if binding(formula) < least {
-                        let tall = self.extent(formula).tall || self.is_broken(formula);
+                        let tall = self.extent(formula).tall;
                         let (open, close) = if tall { ("\\left(", "\\right)") } else { ("(", ")") };
                         out.write_str(open)?;
                         stack.push(Piece::Text(close));
@@ -197,8 +197,7 @@ impl Writer<'_> {
         if begins_with_number(factor) {
             return " \\cdot ";
         }
-        let grown = self.extent(factor).tall || self.is_broken(factor);
-        if binding(factor) < Binding::Product && grown { " " } else { "\\," }
+        if binding(factor) < Binding::Product && self.extent(factor).tall { " " } else { "\\," }
     }
 
     /// The terms of a sum in rows, each filled up to the width.
@@ -206,12 +205,12 @@ impl Writer<'_> {
         let mut pieces = Vec::new();
         let mut used = 0;
         for (index, term) in terms.iter().enumerate() {
-            let width = self.extent(term).width + 1;
-            if used > 0 && self.latex.width < used + width {
+            let width = self.extent(term).width.saturating_add(1);
+            if used > 0 && self.latex.width.saturating_sub(used) < width {
                 pieces.push(Piece::Text(new_row));
                 used = 0;
             }
-            used += width;
+            used = width.saturating_add(used);
             pieces.extend(term_pieces(term, index));
         }
         pieces
@@ -297,8 +296,8 @@ fn number_text(value: &BigRational) -> String {
     }
 }
 
-/// Extents of all parts, operands before operations.
-fn extents(formula: &Formula) -> Extents {
+/// Extents of all parts, operands before operations; sums beyond the limit will be rows.
+fn extents(formula: &Formula, limit: usize) -> Extents {
     let mut extents = Extents::default();
     let mut pending = vec![(formula, false)];
     while let Some((formula, operands_done)) = pending.pop() {
@@ -311,9 +310,10 @@ fn extents(formula: &Formula) -> Extents {
             }
             continue;
         }
-        let extent = measure(formula, |part| {
+        let mut extent = measure(formula, |part| {
             extents.get(&std::ptr::from_ref(part)).copied().unwrap_or_default()
         });
+        extent.tall |= matches!(formula.view(), View::Sum(_)) && limit < extent.width;
         extents.insert(address, extent);
     }
     extents
@@ -323,7 +323,11 @@ fn extents(formula: &Formula) -> Extents {
 fn measure(formula: &Formula, extent: impl Fn(&Formula) -> Extent) -> Extent {
     let side_by_side = |operands: &[Formula], between: usize| {
         operands.iter().map(&extent).fold(Extent::default(), |all, part| Extent {
-            width: all.width + part.width + if all.width > 0 { between } else { 0 },
+            width: all.width.saturating_add(part.width).saturating_add(if all.width > 0 {
+                between
+            } else {
+                0
+            }),
             tall: all.tall || part.tall,
         })
     };
@@ -336,13 +340,13 @@ fn measure(formula: &Formula, extent: impl Fn(&Formula) -> Extent) -> Extent {
         View::Sum(terms) => {
             let signs = terms.iter().filter(|term| !term.is_negative()).count().saturating_sub(1);
             let all = side_by_side(terms, 0);
-            Extent { width: all.width + signs, ..all }
+            Extent { width: all.width.saturating_add(signs), ..all }
         }
         View::Product(factors) => side_by_side(factors, 0),
         View::Parallel(operands) => side_by_side(operands, 1),
         View::Negative(operand) => {
             let part = extent(operand);
-            Extent { width: part.width + 1, ..part }
+            Extent { width: part.width.saturating_add(1), ..part }
         }
         View::Quotient(above, below) => {
             Extent { width: extent(above).width.max(extent(below).width), tall: true }

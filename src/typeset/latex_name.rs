@@ -30,7 +30,8 @@ fn split_quantity(own: &str) -> (String, &str) {
     if let Some((greek, rest)) = greek::split_leading_name(own) {
         return (greek.latex.to_owned(), rest);
     }
-    let Some(first) = own.chars().next() else { return (String::new(), own) };
+    let own = own.trim_start_matches('_');
+    let Some(first) = own.chars().next() else { return ("\\_".to_owned(), own) };
     let small = own.bytes().take_while(u8::is_ascii_lowercase).count();
     let after_first = own.get(1..small).unwrap_or_default();
     let is_word =
@@ -40,11 +41,8 @@ fn split_quantity(own: &str) -> (String, &str) {
         return (format!("\\mathrm{{{word}}}"), rest);
     }
     let rest = &own[first.len_utf8()..];
-    match first {
-        '_' => (String::new(), rest),
-        first if first.is_ascii() => (first.to_string(), rest),
-        first => (format!("\\text{{{first}}}"), rest),
-    }
+    let quantity = if first.is_ascii() { first.to_string() } else { format!("\\text{{{first}}}") };
+    (quantity, rest)
 }
 
 /// The parts of a subscript, separated by commas. Letters stand upright, numbers alone need no
@@ -75,24 +73,24 @@ fn subscript(parts: &[&str]) -> String {
         for c in part.chars() {
             match greek::of_char(c) {
                 Some(greek) => put(Face::Greek, greek.latex),
-                None if c == '_' => put(Face::Upright, "\\_"),
                 None if c.is_ascii() => put(Face::Upright, &c.to_string()),
                 None => put(Face::Text, &c.to_string()),
             }
         }
     }
     let mut out = String::new();
-    for (face, run) in runs.iter().filter(|(_, run)| !run.is_empty()) {
+    for (face, run) in &runs {
+        // A comma between faces needs none of its own.
+        let unseparated = run.strip_prefix(',').unwrap_or(run);
+        if unseparated.len() < run.len() {
+            out.push(',');
+        }
+        let has_letters = unseparated.bytes().any(|b| b.is_ascii_alphabetic());
         match face {
-            Face::Upright if !run.bytes().any(|b| b.is_ascii_alphabetic()) => {
-                // A command before a number ends by itself; before a letter it never stands.
-                out.push_str(run);
-            }
-            Face::Upright => out.push_str(&format!("\\mathrm{{{run}}}")),
-            Face::Greek => {
-                out.push_str(run);
-            }
-            Face::Text => out.push_str(&format!("\\text{{{run}}}")),
+            Face::Upright if has_letters => out.push_str(&format!("\\mathrm{{{unseparated}}}")),
+            // A command ends by itself before a digit, a comma or another command.
+            Face::Upright | Face::Greek => out.push_str(unseparated),
+            Face::Text => out.push_str(&format!("\\text{{{unseparated}}}")),
         }
     }
     out
@@ -124,8 +122,8 @@ mod tests {
             ("gm", r"g_{\mathrm{m}}"),
             ("gmb", r"g_{\mathrm{mb}}"),
             ("Q1.gm", r"g_{\mathrm{m,Q1}}"),
-            ("Q1.rpi", r"r_{\pi\mathrm{,Q1}}"),
-            ("Q1.Cmu", r"C_{\mu\mathrm{,Q1}}"),
+            ("Q1.rpi", r"r_{\pi,\mathrm{Q1}}"),
+            ("Q1.Cmu", r"C_{\mu,\mathrm{Q1}}"),
             ("S1.R", r"R_{\mathrm{S1}}"),
             ("S1.R1", r"R_{\mathrm{1,S1}}"),
             ("S1.S2.C3", r"C_{\mathrm{3,S1.S2}}"),
@@ -137,7 +135,12 @@ mod tests {
             ("T_0", "T_{0}"),
             ("Rü", r"R_{\text{ü}}"),
             ("Rβ2", r"R_{\beta2}"),
-            ("_x", r"_{\mathrm{x}}"),
+            ("Rb_β2", r"R_{\mathrm{b,}\beta2}"),
+            ("βx.C1", r"C_{1,\beta\mathrm{x}}"),
+            ("Rho", r"R_{\mathrm{ho}}"),
+            ("Gamma2", r"\Gamma_{2}"),
+            ("_x", "x"),
+            ("__", r"\_"),
         ] {
             assert_eq!(latex_name(source), expected, "for `{source}`");
         }

@@ -111,6 +111,13 @@ pub(crate) fn binding(formula: &Formula, dialect: Dialect) -> Binding {
     }
 }
 
+/// How strongly a factor must hold together. `a/b*c` is (a/b)*c, but readers take it for a/(b*c):
+/// a quotient that is not the last factor gets parentheses. A leading number does not need them.
+pub(crate) fn factor_binding(factor: &Formula, last: bool) -> Binding {
+    let number = matches!(factor.view(), View::Number(_));
+    if last || number { Binding::Product } else { Binding::Power }
+}
+
 /// The sign of a term of a sum, and what follows it.
 pub(crate) fn signed(term: &Formula, first: bool) -> (Option<Mark<'static>>, &Formula) {
     match (term.view(), first) {
@@ -139,14 +146,17 @@ fn split<'a>(formula: &'a Formula, dialect: Dialect, parts: &mut Vec<Pending<'a>
         }
         View::Product(factors) => {
             for (index, factor) in factors.iter().enumerate() {
-                if index > 0 {
-                    parts.push(Sign(Mark::Times));
-                }
-                // `a/b*c` is (a/b)*c, but readers take it for a/(b*c).
                 let last = index + 1 == factors.len();
-                let number = matches!(factor.view(), View::Number(_));
-                let least = if last || number { Binding::Product } else { Binding::Power };
-                parts.push(Part(factor, least));
+                match factor.view() {
+                    // `a/b` rather than `a*1/b`.
+                    View::Quotient(above, below) if last && above.is_one() => {
+                        parts.extend([Sign(Mark::Over), Part(below, Binding::Power)]);
+                        continue;
+                    }
+                    _ if index > 0 => parts.push(Sign(Mark::Times)),
+                    _ => {}
+                }
+                parts.push(Part(factor, factor_binding(factor, last)));
             }
         }
         View::Quotient(above, below) => parts.extend([

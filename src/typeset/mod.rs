@@ -4,6 +4,16 @@
 //! which, what is parallel to what. The caller chooses the form and the order; a printer keeps
 //! both and adds only what its medium needs (parentheses, bars, line breaks).
 //!
+//! ```
+//! use cofactor::typeset::{Dialect, Formula, SymbolTable, plain};
+//!
+//! let names = SymbolTable::new(["R1", "C1"]);
+//! let time_constant = Formula::product([Formula::s(), Formula::symbol(0), Formula::symbol(1)]);
+//! let pole = Formula::sum([Formula::integer(1), time_constant]);
+//! let low_pass = Formula::quotient(Formula::integer(1), pole);
+//! assert_eq!(plain::text(&low_pass, &names, Dialect::Expression), "1/(1 + s*R1*C1)");
+//! ```
+//!
 //! Trees and printers know no circuits: a symbol is an index into a [`SymbolTable`]. [`shape`] makes
 //! trees from polynomials, [`answer`] puts a whole answer together.
 //! May use: [`crate::circuit`], [`crate::algebra`], [`crate::elimination`], [`crate::analysis`].
@@ -18,6 +28,8 @@ mod latex_name;
 mod linear;
 pub mod number;
 pub mod plain;
+#[cfg(test)]
+mod random;
 pub mod screen;
 pub mod shape;
 mod symbol;

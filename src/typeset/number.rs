@@ -55,6 +55,10 @@ pub fn shortest_in(value: &BigRational, medium: Medium) -> String {
 /// The shortest text that reads back to the same double (`0.1`, `1e-7`).
 #[must_use]
 pub fn float(value: f64) -> String {
+    if value == 0.0 {
+        // Without the sign that a zero may have.
+        return "0".to_owned();
+    }
     let text = format!("{value:e}");
     let Some((mantissa, exponent)) = text.split_once('e') else { return text };
     let digits = mantissa.chars().filter(char::is_ascii_digit).collect();
@@ -121,7 +125,6 @@ fn ascii_unit(unit: &str) -> String {
             '²' => "^2".to_owned(),
             '³' => "^3".to_owned(),
             '·' => "*".to_owned(),
-            '√' => "sqrt".to_owned(),
             c => c.to_string(),
         })
         .collect()
@@ -191,24 +194,23 @@ impl Decimal {
         Self { negative, digits, exponent }
     }
 
-    /// Rounds half to even; `digits` below 1 counts as 1.
+    /// Rounds half to even, to 1 to 1000 digits.
     fn round(value: &BigRational, digits: u32) -> Self {
-        let digits = i64::from(digits.max(1));
-        let above = value.numer().abs();
-        let below = value.denom();
-        if above.is_zero() {
-            return Self::from_integer(false, &above, 0);
+        let digits = i64::from(digits.clamp(1, 1000));
+        let magnitude = value.abs();
+        if magnitude.is_zero() {
+            return Self::from_integer(false, magnitude.numer(), 0);
         }
-        // The power of ten that leaves `digits` digits before the point, or one more: an estimate
-        // from the lengths in bits, which is never too large and at most one too small.
-        let bits =
-            i64::try_from(above.bits()).unwrap_or(0) - i64::try_from(below.bits()).unwrap_or(0);
+        // The exponent of the first digit, from below: the lengths in bits are within 1 of the
+        // logarithm, and 0.30103 is log10(2) to six digits.
+        let bits = |part: &BigInt| i64::try_from(part.bits()).unwrap_or(i64::MAX);
+        let bits = bits(magnitude.numer()) - bits(magnitude.denom());
         let mut exponent = (bits - 1) * 30_103 / 100_000 - 1;
-        while ten_to(exponent + 1) <= BigRational::new(above.clone(), below.clone()) {
+        while ten_to(exponent + 1) <= magnitude {
             exponent += 1;
         }
         let power = exponent + 1 - digits;
-        let scaled = BigRational::new(above, below.clone()) * ten_to(-power);
+        let scaled = magnitude * ten_to(-power);
         let (mut integer, remainder) = scaled.numer().div_rem(scaled.denom());
         let twice: BigInt = remainder * 2;
         if twice > *scaled.denom() || (twice == *scaled.denom() && integer.is_odd()) {
@@ -287,3 +289,6 @@ pub(crate) fn superscript(value: impl ToString) -> String {
         })
         .collect()
 }
+
+#[cfg(test)]
+mod tests;

@@ -10,7 +10,6 @@ mod line;
 
 use block::{Block, Setter};
 
-use super::number::Medium;
 use super::{Formula, SymbolTable, View};
 
 /// The room there is, and the characters to fill it with.
@@ -18,8 +17,26 @@ use super::{Formula, SymbolTable, View};
 pub struct Screen {
     /// Columns.
     pub width: usize,
-    /// True for ASCII only: `-`, `^2`, `*`, `||` and bars of `-`.
-    pub ascii: bool,
+    /// The characters.
+    pub characters: Characters,
+}
+
+/// The characters to write with.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Characters {
+    /// `−`, `²`, `·`, `∥`, bars of `─`, Greek letters.
+    Unicode,
+    /// `-`, `^2`, `*`, `||`, bars of `-`.
+    Ascii,
+}
+
+impl Characters {
+    fn choose(self, unicode: &'static str, ascii: &'static str) -> &'static str {
+        match self {
+            Self::Unicode => unicode,
+            Self::Ascii => ascii,
+        }
+    }
 }
 
 /// Rows of a two-dimensional form; a taller one is hard to read.
@@ -51,7 +68,7 @@ impl Screen {
         {
             return label.beside(block).to_string();
         }
-        let line = line::Line::new(formula, names, self.medium());
+        let line = line::Line::new(formula, names, self.characters);
         if room < line.width()
             && let Some(block) = self.broken_fraction(formula, names, room)
         {
@@ -63,15 +80,11 @@ impl Screen {
     /// The formula on one line, however long.
     #[must_use]
     pub fn one_line(self, formula: &Formula, names: &SymbolTable) -> String {
-        line::Line::new(formula, names, self.medium()).broken("", 0, usize::MAX)
-    }
-
-    fn medium(self) -> Medium {
-        if self.ascii { Medium::Ascii } else { Medium::Unicode }
+        line::Line::new(formula, names, self.characters).broken("", 0, usize::MAX)
     }
 
     fn setter(self, names: &SymbolTable) -> Setter<'_> {
-        Setter { names, medium: self.medium() }
+        Setter { names, characters: self.characters }
     }
 
     /// A top-level quotient whose numerator and denominator are broken into lines.
@@ -84,7 +97,7 @@ impl Screen {
         // The bar stands out by a column on each side, a minus sign takes two.
         let room = room.checked_sub(if negative { 4 } else { 2 })?;
         let part = |part: &Formula| {
-            let line = line::Line::new(part, names, self.medium());
+            let line = line::Line::new(part, names, self.characters);
             // Cheap for what is far too long.
             if line.width() > room * MAX_BROKEN_LINES {
                 return None;
@@ -92,7 +105,7 @@ impl Screen {
             let block = Block::lines(&line.broken("", 0, room));
             (block.width() <= room && block.height() <= MAX_BROKEN_LINES).then_some(block)
         };
-        let fraction = part(above)?.over(part(below)?, self.medium());
+        let fraction = part(above)?.over(part(below)?, self.characters);
         Some(if negative { self.setter(names).negative(fraction) } else { fraction })
     }
 }

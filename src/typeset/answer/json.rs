@@ -8,7 +8,7 @@ use crate::analysis::{ClosedForm, Derivation, Notice};
 use crate::circuit::{Circuit, Transfer};
 use crate::numeric::Origin;
 use crate::typeset::json::{
-    Answer as JsonAnswer, Coefficient, Crosscheck, Definition, Numeric, Ratio, Result,
+    Answer as JsonAnswer, Coefficient, Crosscheck, Definition, DeriveResult, Numeric, Ratio,
     SourceRatio, Symbol, TermCounts, Values, Warning,
 };
 use crate::typeset::latex::Latex;
@@ -43,7 +43,7 @@ pub fn warning(notice: &Notice) -> Warning {
 }
 
 /// One result.
-pub fn result(answer: &Answer<'_>) -> Result {
+pub fn result(answer: &Answer<'_>) -> DeriveResult {
     let names = answer.names();
     let mut ratios = answer.parts().map(|(transfer, derivation)| {
         (answer.source(transfer), ratio(answer, transfer, derivation, &names))
@@ -63,7 +63,7 @@ pub fn result(answer: &Answer<'_>) -> Result {
             None => JsonAnswer::Superposition { by_source: Vec::new() },
         }
     };
-    Result { name: answer.ask.name.clone(), query: answer.ask.text.clone(), answer: body }
+    DeriveResult { name: answer.ask.name.clone(), query: answer.ask.text.clone(), answer: body }
 }
 
 fn ratio(

@@ -9,7 +9,7 @@ use super::{Answer, Asymptote, asymptotes, evidence, lettering};
 use crate::analysis::{ClosedForm, Derivation, NumericForm, total};
 use crate::circuit::{Transfer, Unit};
 use crate::typeset::number::{self, Medium};
-use crate::typeset::screen::Screen;
+use crate::typeset::screen::{Characters, Screen};
 use crate::typeset::{Dialect, Formula, Letter, Style, SymbolTable, plain};
 
 /// How text is set.
@@ -19,6 +19,12 @@ pub struct TextStyle {
     pub screen: Screen,
     /// Only the formulas, nothing around them.
     pub quiet: bool,
+}
+
+impl TextStyle {
+    fn is_ascii(self) -> bool {
+        self.screen.characters == Characters::Ascii
+    }
 }
 
 /// One answer: formulas, numbers, evidence.
@@ -67,7 +73,7 @@ fn heading(answer: &Answer<'_>, transfer: &Transfer, name: &str, style: TextStyl
 
 fn unit_text(unit: Unit, style: TextStyle) -> String {
     let text = unit.to_string();
-    if style.screen.ascii {
+    if style.is_ascii() {
         text.replace('Ω', "Ohm").replace('²', "^2").replace('·', "*").replace('µ', "u")
     } else {
         text
@@ -160,7 +166,7 @@ fn plain_unit(unit: Unit, style: TextStyle) -> String {
 }
 
 fn medium(style: TextStyle) -> Medium {
-    if style.screen.ascii { Medium::Ascii } else { Medium::Unicode }
+    if style.is_ascii() { Medium::Ascii } else { Medium::Unicode }
 }
 
 /// Numerator over denominator in one line, five digits a coefficient.
@@ -173,7 +179,7 @@ fn numbers(numeric: &NumericForm, style: TextStyle) -> String {
                 continue;
             }
             let digits = number::rounded(coefficient, 5, medium);
-            let minus = if style.screen.ascii { '-' } else { '−' };
+            let minus = if style.is_ascii() { '-' } else { '−' };
             let (negative, size) = match digits.strip_prefix(minus) {
                 Some(rest) => (true, rest.to_owned()),
                 None => (false, digits),
@@ -186,11 +192,11 @@ fn numbers(numeric: &NumericForm, style: TextStyle) -> String {
                 }
                 (false, false) => text.push_str(" + "),
             }
-            let (dot, s) = if style.screen.ascii { ("*", "s^") } else { ("·", "s") };
+            let (dot, s) = if style.is_ascii() { ("*", "s^") } else { ("·", "s") };
             let factor = match power {
                 0 => String::new(),
                 1 => "s".to_owned(),
-                _ if style.screen.ascii => format!("{s}{power}"),
+                _ if style.is_ascii() => format!("{s}{power}"),
                 _ => format!("{s}{}", superscript(power)),
             };
             if factor.is_empty() {

@@ -8,9 +8,9 @@ use std::fmt;
 
 use unicode_width::UnicodeWidthStr;
 
+use super::Characters;
 use super::line::{self, Line};
 use crate::typeset::linear::{self, Binding, Dialect, Mark};
-use crate::typeset::number::Medium;
 use crate::typeset::{Formula, SymbolTable, View};
 
 /// Rows of equal width.
@@ -60,9 +60,9 @@ impl Block {
     }
 
     /// This one above a bar, the other below it, both centred.
-    pub(super) fn over(self, other: Self, medium: Medium) -> Self {
+    pub(super) fn over(self, other: Self, characters: Characters) -> Self {
         let width = self.width.max(other.width) + 2;
-        let bar = if medium == Medium::Ascii { "-" } else { "─" };
+        let bar = characters.choose("─", "-");
         let centred = |block: &Self| {
             let left = (width - block.width) / 2;
             block.rows.iter().map(|row| padded(row, left, width)).collect::<Vec<_>>()
@@ -74,16 +74,14 @@ impl Block {
         Self { rows, width, baseline }
     }
 
-    fn in_parentheses(self, medium: Medium) -> Self {
-        let tall = self.rows.len() > 1;
-        let (left, right) = match medium {
-            _ if !tall => ([""; 3], [""; 3]),
-            Medium::Unicode => (["⎛", "⎜", "⎝"], ["⎞", "⎟", "⎠"]),
-            Medium::Ascii | Medium::Latex => (["/", "|", "\\"], ["\\", "|", "/"]),
-        };
-        if !tall {
+    fn in_parentheses(self, characters: Characters) -> Self {
+        if self.rows.len() == 1 {
             return Self::text("(").beside(self).beside(Self::text(")"));
         }
+        let (left, right) = match characters {
+            Characters::Unicode => (["⎛", "⎜", "⎝"], ["⎞", "⎟", "⎠"]),
+            Characters::Ascii => (["/", "|", "\\"], ["\\", "|", "/"]),
+        };
         let last = self.rows.len() - 1;
         let side = |glyphs: [&str; 3]| {
             let glyph = |row: usize| match row {
@@ -137,7 +135,7 @@ const SHORT: usize = 12;
 /// Sets formulas. Recursive: the caller bounds the depth.
 pub(super) struct Setter<'a> {
     pub(super) names: &'a SymbolTable,
-    pub(super) medium: Medium,
+    pub(super) characters: Characters,
 }
 
 impl Setter<'_> {
@@ -149,17 +147,17 @@ impl Setter<'_> {
     /// `bars` counts the fractions around.
     fn set(&self, formula: &Formula, least: Binding, bars: usize) -> Block {
         if let View::Quotient(above, below) = formula.view() {
-            let line = Line::with_binding(formula, least, self.names, self.medium);
+            let line = Line::with_binding(formula, least, self.names, self.characters);
             if 2 <= bars || (bars == 1 && line.width() <= SHORT) {
                 return Block::text(&line.into_text());
             }
             let part = |part| self.set(part, Binding::Sum, bars + 1);
             // The bar holds a fraction together; only an exponent asks for more.
-            return part(above).over(part(below), self.medium);
+            return part(above).over(part(below), self.characters);
         }
         let block = self.operation(formula, bars);
         if linear::binding(formula, Dialect::Language) < least {
-            block.in_parentheses(self.medium)
+            block.in_parentheses(self.characters)
         } else {
             block
         }
@@ -168,7 +166,7 @@ impl Setter<'_> {
     fn operation(&self, formula: &Formula, bars: usize) -> Block {
         match formula.view() {
             View::Number(_) | View::Letter(_) | View::Quotient(..) => {
-                Block::text(&Line::new(formula, self.names, self.medium).into_text())
+                Block::text(&Line::new(formula, self.names, self.characters).into_text())
             }
             View::Sum(terms) => {
                 let mut block = Block::text("");
@@ -178,7 +176,7 @@ impl Setter<'_> {
                     block = match sign {
                         Some(Mark::Plus) => block.beside(Block::text(" + ")).beside(term),
                         Some(Mark::Minus) => {
-                            let minus = self.glyphs(" − ", " - ");
+                            let minus = self.characters.choose(" − ", " - ");
                             block.beside(Block::text(minus)).beside(term)
                         }
                         Some(_) => self.negative(term),
@@ -192,22 +190,26 @@ impl Setter<'_> {
                 self.negative(operand)
             }
             View::Product(factors) => {
-                let factors = factors.iter().map(|factor| self.set(factor, Binding::Product, bars));
-                let (tight, wide) = (self.glyphs("·", "*"), self.glyphs(" · ", " * "));
+                let last = factors.len() - 1;
+                let factors = factors.iter().enumerate().map(|(index, factor)| {
+                    self.set(factor, linear::factor_binding(factor, index == last), bars)
+                });
+                let (tight, wide) =
+                    (self.characters.choose("·", "*"), self.characters.choose(" · ", " * "));
                 joined(factors, |a, b| if a.height().max(b.height()) > 1 { wide } else { tight })
             }
             View::Power(base, exponent) => {
                 let set = self.set(base, Binding::Atom, bars);
                 let set = match base.view() {
-                    View::Quotient(..) if set.height() > 1 => set.in_parentheses(self.medium),
+                    View::Quotient(..) if set.height() > 1 => set.in_parentheses(self.characters),
                     _ => set,
                 };
-                set.raised(&line::exponent(exponent, self.medium))
+                set.raised(&line::exponent(exponent, self.characters))
             }
             View::Parallel(operands) => {
                 let operands =
                     operands.iter().map(|operand| self.set(operand, Binding::Atom, bars));
-                let parallel = self.glyphs(" ∥ ", " || ");
+                let parallel = self.characters.choose(" ∥ ", " || ");
                 joined(operands, |_, _| parallel)
             }
         }
@@ -216,15 +218,12 @@ impl Setter<'_> {
     /// With a leading minus, which stands off a bar.
     pub(super) fn negative(&self, operand: Block) -> Block {
         let tall = operand.height() > 1;
-        let sign = if tall { self.glyphs("− ", "- ") } else { self.glyphs("−", "-") };
+        let sign = if tall {
+            self.characters.choose("− ", "- ")
+        } else {
+            self.characters.choose("−", "-")
+        };
         Block::text(sign).beside(operand)
-    }
-
-    fn glyphs(&self, unicode: &'static str, ascii: &'static str) -> &'static str {
-        match self.medium {
-            Medium::Unicode => unicode,
-            Medium::Ascii | Medium::Latex => ascii,
-        }
     }
 }
 

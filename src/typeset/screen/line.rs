@@ -7,8 +7,9 @@
 
 use unicode_width::UnicodeWidthStr;
 
+use super::Characters;
 use crate::typeset::linear::{Binding, Dialect, Mark, Marks};
-use crate::typeset::number::{self, Medium};
+use crate::typeset::number;
 use crate::typeset::{Formula, Style, SymbolTable};
 
 /// A formula in one line.
@@ -40,8 +41,8 @@ const INDENT: usize = 2;
 const MAX_INDENTS: usize = 4;
 
 impl Line {
-    pub(super) fn new(formula: &Formula, names: &SymbolTable, medium: Medium) -> Self {
-        Self::with_binding(formula, Binding::Sum, names, medium)
+    pub(super) fn new(formula: &Formula, names: &SymbolTable, characters: Characters) -> Self {
+        Self::with_binding(formula, Binding::Sum, names, characters)
     }
 
     /// In parentheses when it binds more weakly than `least`.
@@ -49,12 +50,14 @@ impl Line {
         formula: &Formula,
         least: Binding,
         names: &SymbolTable,
-        medium: Medium,
+        characters: Characters,
     ) -> Self {
         let mut line = Self { text: String::new(), breaks: Vec::new() };
         let mut depth: u32 = 0;
-        let ascii = medium == Medium::Ascii;
-        let (style, times) = if ascii { (Style::Ascii, "*") } else { (Style::Unicode, "·") };
+        let (style, times) = match characters {
+            Characters::Unicode => (Style::Unicode, "·"),
+            Characters::Ascii => (Style::Ascii, "*"),
+        };
         for mark in Marks::new(formula, least, Dialect::Language) {
             let kind = match mark {
                 Mark::Plus | Mark::Minus => Some(0),
@@ -79,7 +82,7 @@ impl Line {
                     continue;
                 }
                 Mark::Exponent(value) => {
-                    line.text.push_str(&exponent(value, medium));
+                    line.text.push_str(&exponent(value, characters));
                     continue;
                 }
                 Mark::One => "1",
@@ -97,14 +100,11 @@ impl Line {
                     ")"
                 }
                 Mark::Plus => " + ",
-                Mark::Minus if ascii => " - ",
-                Mark::Minus => " − ",
-                Mark::Negative if ascii => "-",
-                Mark::Negative => "−",
+                Mark::Minus => characters.choose(" − ", " - "),
+                Mark::Negative => characters.choose("−", "-"),
                 Mark::Times => times,
                 Mark::Over => "/",
-                Mark::Parallel if ascii => " || ",
-                Mark::Parallel => " ∥ ",
+                Mark::Parallel => characters.choose(" ∥ ", " || "),
             };
             line.text.push_str(glyph);
         }
@@ -172,9 +172,9 @@ impl Line {
 }
 
 /// `²` or `^2`.
-pub(super) fn exponent(exponent: u32, medium: Medium) -> String {
-    match medium {
-        Medium::Unicode => number::superscript(exponent),
-        Medium::Ascii | Medium::Latex => format!("^{exponent}"),
+pub(super) fn exponent(exponent: u32, characters: Characters) -> String {
+    match characters {
+        Characters::Unicode => number::superscript(exponent),
+        Characters::Ascii => format!("^{exponent}"),
     }
 }

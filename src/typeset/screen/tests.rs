@@ -1,9 +1,11 @@
 //! Layouts as they appear, and their widths.
 
 use expect_test::{Expect, expect};
+use proptest::prelude::*;
 use unicode_width::UnicodeWidthStr;
 
 use super::*;
+use crate::typeset::random::tree;
 
 fn names() -> SymbolTable {
     SymbolTable::new(["R1", "R2", "C1", "C2", "tau", "β", "A0", "wp"])
@@ -33,14 +35,14 @@ fn second_order() -> Formula {
 
 #[track_caller]
 fn check(formula: Formula, width: usize, expected: Expect) {
-    let text = Screen { width, ascii: false }.equation("H", &formula, &names());
+    let text = Screen { width, characters: Characters::Unicode }.equation("H", &formula, &names());
     assert!(text.lines().all(|line| line.width() <= width), "too wide:\n{text}");
     expected.assert_eq(&text);
 }
 
 #[track_caller]
 fn check_ascii(formula: Formula, width: usize, expected: Expect) {
-    let text = Screen { width, ascii: true }.equation("H", &formula, &names());
+    let text = Screen { width, characters: Characters::Ascii }.equation("H", &formula, &names());
     assert!(text.is_ascii());
     assert!(text.lines().all(|line| line.width() <= width), "too wide:\n{text}");
     expected.assert_eq(&text);
@@ -73,6 +75,7 @@ fn fractions_have_bars() {
                    R1"#]],
     );
 }
+
 #[test]
 fn short_inner_fractions_stay_in_line() {
     let pole = Formula::sum([n(1), Formula::quotient(Formula::s(), x(7))]);
@@ -221,7 +224,11 @@ fn a_wide_denominator_is_broken_under_its_bar() {
 
 #[test]
 fn without_room_it_sticks_out() {
-    let text = Screen { width: 3, ascii: false }.equation("H(s)", &second_order(), &names());
+    let text = Screen { width: 3, characters: Characters::Unicode }.equation(
+        "H(s)",
+        &second_order(),
+        &names(),
+    );
     expect![[r#"
         H(s) = 1
             + s
@@ -234,7 +241,8 @@ fn without_room_it_sticks_out() {
             ·C1
             ·C2"#]]
     .assert_eq(&text);
-    let text = Screen { width: 0, ascii: true }.equation("", &Formula::s(), &names());
+    let text =
+        Screen { width: 0, characters: Characters::Ascii }.equation("", &Formula::s(), &names());
     assert_eq!(text, "s");
 }
 
@@ -244,10 +252,34 @@ fn deep_and_long_formulas_are_lines() {
     for _ in 0..50_000 {
         deep = Formula::quotient(n(1), Formula::sum([x(1), deep]));
     }
-    let text = Screen { width: 80, ascii: false }.equation("Z", &deep, &names());
+    let text = Screen { width: 80, characters: Characters::Unicode }.equation("Z", &deep, &names());
     // Only the closing parentheses at the end cannot be broken.
     assert_eq!(text.lines().filter(|line| line.width() > 80).count(), 1);
     let long = Formula::sum((0..50_000).map(|index| product([x(index % 8), Formula::s()])));
-    let text = Screen { width: 80, ascii: false }.equation("Z", &long, &names());
+    let text = Screen { width: 80, characters: Characters::Unicode }.equation("Z", &long, &names());
     assert!(text.lines().all(|line| line.width() <= 80));
+}
+
+proptest! {
+    #[test]
+    fn broken_lines_hold_the_whole_line(formula in tree(), width in 10_usize..60) {
+        for characters in [Characters::Unicode, Characters::Ascii] {
+            let line = line::Line::new(&formula, &names(), characters);
+            let broken = line.broken("", 2, width);
+            let squeezed = |text: &str| text.split_whitespace().collect::<String>();
+            prop_assert_eq!(squeezed(&broken), squeezed(&line.into_text()));
+        }
+    }
+
+    #[test]
+    fn layouts_keep_to_the_width(formula in tree(), width in 40_usize..120) {
+        let text = Screen { width, characters: Characters::Ascii }.equation("H", &formula, &names());
+        prop_assert!(text.is_ascii());
+        // What cannot be broken: a number, or a run of parentheses.
+        let sticks_out = |line: &str| {
+            width < line.width() && line.split_whitespace().all(|word| word.width() + 12 < width)
+        };
+        prop_assert!(!text.lines().any(sticks_out), "{}", text);
+        prop_assert!(text.lines().all(|line| !line.ends_with(' ')), "{}", text);
+    }
 }

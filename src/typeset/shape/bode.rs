@@ -28,7 +28,7 @@ fn lowest(polynomial: &Polynomial) -> (Polynomial, u32) {
 
 /// a/b in lowest terms.
 pub(crate) fn ratio(a: &Polynomial, b: &Polynomial, letters: Lettering) -> Formula {
-    match Fraction::new(a.clone(), b.clone()) {
+    match Fraction::new(a, b) {
         Some(fraction) => Formula::quotient(
             letters.polynomial(fraction.numerator()),
             letters.polynomial(fraction.denominator()),
