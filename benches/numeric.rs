@@ -1,7 +1,6 @@
 //! The witnesses on long and on wide networks, 41 frequencies each.
 
 #![forbid(unsafe_code)]
-#![expect(missing_docs, reason = "a bench has no readers but its names")]
 
 use cofactor::circuit::{
     Circuit, Class, Drive, Element, ElementId, GROUND, Law, Node, NodeId, Number, Probe, Transfer,
