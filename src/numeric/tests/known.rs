@@ -176,6 +176,19 @@ fn sallen_key_low_pass() {
 }
 
 #[test]
+fn nullor_away_from_ground() {
+    // The norator between two nodes turns in · R2/R1 about: a transconductor with its load.
+    let mut b = Builder::new();
+    let source = b.voltage("Vin", "in", "0");
+    let law = Law::Nullor(b.node("in"), b.node("x"));
+    b.element("N1", Class::Opamp, ("out", "x"), law);
+    b.passive("R1", "x", "0", n(2));
+    b.passive("R2", "out", "0", n(6));
+    let gain = b.gain(source, "out");
+    check(&b, &gain, &[-3], &[1]);
+}
+
+#[test]
 fn voltage_controlled_sources() {
     let mut b = Builder::new();
     let source = b.voltage("Vin", "in", "0");
@@ -347,6 +360,17 @@ fn parts_without_ground() {
     let current = transfer(Drive::Source(source), Probe::Current(source), Probe::Drive);
     // 1/1 and, through the transformer, 1/(4·3).
     check(&b, &current, &[-13], &[12]);
+
+    // A source inside a floating part, and currents of 0 between the parts.
+    let mut b = Builder::new();
+    b.passive("R1", "in", "0", n(1));
+    let source = b.current("I1", "c", "d");
+    b.passive("R2", "c", "d", n(3));
+    b.current("I2", "c", "0");
+    b.element("I3", Class::Current, ("d", "in"), Law::ControlledCurrent(Vec::new()));
+    let voltage = Probe::Voltage(b.node("c"), b.node("d"));
+    let across = transfer(Drive::Source(source), voltage, Probe::Drive);
+    check(&b, &across, &[-3], &[1]);
 
     // A circuit without ground at all.
     let mut b = Builder::new();
