@@ -112,8 +112,8 @@ fn ladder_exact(bencher: divan::Bencher<'_, '_>, sections: u32) {
     bencher.bench(|| exact(&circuit, &transfer, &[]));
 }
 
-#[divan::bench(args = [3, 4, 5])]
+#[divan::bench(args = [4, 5, 6])]
 fn mesh_exact(bencher: divan::Bencher<'_, '_>, width: u32) {
-    let (circuit, transfer) = mesh(width, width.max(4));
+    let (circuit, transfer) = mesh(width, width);
     bencher.bench(|| exact(&circuit, &transfer, &[]));
 }

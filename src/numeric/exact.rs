@@ -14,7 +14,7 @@ use super::values::images;
 use super::{Field, NumericError};
 use crate::circuit::{Circuit, Number, Transfer};
 
-/// Bound of unknowns³ · (degree + 1)² up to which the exact solve is a matter of a second or two.
+/// Bound of unknowns³ · (degree + 1)² up to which the exact solve stays within about a second.
 const AFFORDABLE_WORK: usize = 100_000_000;
 
 /// A rational function of s in lowest terms; coefficients ascend from the constant one.
