@@ -316,6 +316,19 @@ fn inductor_loop_and_capacitor_cut_set() {
 }
 
 #[test]
+fn coupled_inductors() {
+    // L1 = 6, L2 = 3, M = 4 with the secondary shorted: s (L1 − M²/L2) = 2 s/3.
+    let mut b = Builder::new();
+    let mutual = || Value::Product(vec![Value::S, constant(4)]);
+    let primary = b.passive("L1", "a", "x", n(6));
+    let secondary = b.passive("L2", "0", "y", n(3));
+    b.controlled_voltage("M1.primary", ("x", "0"), mutual(), Quantity::Current(secondary));
+    b.controlled_voltage("M1.secondary", ("y", "0"), mutual(), Quantity::Current(primary));
+    let port = b.impedance("a", "0");
+    check(&b, &port, &[0, 2], &[3]);
+}
+
+#[test]
 fn zeroed_and_removed_sources() {
     let mut b = Builder::new();
     b.voltage("V1", "a", "0");
