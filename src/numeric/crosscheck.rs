@@ -10,8 +10,9 @@
 use num_complex::Complex;
 
 use super::{
-    Assignment, Fraction, NumericError, Origin, PRIMES, PointAnswer, Sweep, exact, frequencies,
-    modular_value, values::Generator,
+    Assignment, Fraction, NumericError, Origin, PRIMES, PointAnswer, PrimeField, Sweep, exact,
+    frequencies, modular_value,
+    values::{Generator, images},
 };
 use crate::circuit::{Circuit, Number, Transfer};
 
@@ -64,7 +65,7 @@ impl Report {
 /// Agreement at frequencies across the band.
 #[derive(Clone, Debug, PartialEq)]
 pub struct FloatingEvidence {
-    /// Frequencies that were compared.
+    /// Frequencies that were compared; those where the solve is too uncertain are left out.
     pub points: usize,
     /// Lowest frequency, hertz.
     pub from_hz: f64,
@@ -78,7 +79,8 @@ pub struct FloatingEvidence {
     pub bound: f64,
     /// Largest condition number of the equations.
     pub largest_condition: f64,
-    /// Whether every difference was allowed and at least one point was compared.
+    /// Whether every difference was allowed. With 0 points nothing was compared and nothing is
+    /// said: double precision does not resolve the circuit, and the exact witnesses decide.
     pub passed: bool,
     /// At the first failure: frequency in hertz, derived value, value of the witness.
     pub failure: Option<(f64, Complex<f64>, Complex<f64>)>,
@@ -145,12 +147,24 @@ fn witnesses(
     let mut evidence = Vec::new();
     match exact(circuit, transfer, &assignment.numbers) {
         Ok(witness) => evidence.extend(identical(candidate, assignment, &witness)),
-        Err(NumericError::TooLarge) => {}
+        Err(NumericError::TooLarge) => regular_at(circuit, transfer, &assignment.numbers)?,
         Err(error) => return Err(error),
     }
     evidence.push(equal_modulo_primes(circuit, transfer, candidate)?);
     let floating = floating(circuit, transfer, candidate, assignment)?;
     Ok(Report { origin: assignment.origin, nominal_fault: None, floating, exact: evidence })
+}
+
+/// An error where the circuit has no unique solution at these numbers, whatever s is.
+fn regular_at(
+    circuit: &Circuit,
+    transfer: &Transfer,
+    numbers: &[Number],
+) -> Result<(), NumericError> {
+    let field = PrimeField::new(PRIMES[0]);
+    let symbols = images(&field, numbers)?;
+    let s = Generator::new(SEED).below(field.prime());
+    modular_value(circuit, transfer, field.prime(), s, &symbols).map(|_| ())
 }
 
 fn identical(
@@ -229,14 +243,17 @@ fn floating(
         let answer = match sweep.examine(s) {
             Ok(answer) => answer,
             // A pole on the imaginary axis that a frequency happens to meet says nothing.
-            Err(NumericError::Singular | NumericError::ZeroDenominator) => continue,
+            Err(
+                NumericError::Singular
+                | NumericError::ZeroDenominator
+                | NumericError::DivisionByZero { .. },
+            ) => continue,
             Err(error) => return Err(error),
         };
         result.largest_condition = result.largest_condition.max(answer.condition);
         let derived = candidate.value_at(s, &values);
         let Some((error, bound)) = compare(&answer, derived) else { continue };
         result.points += 1;
-        // A derived value that is no number fails by this form of the comparison.
         let agrees = error <= bound;
         if error > result.worst_relative_error || !agrees && result.passed || result.points == 1 {
             result.worst_relative_error = error;
@@ -248,17 +265,14 @@ fn floating(
             result.failure = Some((frequency, derived, answer.value));
         }
     }
-    if result.points == 0 {
-        result.passed = false;
-    }
     Ok(result)
 }
 
 /// Relative error and bound; none where the solve is too uncertain to say anything.
 fn compare(answer: &PointAnswer, derived: Complex<f64>) -> Option<(f64, f64)> {
     let difference = (derived - answer.value).norm();
-    // 0 is meant exactly: a derived 0, against a witness that is 0 within its bound or is not.
-    let is_zero = derived == Complex::new(0.0, 0.0) || answer.value.norm() <= answer.error_bound;
+    let difference = if difference.is_nan() { f64::INFINITY } else { difference };
+    let is_zero = answer.value.norm() <= answer.error_bound;
     let unit = if is_zero { answer.scale } else { answer.value.norm() };
     if unit == 0.0 {
         return Some((difference, 0.0));

@@ -14,7 +14,7 @@ use super::values::images;
 use super::{Field, NumericError};
 use crate::circuit::{Circuit, Number, Transfer};
 
-/// Bound of unknowns³ · (degree + 1)² up to which the exact solve is a matter of a second or two.
+/// Bound of unknowns³ · (degree + 1)² up to which the exact solve stays within about a second.
 const AFFORDABLE_WORK: usize = 100_000_000;
 
 /// A rational function of s in lowest terms; coefficients ascend from the constant one.
@@ -37,7 +37,7 @@ pub fn exact_is_affordable(
     transfer: &Transfer,
     numbers: &[Number],
 ) -> Result<bool, NumericError> {
-    Ok(is_affordable(&Matrix::new(circuit, transfer, numbers)?))
+    Ok(Matrix::new(circuit, transfer, numbers)?.is_affordable())
 }
 
 /// The transfer as a rational function of s at these numbers, indexed by symbol.
@@ -52,7 +52,7 @@ pub fn exact(
     numbers: &[Number],
 ) -> Result<Fraction, NumericError> {
     let matrix = Matrix::new(circuit, transfer, numbers)?;
-    if !is_affordable(&matrix) {
+    if !matrix.is_affordable() {
         return Err(NumericError::TooLarge);
     }
     let [numerator, denominator] = matrix.corners()?;
@@ -115,20 +115,10 @@ fn integers(coefficients: &[Number]) -> (Polynomial, BigInt) {
     (Polynomial::new(whole), scale)
 }
 
-/// Bordered equations: `size` + 2 rows and `size` + 1 columns.
+/// Bordered equations without denominators: `size` + 2 rows over `size` + 1 columns.
 struct Matrix {
     size: usize,
-    rows: Vec<Vec<Polynomial>>,
-}
-
-fn is_affordable(matrix: &Matrix) -> bool {
-    let degree: usize = matrix.rows[..matrix.size]
-        .iter()
-        .map(|row| row.iter().map(Polynomial::degree).max().unwrap_or(0))
-        .sum();
-    let size = matrix.size;
-    let work = size.saturating_pow(3).saturating_mul((degree + 1).saturating_pow(2));
-    work <= AFFORDABLE_WORK
+    rows: Vec<Vec<(usize, Polynomial)>>,
 }
 
 impl Matrix {
@@ -146,85 +136,95 @@ impl Matrix {
         };
         let system: System<Quotient> = network.assemble(&field, &symbols, &s, Form::Compact)?;
         let size = system.rows.len();
-        let dense = |row: &[(usize, Quotient)], last: Quotient| {
-            let mut cells = vec![field.zero(); size + 1];
-            for (column, value) in summed(&field, row) {
-                cells[column] = value;
-            }
-            cells[size] = last;
+        let bordered = |row: &[(usize, Quotient)], last: Quotient| {
+            let mut cells = summed(&field, row);
+            cells.push((size, last));
             without_denominators(&cells)
         };
-        let mut rows: Vec<_> = system
-            .rows
-            .iter()
-            .zip(&system.right)
-            .map(|(row, right)| dense(row, right.clone()))
-            .collect();
+        let equations = system.rows.iter().zip(system.right);
+        let mut rows: Vec<_> = equations.map(|(row, right)| bordered(row, right)).collect();
         // Their entries are −1, 0 and 1: these rows are not scaled, so the ratio is kept.
-        let [upper, lower] = system.probes;
-        for probe in [upper, lower] {
-            rows.push(dense(&probe.row, field.negative(&probe.constant)));
+        for probe in &system.probes {
+            rows.push(bordered(&probe.row, field.negative(&probe.constant)));
         }
         Ok(Self { size, rows })
     }
 
+    fn is_affordable(&self) -> bool {
+        let degree = |row: &Vec<(usize, Polynomial)>| {
+            row.iter().map(|(_, cell)| cell.degree()).max().unwrap_or(0)
+        };
+        let degree: usize = self.rows.iter().map(degree).sum();
+        let work = self.size.saturating_pow(3).saturating_mul((degree + 1).saturating_pow(2));
+        work <= AFFORDABLE_WORK
+    }
+
     /// det A · (d − c·A⁻¹·b) up to a sign, for both probes.
-    fn corners(mut self) -> Result<[Polynomial; 2], NumericError> {
+    fn corners(self) -> Result<[Polynomial; 2], NumericError> {
         let size = self.size;
+        let mut rows = vec![vec![Polynomial::zero(); size + 1]; size + 2];
+        for (cells, row) in rows.iter_mut().zip(self.rows) {
+            for (column, value) in row {
+                cells[column] = value;
+            }
+        }
         let mut previous = Polynomial::one();
         for step in 0..size {
-            let (row, column) = self.pivot(step).ok_or(NumericError::Singular)?;
-            self.rows.swap(step, row);
-            self.rows.iter_mut().for_each(|row| row.swap(step, column));
-            let (done, rest) = self.rows.split_at_mut(step + 1);
+            let (row, column) = choose_pivot(&rows, step, size).ok_or(NumericError::Singular)?;
+            rows.swap(step, row);
+            rows.iter_mut().for_each(|row| row.swap(step, column));
+            let (done, rest) = rows.split_at_mut(step + 1);
             let pivot_row = &done[step];
-            let pivot = &pivot_row[step];
             for row in rest {
-                let factor = std::mem::take(&mut row[step]);
-                for (cell, above) in row[step + 1..].iter_mut().zip(&pivot_row[step + 1..]) {
-                    let mut product =
-                        if cell.is_zero() { Polynomial::zero() } else { pivot.multiply(cell) };
-                    if !factor.is_zero() && !above.is_zero() {
-                        product = product.subtract(&factor.multiply(above));
-                    }
-                    *cell = product.divide_exactly(&previous);
-                }
+                eliminate_row(row, pivot_row, step, &previous);
             }
-            previous = self.rows[step][step].clone();
+            previous = rows[step][step].clone();
         }
-        let mut corners = self.rows.drain(size..).map(|mut row| row.pop().unwrap_or_default());
+        let mut corners = rows.drain(size..).map(|mut row| row.pop().unwrap_or_default());
         match (corners.next(), corners.next()) {
             (Some(numerator), Some(denominator)) => Ok([numerator, denominator]),
             _ => Err(NumericError::Singular),
         }
     }
+}
 
-    /// The entry with the least fill (Markowitz 1957), then the least degree.
-    fn pivot(&self, step: usize) -> Option<(usize, usize)> {
-        let active = step..self.size;
-        let mut columns = vec![0usize; self.size];
-        let mut counts = vec![0usize; self.size];
-        for i in active.clone() {
-            for j in active.clone().filter(|j| !self.rows[i][*j].is_zero()) {
-                columns[j] += 1;
-                counts[i] += 1;
-            }
-        }
-        let entries = active.clone().flat_map(|i| active.clone().map(move |j| (i, j)));
-        entries
-            .filter(|(i, j)| !self.rows[*i][*j].is_zero())
-            .min_by_key(|(i, j)| ((counts[*i] - 1) * (columns[*j] - 1), self.rows[*i][*j].degree()))
+/// One row of one of Bareiss's steps.
+fn eliminate_row(
+    row: &mut [Polynomial],
+    pivot_row: &[Polynomial],
+    step: usize,
+    previous: &Polynomial,
+) {
+    let factor = std::mem::take(&mut row[step]);
+    let pivot = &pivot_row[step];
+    for (cell, above) in row[step + 1..].iter_mut().zip(&pivot_row[step + 1..]) {
+        let product = pivot.multiply(cell).subtract(&factor.multiply(above));
+        *cell = product.divide_exactly(previous);
     }
 }
 
-/// A row times its least common denominator, with integer polynomials left.
-fn without_denominators(cells: &[Quotient]) -> Vec<Polynomial> {
-    let common = cells.iter().fold(Polynomial::one(), |common, cell| {
+/// The entry with the least fill (Markowitz 1957), then the least degree.
+fn choose_pivot(rows: &[Vec<Polynomial>], step: usize, size: usize) -> Option<(usize, usize)> {
+    let (mut row_counts, mut column_counts) = (vec![0usize; size], vec![0usize; size]);
+    let mut entries = Vec::new();
+    for i in step..size {
+        for j in (step..size).filter(|j| !rows[i][*j].is_zero()) {
+            row_counts[i] += 1;
+            column_counts[j] += 1;
+            entries.push((i, j));
+        }
+    }
+    let fill = |i: usize, j: usize| (row_counts[i] - 1) * (column_counts[j] - 1);
+    entries.into_iter().min_by_key(|&(i, j)| (fill(i, j), rows[i][j].degree()))
+}
+
+/// A row times its least common denominator.
+fn without_denominators(cells: &[(usize, Quotient)]) -> Vec<(usize, Polynomial)> {
+    let common = cells.iter().fold(Polynomial::one(), |common, (_, cell)| {
         let gcd = common.gcd(&cell.denominator);
         common.multiply(&cell.denominator.divide_exactly(&gcd))
     });
-    cells
-        .iter()
-        .map(|cell| cell.numerator.multiply(&common.divide_exactly(&cell.denominator)))
-        .collect()
+    let cleared =
+        |cell: &Quotient| cell.numerator.multiply(&common.divide_exactly(&cell.denominator));
+    cells.iter().map(|(column, cell)| (*column, cleared(cell))).collect()
 }

@@ -201,3 +201,69 @@ impl Field for PrimeField {
         if *a == 0 { 0.0 } else { 1.0 }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::numeric::PRIMES;
+
+    /// The field axioms on a few numbers, by the images of rationals.
+    fn check<F: Field>(field: &F) {
+        let image = |n: i64, d: i64| {
+            field.number(&Number::new(n.into(), d.into())).expect("a denominator that is not 0")
+        };
+        let (half, third, minus) = (image(1, 2), image(1, 3), image(-7, 4));
+        assert_eq!(field.add(&half, &half), field.one());
+        assert_eq!(field.subtract(&third, &third), field.zero());
+        assert_eq!(field.multiply(&half, &minus), image(-7, 8));
+        assert_eq!(field.power(&half, -3), Some(image(8, 1)));
+        assert_eq!(field.power(&field.zero(), 0), Some(field.one()));
+        assert_eq!(field.power(&field.zero(), -1), None);
+        assert_eq!(field.inverse(&field.zero()), None);
+        assert_eq!(field.magnitude(&field.zero()), 0.0);
+        assert!(field.magnitude(&minus) > 0.0);
+    }
+
+    #[test]
+    fn axioms() {
+        check(&Rationals);
+        check(&Complexes);
+        PRIMES.iter().for_each(|prime| check(&PrimeField::new(*prime)));
+        assert_eq!(PrimeField::new(7).number(&Number::new(1.into(), 14.into())), None);
+    }
+
+    #[test]
+    fn numbers_at_the_ends_of_double_precision() {
+        let inverse = Complexes.inverse(&Complex::new(0.0, 1e-300)).expect("a finite number");
+        assert!((inverse.im * 1e-300 + 1.0).abs() < 1e-15, "{inverse}");
+        let huge = Number::from_integer(num_bigint::BigInt::from(10).pow(400));
+        assert_eq!(Complexes.number(&huge), None);
+        assert_eq!(Complexes.number(&(&huge / &huge)), Some(Complex::ONE));
+    }
+
+    /// Miller–Rabin with the first twelve primes as bases decides below 3.3e24 (Sorenson &
+    /// Webster 2015).
+    #[test]
+    fn moduli_are_prime() {
+        for prime in PRIMES {
+            let field = PrimeField::new(prime);
+            let twos = (prime - 1).trailing_zeros();
+            for base in [2, 3, 5, 7, 11, 13, 17, 19, 23, 29, 31, 37] {
+                let (mut power, mut square, mut left) = (1, base, (prime - 1) >> twos);
+                while left > 0 {
+                    if left & 1 == 1 {
+                        power = field.multiply(&power, &square);
+                    }
+                    square = field.multiply(&square, &square);
+                    left >>= 1;
+                }
+                let mut witness = power == 1;
+                for _ in 0..twos {
+                    witness |= power == prime - 1;
+                    power = field.multiply(&power, &power);
+                }
+                assert!(witness, "{prime} is composite by {base}");
+            }
+        }
+    }
+}

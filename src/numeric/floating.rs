@@ -239,7 +239,7 @@ impl Scaled {
 /// A power of two near 1/√m, so that scaling never rounds; 1 where there is nothing to scale.
 fn root_of_inverse(magnitude: f64) -> f64 {
     if magnitude > 0.0 && magnitude.is_finite() {
-        libm::exp2((-0.5 * libm::log2(magnitude)).round())
+        libm::scalbn(1.0, -libm::ilogb(magnitude).div_euclid(2))
     } else {
         1.0
     }

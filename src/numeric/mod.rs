@@ -4,9 +4,9 @@
 //! [`crate::elimination`]: a witness must not share code with what it judges.
 //!
 //! All of them solve the modified nodal equations (Ho, Ruehli & Brennan 1975) of one transfer:
-//! node voltages and the currents that are needed. [`exact`] does it over Q\[s\] without
+//! node voltages and the currents that are needed. [`exact()`] does it over Q\[s\] without
 //! fractions, [`modular_value`] in a prime field, [`response`] in complex floating point with an
-//! error bound for each answer. [`crosscheck`] holds a derived result against them.
+//! error bound for each answer. [`crosscheck()`] holds a derived result against them.
 
 mod crosscheck;
 mod exact;

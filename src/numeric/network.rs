@@ -126,8 +126,13 @@ impl<'a> Network<'a> {
         for element in self.present() {
             touched[element.plus.0 as usize] = true;
             touched[element.minus.0 as usize] = true;
-            // The current of an independent source does not answer to a voltage: it joins nothing.
-            if !matches!(element.law, Law::CurrentSource) {
+            // A given current does not answer to a voltage: it joins nothing.
+            let is_given = match &element.law {
+                Law::CurrentSource => true,
+                Law::ControlledCurrent(controls) => controls.is_empty(),
+                _ => false,
+            };
+            if !is_given {
                 parts.join(element.plus, element.minus);
             }
         }

@@ -256,3 +256,53 @@ impl Field for Quotients {
         if a.numerator.is_zero() { 0.0 } else { 1.0 }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn polynomial(coefficients: &[i64]) -> Polynomial {
+        Polynomial::new(coefficients.iter().map(|a| BigInt::from(*a)).collect())
+    }
+
+    #[test]
+    fn greatest_common_divisors() {
+        let check = |a: &[i64], b: &[i64], expected: &[i64]| {
+            let (a, b, expected) = (polynomial(a), polynomial(b), polynomial(expected));
+            assert_eq!(a.gcd(&b), expected);
+            assert_eq!(b.gcd(&a), expected);
+        };
+        check(&[], &[], &[]);
+        check(&[], &[-2, -4], &[2, 4]);
+        check(&[6], &[4, 8], &[2]);
+        // (1 + s)(2 + s) and (1 + s)(3 + s), one of them times −2
+        check(&[2, 3, 1], &[-6, -8, -2], &[1, 1]);
+        check(&[2, 3, 1], &[3, 5, 1], &[1]);
+        check(&[0, 0, 6], &[0, 4, 2], &[0, 2]);
+        // A square and its derivative.
+        check(&[1, 4, 4], &[4, 8], &[1, 2]);
+    }
+
+    #[test]
+    fn products_divide_exactly() {
+        let factors = [polynomial(&[3, 0, -2]), polynomial(&[0, 7]), polynomial(&[-1, 5, 1, 9])];
+        for a in &factors {
+            for b in &factors {
+                assert_eq!(&a.multiply(b).divide_exactly(b), a);
+            }
+        }
+    }
+
+    #[test]
+    fn quotients_are_in_lowest_terms() {
+        let quotient = Quotient::new(polynomial(&[2, 3, 1]), polynomial(&[-2, -2]));
+        assert_eq!(quotient.numerator, polynomial(&[-2, -1]));
+        assert_eq!(quotient.denominator, polynomial(&[2]));
+        let zero = Quotient::new(polynomial(&[]), polynomial(&[4, 4]));
+        assert_eq!(zero, Quotients.zero());
+        let field = Quotients;
+        let inverse = field.inverse(&quotient).expect("not 0");
+        assert_eq!(field.multiply(&quotient, &inverse), field.one());
+        assert_eq!(field.subtract(&quotient, &quotient), field.zero());
+    }
+}

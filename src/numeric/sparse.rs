@@ -82,7 +82,6 @@ fn choose<F: Field>(
     let mut searched = 0;
     let mut empty = Vec::new();
     for &(length, index) in waiting.iter() {
-        // A row of this length cannot beat the best so far.
         if searched == SEARCHED_ROWS {
             break;
         }

@@ -194,3 +194,57 @@ impl Generator {
         self.next() % bound.max(1)
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::numeric::Rationals;
+    use crate::numeric::testing::{Builder, constant, number};
+
+    fn symbol(index: u32) -> Value {
+        Value::Symbol(SymbolId(index))
+    }
+
+    #[test]
+    fn values_at_numbers() {
+        // s = 2, a = 3, b = 6, zero = 0
+        let numbers = [number(3, 1), number(6, 1), number(0, 1)];
+        let check = |value: Value, expected: Option<Number>| {
+            let found = evaluate(&Rationals, &value, &numbers, &number(2, 1));
+            assert_eq!(found, expected, "{value:?}");
+        };
+        let (a, b, zero) = (symbol(0), symbol(1), symbol(2));
+        check(Value::S, Some(number(2, 1)));
+        check(Value::Sum(vec![a.clone(), b.clone(), constant(1)]), Some(number(10, 1)));
+        check(Value::Product(vec![Value::S, a.clone()]), Some(number(6, 1)));
+        check(Value::Negative(Box::new(a.clone())), Some(number(-3, 1)));
+        check(Value::Power(Box::new(a.clone()), -2), Some(number(1, 9)));
+        check(Value::Power(Box::new(zero.clone()), -1), None);
+        check(Value::Parallel(vec![a.clone(), b.clone()]), Some(number(2, 1)));
+        check(Value::Parallel(vec![a.clone(), zero.clone(), b]), Some(number(0, 1)));
+        check(Value::Parallel(vec![zero.clone(), zero]), None);
+        check(Value::Parallel(vec![a.clone(), Value::Negative(Box::new(a))]), None);
+        check(symbol(9), None);
+    }
+
+    #[test]
+    fn nominal_values_only_when_all_that_are_used_have_one() {
+        let mut b = Builder::new();
+        let source = b.voltage("Vin", "in", "0");
+        b.passive("R1", "in", "0", number(5, 1));
+        b.symbol("unused", None);
+        let gain = b.gain(source, "in");
+        let assignment = Assignment::for_transfer(&b.circuit, &gain, 1);
+        assert_eq!(assignment.origin, Origin::Nominal);
+        assert_eq!(assignment.numbers, [number(5, 1), number(1, 1)]);
+        b.circuit.symbols[0].nominal = None;
+        let assignment = Assignment::for_transfer(&b.circuit, &gain, 1);
+        assert_eq!(assignment.origin, Origin::Random);
+    }
+
+    #[test]
+    fn pi_is_pi() {
+        let error = pi().to_f64().map(|value| value - std::f64::consts::PI);
+        assert_eq!(error, Some(0.0));
+    }
+}

@@ -176,6 +176,19 @@ fn sallen_key_low_pass() {
 }
 
 #[test]
+fn nullor_away_from_ground() {
+    // The norator between two nodes turns in · R2/R1 about: a transconductor with its load.
+    let mut b = Builder::new();
+    let source = b.voltage("Vin", "in", "0");
+    let law = Law::Nullor(b.node("in"), b.node("x"));
+    b.element("N1", Class::Opamp, ("out", "x"), law);
+    b.passive("R1", "x", "0", n(2));
+    b.passive("R2", "out", "0", n(6));
+    let gain = b.gain(source, "out");
+    check(&b, &gain, &[-3], &[1]);
+}
+
+#[test]
 fn voltage_controlled_sources() {
     let mut b = Builder::new();
     let source = b.voltage("Vin", "in", "0");
@@ -303,6 +316,19 @@ fn inductor_loop_and_capacitor_cut_set() {
 }
 
 #[test]
+fn coupled_inductors() {
+    // L1 = 6, L2 = 3, M = 4 with the secondary shorted: s (L1 − M²/L2) = 2 s/3.
+    let mut b = Builder::new();
+    let mutual = || Value::Product(vec![Value::S, constant(4)]);
+    let primary = b.passive("L1", "a", "x", n(6));
+    let secondary = b.passive("L2", "0", "y", n(3));
+    b.controlled_voltage("M1.primary", ("x", "0"), mutual(), Quantity::Current(secondary));
+    b.controlled_voltage("M1.secondary", ("y", "0"), mutual(), Quantity::Current(primary));
+    let port = b.impedance("a", "0");
+    check(&b, &port, &[0, 2], &[3]);
+}
+
+#[test]
 fn zeroed_and_removed_sources() {
     let mut b = Builder::new();
     b.voltage("V1", "a", "0");
@@ -347,6 +373,17 @@ fn parts_without_ground() {
     let current = transfer(Drive::Source(source), Probe::Current(source), Probe::Drive);
     // 1/1 and, through the transformer, 1/(4·3).
     check(&b, &current, &[-13], &[12]);
+
+    // A source inside a floating part, and currents of 0 between the parts.
+    let mut b = Builder::new();
+    b.passive("R1", "in", "0", n(1));
+    let source = b.current("I1", "c", "d");
+    b.passive("R2", "c", "d", n(3));
+    b.current("I2", "c", "0");
+    b.element("I3", Class::Current, ("d", "in"), Law::ControlledCurrent(Vec::new()));
+    let voltage = Probe::Voltage(b.node("c"), b.node("d"));
+    let across = transfer(Drive::Source(source), voltage, Probe::Drive);
+    check(&b, &across, &[-3], &[1]);
 
     // A circuit without ground at all.
     let mut b = Builder::new();
