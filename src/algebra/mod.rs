@@ -12,3 +12,7 @@ mod polynomial;
 pub use gcd::{gcd, gcd_all, gcd_cofactors, subresultant_gcd};
 pub use monomial::Var;
 pub use polynomial::Polynomial;
+mod fraction;
+pub use fraction::Fraction;
+mod univariate;
+pub use univariate::Univariate;

@@ -27,7 +27,11 @@ pub struct Closed {
 
 /// Terms of a count, altogether.
 pub fn total(counts: &TermCounts) -> BigUint {
-    counts.numerator.iter().chain(&counts.denominator).fold(BigUint::zero(), |sum, count| sum + count)
+    counts
+        .numerator
+        .iter()
+        .chain(&counts.denominator)
+        .fold(BigUint::zero(), |sum, count| sum + count)
 }
 
 /// The closed form of an elimination; expanded when it has at most `max_terms` terms.

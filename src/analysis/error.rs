@@ -90,18 +90,14 @@ impl AnalysisError {
         let node = |id: NodeId| circuit[id].name.clone();
         match *error {
             EliminationError::Singular => singular(circuit, transfer, limits),
-            EliminationError::Infinite => {
-                Self::Infinite { quantity: below(circuit, transfer) }
-            }
+            EliminationError::Infinite => Self::Infinite { quantity: below(circuit, transfer) },
             EliminationError::NoReturnPath(a, b) => {
                 Self::NotConnected(node(a), node(b), "the driving current has no way back")
             }
             EliminationError::Undetermined(a, b) => {
                 Self::NotConnected(node(a), node(b), "the voltage between them is not determined")
             }
-            EliminationError::DivisionByZero(id) => {
-                Self::DivisionByZero(circuit[id].name.clone())
-            }
+            EliminationError::DivisionByZero(id) => Self::DivisionByZero(circuit[id].name.clone()),
             EliminationError::TooLarge { states } => {
                 Self::TooLarge { states, allowed: limits.max_states }
             }

@@ -37,14 +37,15 @@ pub(crate) fn collect(
         );
     }
     if elimination.is_zero() {
-        say("zero-answer", format!("{} does not reach what is asked: the answer is 0", drive(circuit, transfer)));
+        say(
+            "zero-answer",
+            format!("{} does not reach what is asked: the answer is 0", drive(circuit, transfer)),
+        );
         return notices;
     }
     for group in charge_groups(circuit, transfer) {
-        let concerned = group
-            .capacitors
-            .iter()
-            .any(|id| !elimination.independent_elements().contains(id));
+        let concerned =
+            group.capacitors.iter().any(|id| !elimination.independent_elements().contains(id));
         if concerned {
             say(
                 "kept-charge",

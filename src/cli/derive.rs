@@ -8,7 +8,6 @@ use cofactor::circuit::{Ask, Circuit};
 use cofactor::language::{Severity, line_and_column};
 use cofactor::typeset::answer::{self, Answer, TextStyle};
 use cofactor::typeset::json;
-use cofactor::typeset::latex::Latex;
 use cofactor::typeset::screen::{Characters, Screen};
 use cofactor::typeset::shape::Shape;
 
@@ -28,7 +27,16 @@ pub(crate) fn run(arguments: &Derive, messages: &Messages) -> Result<u8, Failure
         Some(ShapeName::Nested) => Shape::Nested,
     };
     let options = Options { max_terms: arguments.max_terms, ..Options::default() };
-    let mut printer = Printer { arguments, messages, loaded: &loaded, shape, results: Vec::new(), warnings: Vec::new(), passed: true, printed: 0 };
+    let mut printer = Printer {
+        arguments,
+        messages,
+        loaded: &loaded,
+        shape,
+        results: Vec::new(),
+        warnings: Vec::new(),
+        passed: true,
+        printed: 0,
+    };
     let outcome = answers(&loaded, options, arguments.stop_after, &mut |ask, derivations| {
         printer.take(ask, derivations)
     });
@@ -102,8 +110,7 @@ impl Printer<'_> {
     /// Prints one answer, or keeps it for the end.
     fn take(&mut self, ask: &Ask, derivations: &[Derivation]) -> Result<(), Failure> {
         self.check_shape(ask, derivations)?;
-        let answer =
-            Answer { circuit: &self.loaded.circuit, ask, derivations, shape: self.shape };
+        let answer = Answer { circuit: &self.loaded.circuit, ask, derivations, shape: self.shape };
         for derivation in derivations {
             self.passed &= derivation.evidence.passed();
             for notice in &derivation.notices {
@@ -115,8 +122,7 @@ impl Printer<'_> {
         match output.format {
             Format::Json => self.results.push(answer::result(&answer)),
             Format::Text => {
-                let characters =
-                    if output.ascii { Characters::Ascii } else { Characters::Unicode };
+                let characters = if output.ascii { Characters::Ascii } else { Characters::Unicode };
                 let screen = Screen { width: width(Format::Text), characters };
                 let style = TextStyle { screen, quiet: output.quiet };
                 let mut text = String::new();
@@ -189,8 +195,8 @@ impl Printer<'_> {
             results: std::mem::take(&mut self.results),
             warnings,
         };
-        let mut text = serde_json::to_string_pretty(&whole)
-            .map_err(|error| Failure::output(&error.into()))?;
+        let mut text =
+            serde_json::to_string_pretty(&whole).map_err(|error| Failure::output(&error.into()))?;
         text.push('\n');
         write_results(&text)
     }

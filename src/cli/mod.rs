@@ -34,13 +34,13 @@ pub(crate) fn run() -> ExitCode {
         Ok(arguments) => arguments,
         Err(error) => return usage(&error),
     };
-    let worker = std::thread::Builder::new().stack_size(STACK).spawn(move || match arguments.command
-    {
-        Command::Derive(derive) => {
-            let messages = Messages::new(&derive.output);
-            finish(&messages, derive::run(&derive, &messages))
-        }
-    });
+    let worker =
+        std::thread::Builder::new().stack_size(STACK).spawn(move || match arguments.command {
+            Command::Derive(derive) => {
+                let messages = Messages::new(&derive.output);
+                finish(&messages, derive::run(&derive, &messages))
+            }
+        });
     match worker.map(std::thread::JoinHandle::join) {
         Ok(Ok(code)) => ExitCode::from(code),
         // A panic has printed its own message.

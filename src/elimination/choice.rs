@@ -79,7 +79,11 @@ impl MultiPort {
             .iter()
             .zip(&self.b)
             .map(|(a, b)| {
-                voltage.iter().map(|&port| &a[port]).chain(rest.iter().map(|&port| &b[port])).collect()
+                voltage
+                    .iter()
+                    .map(|&port| &a[port])
+                    .chain(rest.iter().map(|&port| &b[port]))
+                    .collect()
             })
             .collect();
         // Each element of R that stands behind j smaller ones of the rest moved past them.

@@ -274,12 +274,8 @@ impl Reducer {
     }
 
     fn finish(self, roots: Vec<Link>) -> Diagram {
-        let whole = Diagram {
-            starts: self.starts,
-            edges: self.edges,
-            choice_of: self.choice_of,
-            roots,
-        };
+        let whole =
+            Diagram { starts: self.starts, edges: self.edges, choice_of: self.choice_of, roots };
         whole.reachable()
     }
 }
@@ -337,12 +333,8 @@ impl Diagram {
             }
         }
         let mut renumbered = vec![0_usize; self.len()];
-        let mut kept = Self {
-            starts: vec![0],
-            edges: Vec::new(),
-            choice_of: Vec::new(),
-            roots: Vec::new(),
-        };
+        let mut kept =
+            Self { starts: vec![0], edges: Vec::new(), choice_of: Vec::new(), roots: Vec::new() };
         let moved = |renumbered: &[usize], link: Link| {
             if link.is_dead() {
                 link
@@ -355,10 +347,11 @@ impl Diagram {
                 continue;
             }
             renumbered[node] = kept.choice_of.len();
-            kept.edges.extend(self.edges(node).iter().map(|edge| Edge {
-                weight: edge.weight,
-                link: moved(&renumbered, edge.link),
-            }));
+            kept.edges.extend(
+                self.edges(node)
+                    .iter()
+                    .map(|edge| Edge { weight: edge.weight, link: moved(&renumbered, edge.link) }),
+            );
             kept.starts.push(kept.edges.len() as u32);
             kept.choice_of.push(self.choice_of[node]);
         }

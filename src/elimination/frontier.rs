@@ -71,8 +71,7 @@ pub(crate) fn levels(choices: &[Vec<&[Pair]>], nodes: usize) -> Vec<Level> {
             .iter()
             .map(|pairs| pairs.iter().map(|pair| (position(pair.0), position(pair.1))).collect())
             .collect();
-        let leaves: Vec<bool> =
-            frontier.iter().map(|&node| last[node as usize] == level).collect();
+        let leaves: Vec<bool> = frontier.iter().map(|&node| last[node as usize] == level).collect();
         all.push(Level { before, entering: frontier.len() - before, merges, leaves });
         frontier.retain(|&node| last[node as usize] != level);
     }

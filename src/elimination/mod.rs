@@ -21,9 +21,9 @@ mod parts;
 mod passes;
 mod system;
 #[cfg(test)]
-mod tests;
-#[cfg(test)]
 mod testing;
+#[cfg(test)]
+mod tests;
 mod value;
 
 use num_bigint::{BigInt, BigUint};
@@ -265,10 +265,7 @@ impl Elimination {
             self.weights.iter().map(|w| numbers::remainder(w, field, values)).collect();
         let ring = numbers::Remainders(field);
         let values = passes::values(&ring, &self.diagram, &weights);
-        (
-            passes::at(&ring, &values, self.numerator),
-            passes::at(&ring, &values, self.denominator),
-        )
+        (passes::at(&ring, &values, self.numerator), passes::at(&ring, &values, self.denominator))
     }
 
     /// Numerator and denominator as integer polynomials in `s` (lowest power first) for these symbol
@@ -380,9 +377,10 @@ fn terms_never_meet(system: &System) -> bool {
             for term in alternative.weight.terms() {
                 let symbols: Vec<(Var, u32)> =
                     term.0.filter(|&(variable, _)| variable != Var::S).collect();
-                if symbols.iter().any(|&(variable, _)| {
-                    *owner.entry(variable).or_insert(index) != index
-                }) {
+                if symbols
+                    .iter()
+                    .any(|&(variable, _)| *owner.entry(variable).or_insert(index) != index)
+                {
                     return false;
                 }
                 seen.push(symbols);

@@ -185,7 +185,9 @@ fn without_common(contents: &[Monomial], above: Link, below: Link) -> (Monomial,
     let common = least(&a, &b);
     let rest = |of: Monomial| {
         of.into_iter()
-            .map(|(variable, power)| (variable, power - common.get(&variable).copied().unwrap_or(0)))
+            .map(|(variable, power)| {
+                (variable, power - common.get(&variable).copied().unwrap_or(0))
+            })
             .filter(|&(_, power)| power > 0)
             .collect()
     };

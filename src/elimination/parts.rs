@@ -50,13 +50,15 @@ pub(crate) fn ground_floating(
     for alternative in &system.choices[question].alternatives {
         for &Pair(a, b) in &alternative.current {
             if current.find(a) != current.find(b) {
-                let (a, b) = (circuit_node(a).unwrap_or_default(), circuit_node(b).unwrap_or_default());
+                let (a, b) =
+                    (circuit_node(a).unwrap_or_default(), circuit_node(b).unwrap_or_default());
                 return Err(EliminationError::NoReturnPath(a, b));
             }
         }
         for &Pair(a, b) in &alternative.voltage {
             if voltage.find(a) != voltage.find(b) {
-                let (a, b) = (circuit_node(a).unwrap_or_default(), circuit_node(b).unwrap_or_default());
+                let (a, b) =
+                    (circuit_node(a).unwrap_or_default(), circuit_node(b).unwrap_or_default());
                 return Err(EliminationError::Undetermined(a, b));
             }
         }
@@ -66,9 +68,11 @@ pub(crate) fn ground_floating(
         .groups()
         .into_iter()
         .filter(|group| group[0] != 0 && group.len() > 1)
-        .filter(|group| voltage_groups.binary_search_by_key(&group[0], |g| g[0]).is_ok_and(
-            |at| voltage_groups[at] == *group,
-        ))
+        .filter(|group| {
+            voltage_groups
+                .binary_search_by_key(&group[0], |g| g[0])
+                .is_ok_and(|at| voltage_groups[at] == *group)
+        })
         .collect();
     let mut moved: Vec<u32> = (0..system.nodes as u32).collect();
     for group in floating {

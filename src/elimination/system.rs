@@ -99,9 +99,7 @@ impl<'c> Builder<'c> {
             .collect();
         elements.sort_by(|&a, &b| compare_names(&circuit[a].name, &circuit[b].name));
         let mut by_name: Vec<u32> = (1..circuit.nodes.len() as u32).collect();
-        by_name.sort_by(|&a, &b| {
-            compare_names(&circuit[NodeId(a)].name, &circuit[NodeId(b)].name)
-        });
+        by_name.sort_by(|&a, &b| compare_names(&circuit[NodeId(a)].name, &circuit[NodeId(b)].name));
         let mut node_of = vec![0; circuit.nodes.len()];
         for (index, node) in by_name.into_iter().enumerate() {
             node_of[node as usize] = index as u32 + 1;

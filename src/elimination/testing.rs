@@ -1,8 +1,8 @@
 //! Circuits by hand, for the tests of this folder.
 
 use crate::circuit::{
-    Circuit, Class, Control, Drive, Element, ElementId, GROUND, Law, Node, NodeId, Probe,
-    Quantity, Symbol, SymbolId, SymbolRole, Transfer, Unit, Value,
+    Circuit, Class, Control, Drive, Element, ElementId, GROUND, Law, Node, NodeId, Probe, Quantity,
+    Symbol, SymbolId, SymbolRole, Transfer, Unit, Value,
 };
 
 /// A circuit that grows line by line; every element has a symbol of its own name.
@@ -42,14 +42,7 @@ impl Bench {
 
     fn add(&mut self, name: &str, class: Class, plus: &str, minus: &str, law: Law) -> ElementId {
         let (plus, minus) = (self.node(plus), self.node(minus));
-        self.circuit.elements.push(Element {
-            name: name.into(),
-            class,
-            plus,
-            minus,
-            law,
-            line: 0,
-        });
+        self.circuit.elements.push(Element { name: name.into(), class, plus, minus, law, line: 0 });
         ElementId(self.circuit.elements.len() as u32 - 1)
     }
 
@@ -86,7 +79,9 @@ impl Bench {
     ) -> ElementId {
         let controls = vec![Control { gain: self.symbol(name), quantity }];
         match name.as_bytes()[0] {
-            b'A' | b'r' => self.add(name, Class::Voltage, plus, minus, Law::ControlledVoltage(controls)),
+            b'A' | b'r' => {
+                self.add(name, Class::Voltage, plus, minus, Law::ControlledVoltage(controls))
+            }
             _ => self.add(name, Class::Current, plus, minus, Law::ControlledCurrent(controls)),
         }
     }

@@ -99,11 +99,7 @@ fn a_current_source_that_follows_a_resistor() {
         &[CD, AB],
         vec![vec![n(1), n(0)], vec![n(0), n(0)]],
         vec![vec![-&x(2), n(0)], vec![-&x(1), n(1)]],
-        vec![
-            (x(2), vec![], vec![]),
-            (n(1), vec![CD], vec![CD]),
-            (x(1), vec![AB], vec![CD]),
-        ],
+        vec![(x(2), vec![], vec![]), (n(1), vec![CD], vec![CD]), (x(1), vec![AB], vec![CD])],
     );
 }
 

@@ -41,8 +41,7 @@ pub(crate) fn scale(
             })
             .collect();
         let all = || values.iter().flatten().filter(|value| !value.is_zero());
-        let denominator =
-            all().fold(BigInt::one(), |common, value| common.lcm(value.denom()));
+        let denominator = all().fold(BigInt::one(), |common, value| common.lcm(value.denom()));
         let content = all().fold(BigInt::zero(), |common, value| {
             common.gcd(&(value.numer() * (&denominator / value.denom())))
         });

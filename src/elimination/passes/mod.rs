@@ -22,7 +22,13 @@ pub(crate) trait Ring {
     fn zero(&self) -> Self::Value;
     fn one(&self) -> Self::Value;
     /// sum ← sum ± weight·value
-    fn add(&self, sum: &mut Self::Value, weight: &Self::Weight, value: &Self::Value, negative: bool);
+    fn add(
+        &self,
+        sum: &mut Self::Value,
+        weight: &Self::Weight,
+        value: &Self::Value,
+        negative: bool,
+    );
     fn negate(&self, value: &Self::Value) -> Self::Value;
 }
 

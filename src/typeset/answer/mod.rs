@@ -80,8 +80,7 @@ pub(crate) fn asymptotes(form: &ClosedForm, letters: Lettering) -> Option<[Asymp
     }
     let (n, d) = super::shape::signed(fraction);
     let at = |n_power: u32, d_power: u32| {
-        let (above, below) =
-            (n.coefficient(Var::S, n_power), d.coefficient(Var::S, d_power));
+        let (above, below) = (n.coefficient(Var::S, n_power), d.coefficient(Var::S, d_power));
         let factor = super::shape::ratio(&above, &below, letters);
         Asymptote { factor, power: i64::from(n_power) - i64::from(d_power) }
     };

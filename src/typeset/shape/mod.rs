@@ -70,9 +70,11 @@ impl Lettering {
     pub fn expanded(self, polynomial: &Polynomial) -> Formula {
         // Pairs in place of the reference order (R1·C2 before C1·R2 comes from the order of the
         // symbols), terms as the algebra sorts them.
-        Formula::sum(polynomial.terms().map(|(powers, coefficient)| {
-            self.term(powers.collect::<Vec<_>>(), &coefficient)
-        }))
+        Formula::sum(
+            polynomial
+                .terms()
+                .map(|(powers, coefficient)| self.term(powers.collect::<Vec<_>>(), &coefficient)),
+        )
     }
 }
 

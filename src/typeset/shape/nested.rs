@@ -16,8 +16,10 @@ pub struct Layered {
 /// The shape `nested`.
 pub fn nested(nested: &Nested, letters: Lettering) -> Layered {
     let definitions = nested.definitions.iter().map(|sum| written(sum, letters)).collect();
-    let formula =
-        Formula::quotient(written(&nested.numerator, letters), written(&nested.denominator, letters));
+    let formula = Formula::quotient(
+        written(&nested.numerator, letters),
+        written(&nested.denominator, letters),
+    );
     Layered { definitions, formula }
 }
 
