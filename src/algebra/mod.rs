@@ -3,12 +3,14 @@
 //!
 //! May use: nothing of this crate. Knows no circuits, no names and no units: variables are numbers.
 
+mod fraction;
 mod gcd;
 mod integer;
 pub mod modular;
 mod monomial;
 mod polynomial;
 
+pub use fraction::Fraction;
 pub use gcd::{gcd, gcd_all, gcd_cofactors, subresultant_gcd};
 pub use monomial::Var;
 pub use polynomial::Polynomial;
