@@ -9,8 +9,10 @@ mod integer;
 pub mod modular;
 mod monomial;
 mod polynomial;
+mod univariate;
 
 pub use fraction::Fraction;
 pub use gcd::{gcd, gcd_all, gcd_cofactors, subresultant_gcd};
 pub use monomial::Var;
 pub use polynomial::Polynomial;
+pub use univariate::Univariate;
