@@ -3,6 +3,7 @@
 //!
 //! May use: nothing of this crate. Knows no circuits, no names and no units: variables are numbers.
 
+mod factor;
 mod fraction;
 mod gcd;
 mod integer;
@@ -11,6 +12,7 @@ mod monomial;
 mod polynomial;
 mod univariate;
 
+pub use factor::{Factors, factor};
 pub use fraction::Fraction;
 pub use gcd::{gcd, gcd_all, gcd_cofactors, subresultant_gcd};
 pub use monomial::Var;
