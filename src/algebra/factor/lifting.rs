@@ -47,21 +47,35 @@ pub(super) fn factors(polynomial: &Polynomial) -> Option<Vec<Polynomial>> {
     let problem = Problem { polynomial, main, others, lead: lead.factors, unit: lead.content };
     let mut random = Random::new(0x7761_6e67);
     for attempt in 0..POINTS {
-        let reach = 2 + attempt as i64 * 3;
-        let values: Vec<i64> = (0..problem.others.len())
-            .map(|_| {
-                if attempt == 0 {
-                    0
-                } else {
-                    (random.word() % (2 * reach as u64 + 1)) as i64 - reach
-                }
-            })
-            .collect();
+        let values = sample(attempt, problem.others.len(), &mut random);
         if let Some(factors) = problem.attempt(&values) {
             return Some(factors);
         }
     }
     None
+}
+
+/// Values for the variables: zeros first, since they keep the polynomial sparse; then small
+/// integers; then primes, whose products have divisors of their own, as Wang's condition wants.
+fn sample(attempt: u64, count: usize, random: &mut Random) -> Vec<i64> {
+    let below = |random: &mut Random, bound: u64| (random.word() % bound) as i64;
+    match attempt {
+        0 => vec![0; count],
+        1..4 => {
+            (0..count).map(|_| below(random, 4 * attempt as u64 + 1) - 2 * attempt as i64).collect()
+        }
+        _ => {
+            let mut values = Vec::with_capacity(count);
+            while values.len() < count {
+                let value = 2 * below(random, 8 * attempt + 16 * count as u64) + 3;
+                let prime = (2..value).take_while(|d| d * d <= value).all(|d| value % d != 0);
+                if prime && !values.contains(&value) {
+                    values.push(value);
+                }
+            }
+            values
+        }
+    }
 }
 
 struct Problem<'a> {
