@@ -6,10 +6,11 @@
 
 use super::definitions::{Definitions, Meaning};
 use super::diagnostic::{Diagnostic, Span};
+use super::names::{class_of_letter, unit_of};
 use super::syntax::{Expression, ExpressionKind};
-use crate::circuit::{Number, Unit};
+use crate::circuit::{Number, SymbolRole, Unit};
 use num_bigint::BigInt;
-use num_traits::{ToPrimitive, Zero};
+use num_traits::{One, Signed, ToPrimitive, Zero};
 use rustc_hash::FxHashMap;
 use std::collections::BTreeMap;
 
@@ -137,6 +138,18 @@ impl<'d> UnitSolver<'d> {
         });
     }
 
+    /// Where nothing tells the unit of a parameter, its letter does (`Rx` is in ohm).
+    pub(crate) fn guess_free(&mut self) {
+        for (id, definition) in self.definitions.list.iter().enumerate() {
+            if definition.role == SymbolRole::Parameter
+                && let Some(class) = class_of_letter(&definition.name)
+                && self.reduce(Form::unknown(id)) == Form::unknown(id)
+            {
+                self.solved.insert(id, Form::of(unit_of(class)));
+            }
+        }
+    }
+
     /// The unit of a definition; dimensionless where nothing tells.
     pub(crate) fn unit(&mut self, id: usize) -> Unit {
         let form = self.reduce(Form::unknown(id));
@@ -225,10 +238,15 @@ impl<'d> UnitSolver<'d> {
         let found = self.reduce(found);
         let mut difference = found.clone();
         difference.multiply(&wanted, &minus_one);
-        let pivot = difference.0.iter().find_map(|(base, exponent)| match base {
-            Base::Unknown(id) => Some((*id, exponent.clone())),
-            _ => None,
-        });
+        // An exponent of ±1 keeps the exponents of the solution integers.
+        let pivot = difference
+            .0
+            .iter()
+            .filter_map(|(base, exponent)| match base {
+                Base::Unknown(id) => Some((*id, exponent.clone())),
+                _ => None,
+            })
+            .min_by_key(|(_, exponent)| !exponent.abs().is_one());
         if let Some((id, exponent)) = pivot {
             difference.0.remove(&Base::Unknown(id));
             let mut solution = Form::default();
