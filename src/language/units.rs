@@ -61,6 +61,13 @@ impl Form {
         }
     }
 
+    /// Replaces an unknown.
+    fn substitute(&mut self, id: usize, solution: &Self) {
+        if let Some(exponent) = self.0.remove(&Base::Unknown(id)) {
+            self.multiply(solution, &exponent);
+        }
+    }
+
     /// The unit, where no unknown is left and the exponents are integers; an unknown counts as 1
     /// if `free_is_one`.
     fn unit(&self, free_is_one: bool) -> Option<Unit> {
@@ -238,7 +245,8 @@ impl<'d> UnitSolver<'d> {
         let found = self.reduce(found);
         let mut difference = found.clone();
         difference.multiply(&wanted, &minus_one);
-        // An exponent of ±1 keeps the exponents of the solution integers.
+        // An exponent of ±1 keeps the exponents of the solution integers; of those the latest, so that
+        // a parameter that many values share stays free.
         let pivot = difference
             .0
             .iter()
@@ -246,7 +254,7 @@ impl<'d> UnitSolver<'d> {
                 Base::Unknown(id) => Some((*id, exponent.clone())),
                 _ => None,
             })
-            .min_by_key(|(_, exponent)| !exponent.abs().is_one());
+            .max_by_key(|(_, exponent)| exponent.abs().is_one());
         if let Some((id, exponent)) = pivot {
             difference.0.remove(&Base::Unknown(id));
             let mut solution = Form::default();
@@ -261,25 +269,40 @@ impl<'d> UnitSolver<'d> {
         }
     }
 
-    /// Puts in what is known, and keeps the short form for the next time.
-    fn reduce(&mut self, form: Form) -> Form {
-        let mut current = form.clone();
-        let mut steps = 0_usize;
-        while let Some((id, exponent)) = current.0.iter().find_map(|(base, exponent)| match base {
-            Base::Unknown(id) if self.solved.contains_key(id) => Some((*id, exponent.clone())),
+    /// Puts in what is known.
+    fn reduce(&mut self, mut form: Form) -> Form {
+        while let Some(id) = self.known_in(&form) {
+            self.compress(id);
+            form.substitute(id, &self.solved[&id]);
+        }
+        form
+    }
+
+    /// Makes the solution of an unknown free of other known ones, and all that it rests on as
+    /// well, so that a chain is walked once (as a union-find halves its paths).
+    fn compress(&mut self, id: usize) {
+        let mut stack = vec![id];
+        while let Some(top) = stack.last().copied() {
+            match self.known_in(&self.solved[&top]) {
+                None => {
+                    stack.pop();
+                }
+                Some(inner) if self.known_in(&self.solved[&inner]).is_some() => stack.push(inner),
+                Some(inner) => {
+                    let known = self.solved[&inner].clone();
+                    if let Some(form) = self.solved.get_mut(&top) {
+                        form.substitute(inner, &known);
+                    }
+                }
+            }
+        }
+    }
+
+    /// An unknown of the form that is solved.
+    fn known_in(&self, form: &Form) -> Option<usize> {
+        form.0.keys().find_map(|base| match base {
+            Base::Unknown(id) if self.solved.contains_key(id) => Some(*id),
             _ => None,
-        }) {
-            current.0.remove(&Base::Unknown(id));
-            current.multiply(&self.solved[&id], &exponent);
-            steps += 1;
-        }
-        if steps > 1
-            && form.0.len() == 1
-            && let Some((Base::Unknown(id), _)) = form.0.first_key_value()
-            && self.solved.contains_key(id)
-        {
-            self.solved.insert(*id, current.clone());
-        }
-        current
+        })
     }
 }
