@@ -22,6 +22,7 @@ mod parse;
 mod quantity;
 mod source;
 mod sources;
+mod symbols;
 mod syntax;
 #[cfg(test)]
 mod tests;

@@ -296,6 +296,7 @@ fn every_code_is_explained() {
         include_str!("parse.rs"),
         include_str!("quantity.rs"),
         include_str!("sources.rs"),
+        include_str!("symbols.rs"),
         include_str!("units.rs"),
         include_str!("walks.rs"),
     ];
