@@ -9,26 +9,14 @@ use super::names::{self, is_ground, nearest};
 use super::sources::{self, Access};
 use super::syntax::{Argument, Expression, ExpressionKind, Name, Query};
 use crate::circuit::{Ask, Circuit, Drive, ElementId, GROUND, Law, NodeId, Probe, Transfer, Unit};
+use rustc_hash::FxHashMap;
 
 /// Resolves a query against a circuit; the line is left 0.
 ///
 /// # Errors
 /// What is unknown or cannot be asked.
 pub(crate) fn resolve(circuit: &Circuit, query: &Query) -> Result<Ask, Vec<Diagnostic>> {
-    let resolver = Resolver { circuit };
-    let from = match &query.from {
-        Some(name) => {
-            Some((resolver.independent_source(name).map_err(|fault| vec![fault])?, name.span))
-        }
-        None => None,
-    };
-    let found = resolver.transfers(&query.expression, from).map_err(|fault| vec![fault])?;
-    let mut text = tidy(&query.expression);
-    if let Some(from) = &query.from {
-        text = format!("{text} from {}", from.text);
-    }
-    let (transfers, superposition) = found;
-    Ok(Ask { name: query.name.text.clone(), text, transfers, superposition, line: 0 })
+    Resolver::new(circuit).resolve(query)
 }
 
 /// The nodes that a question is about.
@@ -81,13 +69,55 @@ enum Side {
     Source(ElementId),
 }
 
-struct Resolver<'c> {
+/// Resolves queries against one circuit.
+pub(crate) struct Resolver<'c> {
     circuit: &'c Circuit,
+    nodes: FxHashMap<&'c str, NodeId>,
+    elements: FxHashMap<&'c str, ElementId>,
+    /// The independent sources, in the order of the file.
+    sources: Vec<ElementId>,
 }
 
 type Found = (Vec<Transfer>, bool);
 
-impl Resolver<'_> {
+impl<'c> Resolver<'c> {
+    /// Indexes the names of a circuit.
+    pub(crate) fn new(circuit: &'c Circuit) -> Self {
+        let mut nodes = FxHashMap::default();
+        for (node, id) in circuit.nodes.iter().zip(0_u32..) {
+            nodes.insert(node.name.as_str(), NodeId(id));
+            nodes.extend(node.aliases.iter().map(|alias| (alias.as_str(), NodeId(id))));
+        }
+        let numbered = || circuit.elements.iter().zip((0_u32..).map(ElementId));
+        let elements = numbered().map(|(element, id)| (element.name.as_str(), id)).collect();
+        let sources = numbered()
+            .filter(|(element, _)| matches!(element.law, Law::VoltageSource | Law::CurrentSource))
+            .map(|(_, id)| id)
+            .collect();
+        Self { circuit, nodes, elements, sources }
+    }
+
+    /// Resolves a query; the line is left 0.
+    ///
+    /// # Errors
+    /// What is unknown or cannot be asked.
+    pub(crate) fn resolve(&self, query: &Query) -> Result<Ask, Vec<Diagnostic>> {
+        self.ask(query).map_err(|fault| vec![fault])
+    }
+
+    fn ask(&self, query: &Query) -> Result<Ask, Diagnostic> {
+        let from = match &query.from {
+            Some(name) => Some((self.independent_source(name)?, name.span)),
+            None => None,
+        };
+        let (transfers, superposition) = self.transfers(&query.expression, from)?;
+        let mut text = tidy(&query.expression);
+        if let Some(from) = &query.from {
+            text = format!("{text} from {}", from.text);
+        }
+        Ok(Ask { name: query.name.text.clone(), text, transfers, superposition, line: 0 })
+    }
+
     fn transfers(
         &self,
         expression: &Expression,
@@ -167,12 +197,12 @@ impl Resolver<'_> {
 
     /// The source that a ratio of two quantities is about.
     fn driving_source(&self, denominator: Side, span: Span) -> Result<ElementId, Diagnostic> {
-        let sources = self.independent_sources();
+        let sources = &self.sources;
         if let [only] = sources.as_slice() {
             return Ok(*only);
         }
         // With every other source zeroed, only the source that sets the denominator can drive.
-        for id in &sources {
+        for id in sources {
             let element = &self.circuit[*id];
             let sets = match (denominator, &element.law) {
                 (Side::Voltage(a, b), Law::VoltageSource) => {
@@ -207,7 +237,7 @@ impl Resolver<'_> {
         let side = self.side(expression)?;
         let sources = match from {
             Some((source, _)) => vec![source],
-            None => self.independent_sources(),
+            None => self.sources.clone(),
         };
         if sources.is_empty() {
             return Err(Diagnostic::error(
@@ -256,8 +286,9 @@ impl Resolver<'_> {
             ));
         }
         let removed = self
-            .independent_sources()
-            .into_iter()
+            .sources
+            .iter()
+            .copied()
             .filter(|id| {
                 let element = &self.circuit[*id];
                 (element.plus, element.minus) == (plus, minus)
@@ -305,7 +336,7 @@ impl Resolver<'_> {
         if is_ground(&name.text) {
             return Ok(GROUND);
         }
-        self.circuit.node(&name.text).ok_or_else(|| {
+        self.nodes.get(name.text.as_str()).copied().ok_or_else(|| {
             let known = self.circuit.nodes.iter().flat_map(|node| {
                 std::iter::once(node.name.as_str()).chain(node.aliases.iter().map(String::as_str))
             });
@@ -315,7 +346,7 @@ impl Resolver<'_> {
 
     fn element(&self, name: &Name) -> Result<ElementId, Diagnostic> {
         let known = || self.circuit.elements.iter().map(|element| element.name.as_str());
-        match self.circuit.element(&name.text) {
+        match self.elements.get(name.text.as_str()).copied() {
             Some(id) if matches!(self.circuit[id].law, Law::Nullor(..)) => {
                 Err(unknown_element(name, None, true))
             }
@@ -328,34 +359,22 @@ impl Resolver<'_> {
         }
     }
 
-    fn independent_sources(&self) -> Vec<ElementId> {
-        let ids = (0_u32..).map(ElementId);
-        self.circuit
-            .elements
-            .iter()
-            .zip(ids)
-            .filter(|(element, _)| matches!(element.law, Law::VoltageSource | Law::CurrentSource))
-            .map(|(_, id)| id)
-            .collect()
-    }
-
     fn independent_source(&self, name: &Name) -> Result<ElementId, Diagnostic> {
         let fault = Diagnostic::error(
             "unknown-source",
             name.span,
             format!("`{}` is no independent source", name.text),
         );
-        match self.circuit.element(&name.text) {
+        match self.elements.get(name.text.as_str()).copied() {
             Some(id) if matches!(self.circuit[id].law, Law::VoltageSource | Law::CurrentSource) => {
                 Ok(id)
             }
             Some(_) => Err(fault.help(format!("write `I({})` for its current", name.text))),
-            None if self.circuit.node(&name.text).is_some() => {
+            None if self.nodes.contains_key(name.text.as_str()) => {
                 Err(fault.help(format!("write `V({})` for the node's voltage", name.text)))
             }
             None => {
-                let sources = self.independent_sources();
-                let known = sources.iter().map(|id| self.circuit[*id].name.as_str());
+                let known = self.sources.iter().map(|id| self.circuit[*id].name.as_str());
                 Err(match nearest(&name.text, known.clone()) {
                     Some(near) => fault.help(format!("is it `{near}`?")),
                     None => {

@@ -4,9 +4,9 @@
 //! definitions are settled, laws are made, units are solved and symbols are numbered in reference order.
 //! Questions come last: they are asked of the finished circuit.
 
-use super::ask;
+use super::ask::{self, Resolver};
 use super::definitions::{Definition, Definitions, Meaning, find_call, visit_names};
-use super::diagnostic::{Diagnostic, Severity, Span};
+use super::diagnostic::{Diagnostic, MOST_SHOWN, Severity, Span};
 use super::names::{self, is_ground, nearest};
 use super::nodes::Nodes;
 use super::source::Source;
@@ -16,11 +16,13 @@ use super::syntax::{
 };
 use super::units::UnitSolver;
 use crate::circuit::{
-    Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, NodeId, SymbolId, SymbolRole,
-    Unit, Value,
+    Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, NodeId, SymbolRole, Unit, Value,
 };
 use num_traits::Signed;
 use rustc_hash::FxHashMap;
+
+/// Pairs of names that are compared in search of slips; a larger file goes without.
+const MOST_COMPARED: usize = 1_000_000;
 
 /// An element before its value is known; nodes are numbers of [`Nodes`].
 #[derive(Debug)]
@@ -100,6 +102,16 @@ impl<'s> Builder<'s> {
         self.faults.push(Diagnostic::error(code, span, message));
     }
 
+    /// The nearest known name; only for as many errors as are shown, so that time stays linear.
+    fn suggest<'n>(
+        &self,
+        typed: &str,
+        known: impl Iterator<Item = &'n str>,
+        so_far: usize,
+    ) -> Option<&'n str> {
+        if self.faults.len() + so_far < MOST_SHOWN { nearest(typed, known) } else { None }
+    }
+
     fn statement(&mut self, statement: Statement) {
         let span = statement.span;
         match statement.kind {
@@ -114,8 +126,8 @@ impl<'s> Builder<'s> {
             }
             StatementKind::Walk(steps) => self.walk(steps),
             StatementKind::Device(device) => self.device(device),
-            StatementKind::Let(name, value) => self.let_name(name, value),
-            StatementKind::Band(from, to) => self.band(&from, &to, span),
+            StatementKind::Let(name, value) => self.let_name(name, value.map(|value| *value)),
+            StatementKind::Band(ends) => self.band(&ends.0, &ends.1, span),
             StatementKind::Ask(query) => self.queries.push((query, span)),
             StatementKind::Claim(name, expression) => {
                 self.not_yet(span, "`claim`");
@@ -377,7 +389,7 @@ impl<'s> Builder<'s> {
             }
             let fault = Diagnostic::error("unknown-name", span, format!("no `{name}` is known"));
             let known = self.definitions.list.iter().map(|definition| definition.name.as_str());
-            return Some(match nearest(name, known.filter(|known| known.contains('.'))) {
+            return Some(match self.suggest(name, known.filter(|known| known.contains('.')), 0) {
                 Some(near) => fault.help(format!("is it `{near}`?")),
                 None if self.devices.contains_key(owner) => {
                     fault.help(format!("`{owner}` was given no parameter `{parameter}`"))
@@ -385,7 +397,7 @@ impl<'s> Builder<'s> {
                 None => fault.help(format!("there is no device `{owner}`")),
             });
         }
-        reserved_in_expression(name, span)
+        if name == "pi" { None } else { reserved_in_expression(name, span) }
     }
 
     fn solve_units(&mut self, terms: &[Vec<Term>]) -> Vec<Unit> {
@@ -397,6 +409,7 @@ impl<'s> Builder<'s> {
                 solver.demand(&term.gain, given.over(term.access.unit()), "factor");
             }
         }
+        solver.guess_free();
         let units = (0..self.definitions.list.len()).map(|id| solver.unit(id)).collect();
         let faults = solver.faults;
         self.faults.extend(faults);
@@ -404,9 +417,9 @@ impl<'s> Builder<'s> {
     }
 
     fn make_elements(&mut self, terms: &[Vec<Term>], circuit: &mut Circuit) {
-        let drafts = std::mem::take(&mut self.drafts);
-        for (draft, terms) in drafts.iter().zip(terms) {
-            let Some(law) = self.law(draft, terms) else { continue };
+        let mut faults = Vec::new();
+        for (draft, terms) in self.drafts.iter().zip(terms) {
+            let Some(law) = self.law(draft, terms, &mut faults) else { continue };
             circuit.elements.push(Element {
                 name: draft.name.text.clone(),
                 class: draft.class,
@@ -416,17 +429,17 @@ impl<'s> Builder<'s> {
                 line: self.source.line(draft.name.span.start),
             });
         }
-        self.drafts = drafts;
+        self.faults.append(&mut faults);
     }
 
-    fn law(&mut self, draft: &Draft, terms: &[Term]) -> Option<Law> {
+    fn law(&self, draft: &Draft, terms: &[Term], faults: &mut Vec<Diagnostic>) -> Option<Law> {
         Some(match &draft.law {
             DraftLaw::Passive(id) => {
                 let settled = self.definitions.settled(*id)?;
                 let value = settled.value.clone();
                 let free = matches!(draft.class, Class::Impedance | Class::Admittance);
                 if settled.measure.holds_s && !free {
-                    self.faults.push(
+                    faults.push(
                         Diagnostic::error(
                             "s-in-value",
                             draft.name.span,
@@ -454,10 +467,8 @@ impl<'s> Builder<'s> {
             DraftLaw::Controlled(_) => {
                 let mut controls = Vec::with_capacity(terms.len());
                 for term in terms {
-                    let mut faults = Vec::new();
-                    let gain = self.definitions.value(&term.gain, &mut faults);
-                    self.faults.append(&mut faults);
-                    let quantity = self.quantity(&term.access);
+                    let gain = self.definitions.value(&term.gain, faults);
+                    let quantity = self.quantity(&term.access, faults);
                     if let (Some(gain), Some(quantity)) = (gain, quantity) {
                         controls.push(Control { gain: gain.value, quantity });
                     }
@@ -467,12 +478,16 @@ impl<'s> Builder<'s> {
         })
     }
 
-    fn quantity(&mut self, access: &Access) -> Option<crate::circuit::Quantity> {
+    fn quantity(
+        &self,
+        access: &Access,
+        faults: &mut Vec<Diagnostic>,
+    ) -> Option<crate::circuit::Quantity> {
         match access {
             Access::Voltage(plus, minus) => {
-                let plus = self.known_node(plus)?;
+                let plus = self.known_node(plus, faults)?;
                 let minus = match minus {
-                    Some(minus) => self.known_node(minus)?,
+                    Some(minus) => self.known_node(minus, faults)?,
                     None => GROUND,
                 };
                 Some(crate::circuit::Quantity::Voltage(plus, minus))
@@ -484,64 +499,26 @@ impl<'s> Builder<'s> {
                         u32::try_from(*index).ok()?,
                     )));
                 }
-                let known = self.elements.keys().map(String::as_str);
-                let near = nearest(&name.text, known).map(str::to_owned);
+                let known = self.drafts.iter().map(|draft| draft.name.text.as_str());
+                let near = self.suggest(&name.text, known, faults.len());
                 let device = self.devices.contains_key(&name.text);
-                self.faults.push(ask::unknown_element(name, near.as_deref(), device));
+                faults.push(ask::unknown_element(name, near, device));
                 None
             }
         }
     }
 
-    fn known_node(&mut self, name: &Name) -> Option<NodeId> {
+    fn known_node(&self, name: &Name, faults: &mut Vec<Diagnostic>) -> Option<NodeId> {
         if let Some(node) = self.nodes.find(&name.text) {
             return Some(self.nodes.id(node));
         }
-        let near = nearest(&name.text, self.nodes.names()).map(str::to_owned);
-        self.faults.push(ask::unknown_node(name, near.as_deref()));
+        let near = self.suggest(&name.text, self.nodes.names(), faults.len());
+        faults.push(ask::unknown_node(name, near));
         None
     }
 
-    /// Lists the symbols that occur, in reference order, and renumbers the values.
-    fn number_symbols(&self, units: &[Unit], circuit: &mut Circuit) {
-        let mut occurs = vec![false; self.definitions.list.len()];
-        for value in values(circuit) {
-            mark(value, &mut occurs);
-        }
-        let mut order: Vec<usize> = (0..occurs.len()).filter(|id| occurs[*id]).collect();
-        order.sort_by_cached_key(|id| {
-            let definition = &self.definitions.list[*id];
-            (definition.role, names::natural_key(&definition.name))
-        });
-        let mut numbers = vec![None; occurs.len()];
-        for (number, id) in order.iter().enumerate() {
-            let definition = &self.definitions.list[*id];
-            numbers[*id] = u32::try_from(number).ok().map(SymbolId);
-            let Meaning::Symbol { nominal, tolerance } = &definition.meaning else { continue };
-            circuit.symbols.push(crate::circuit::Symbol {
-                name: definition.name.clone(),
-                role: definition.role,
-                unit: units[*id],
-                nominal: nominal.clone(),
-                tolerance: tolerance.clone(),
-            });
-        }
-        for (id, definition) in self.definitions.list.iter().enumerate() {
-            let Meaning::Expression(_) = definition.meaning else { continue };
-            let Some(settled) = self.definitions.settled(id) else { continue };
-            if all_occur(&settled.value, &occurs) {
-                circuit.definitions.push(crate::circuit::Definition {
-                    name: definition.name.clone(),
-                    value: settled.value.clone(),
-                });
-            }
-        }
-        for value in values_mut(circuit) {
-            renumber(value, &numbers);
-        }
-    }
-
     fn resolve_queries(&mut self, circuit: &mut Circuit) {
+        let resolver = Resolver::new(circuit);
         let mut asks = Vec::new();
         let mut names: FxHashMap<String, Span> = FxHashMap::default();
         for (query, span) in std::mem::take(&mut self.queries) {
@@ -549,8 +526,7 @@ impl<'s> Builder<'s> {
             if self.refuse_name(name) {
                 continue;
             }
-            let taken = circuit.symbol(&name.text).is_some()
-                || circuit.element(&name.text).is_some()
+            let taken = self.elements.contains_key(&name.text)
                 || self.definitions.find(&name.text).is_some();
             if taken {
                 self.faults.push(
@@ -574,7 +550,7 @@ impl<'s> Builder<'s> {
                 );
                 continue;
             }
-            match ask::resolve(circuit, &query) {
+            match resolver.resolve(&query) {
                 Ok(mut found) => {
                     found.line = self.source.line(span.start);
                     asks.push(found);
@@ -594,9 +570,14 @@ impl<'s> Builder<'s> {
             .filter(|definition| !definition.implicit || definition.uses > 1)
             .map(|definition| definition.name.as_str())
             .collect();
+        let implicit =
+            self.definitions.list.iter().filter(|definition| definition.implicit).count();
         for definition in &self.definitions.list {
             let name = &definition.name;
-            if definition.implicit && definition.uses == 1 {
+            if implicit.saturating_mul(declared.len()) < MOST_COMPARED
+                && definition.implicit
+                && definition.uses == 1
+            {
                 if let Some(near) = nearest(name, declared.iter().copied()) {
                     warnings.push(
                         Diagnostic::warning(
@@ -746,68 +727,4 @@ fn times_s(value: Value) -> Value {
         }
         other => Value::Product(vec![Value::S, other]),
     }
-}
-
-/// All values of a circuit's elements.
-fn values(circuit: &Circuit) -> impl Iterator<Item = &Value> {
-    circuit.elements.iter().flat_map(|element| -> Vec<&Value> {
-        match &element.law {
-            Law::Impedance(value) | Law::Admittance(value) => vec![value],
-            Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls) => {
-                controls.iter().map(|control| &control.gain).collect()
-            }
-            _ => Vec::new(),
-        }
-    })
-}
-
-fn values_mut(circuit: &mut Circuit) -> impl Iterator<Item = &mut Value> {
-    let elements = circuit.elements.iter_mut().flat_map(|element| -> Vec<&mut Value> {
-        match &mut element.law {
-            Law::Impedance(value) | Law::Admittance(value) => vec![value],
-            Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls) => {
-                controls.iter_mut().map(|control| &mut control.gain).collect()
-            }
-            _ => Vec::new(),
-        }
-    });
-    elements.chain(circuit.definitions.iter_mut().map(|definition| &mut definition.value))
-}
-
-/// Calls `visit` for every symbol of a value.
-fn visit_symbols(value: &Value, visit: &mut impl FnMut(SymbolId)) {
-    match value {
-        Value::Number(_) | Value::S => {}
-        Value::Symbol(id) => visit(*id),
-        Value::Sum(list) | Value::Product(list) | Value::Parallel(list) => {
-            list.iter().for_each(|child| visit_symbols(child, visit));
-        }
-        Value::Power(inner, _) | Value::Negative(inner) => visit_symbols(inner, visit),
-    }
-}
-
-fn mark(value: &Value, occurs: &mut [bool]) {
-    visit_symbols(value, &mut |id| occurs[id.0 as usize] = true);
-}
-
-fn renumber(value: &mut Value, numbers: &[Option<SymbolId>]) {
-    match value {
-        Value::Number(_) | Value::S => {}
-        Value::Symbol(id) => {
-            if let Some(number) = numbers[id.0 as usize] {
-                *id = number;
-            }
-        }
-        Value::Sum(list) | Value::Product(list) | Value::Parallel(list) => {
-            list.iter_mut().for_each(|child| renumber(child, numbers));
-        }
-        Value::Power(inner, _) | Value::Negative(inner) => renumber(inner, numbers),
-    }
-}
-
-/// True if all symbols of a value occur.
-fn all_occur(value: &Value, occurs: &[bool]) -> bool {
-    let mut all = true;
-    visit_symbols(value, &mut |id| all &= occurs[id.0 as usize]);
-    all
 }

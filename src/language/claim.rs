@@ -35,6 +35,14 @@ pub(crate) fn resolve(
         if known.contains_key(name) {
             return;
         }
+        if name == "pi" {
+            faults.push(Diagnostic::error(
+                "unknown-name",
+                span,
+                "no value of this circuit holds `pi`",
+            ));
+            return;
+        }
         if let Some(fault) = reserved_in_expression(name, span) {
             faults.push(fault);
             return;

@@ -87,9 +87,26 @@ impl Diagnostic {
     }
 }
 
+/// No more than this many diagnostics of a run are printed.
+pub const MOST_SHOWN: usize = 20;
+
+/// All diagnostics as text, errors first as [`read`](super::read) sorts them; after
+/// [`MOST_SHOWN`] of them only their number.
+pub fn render_all(diagnostics: &[Diagnostic], text: &str, name: &str, colour: bool) -> String {
+    let mut shown: Vec<String> = diagnostics
+        .iter()
+        .take(MOST_SHOWN)
+        .map(|diagnostic| render(diagnostic, text, name, colour))
+        .collect();
+    if diagnostics.len() > MOST_SHOWN {
+        shown.push(format!("and {} more", diagnostics.len() - MOST_SHOWN));
+    }
+    shown.join("\n\n")
+}
+
 /// Line and column of a byte of `text`, both from 1; columns count characters.
 pub fn line_and_column(text: &str, offset: usize) -> (u32, u32) {
-    let offset = text.floor_char_boundary(offset);
+    let offset = floor(text, offset);
     let before = &text[..offset];
     let line_start = before.rfind('\n').map_or(0, |position| position + 1);
     let line = before.bytes().filter(|byte| *byte == b'\n').count() + 1;
@@ -99,8 +116,7 @@ pub fn line_and_column(text: &str, offset: usize) -> (u32, u32) {
 
 /// A diagnostic as text: message, the lines it is about with marks, and the help.
 ///
-/// `name` is the file's name as printed. The text holds terminal colours; a writer that strips
-/// them serves plain output.
+/// `name` is the file's name as printed; with `colour` the text holds terminal colours.
 pub fn render(diagnostic: &Diagnostic, text: &str, name: &str, colour: bool) -> String {
     let level = match diagnostic.severity {
         Severity::Error => Level::ERROR,
@@ -109,8 +125,8 @@ pub fn render(diagnostic: &Diagnostic, text: &str, name: &str, colour: bool) -> 
     };
     let title = level.primary_title(diagnostic.message.as_str()).id(diagnostic.code);
     let clamp = |span: Span| {
-        let start = text.floor_char_boundary(span.start);
-        start..text.ceil_char_boundary(span.end).max(start)
+        let start = floor(text, span.start);
+        start..ceil(text, span.end).max(start)
     };
     let mut group = Group::with_title(title);
     if !text.is_empty() {
@@ -118,9 +134,9 @@ pub fn render(diagnostic: &Diagnostic, text: &str, name: &str, colour: bool) -> 
         let spans = diagnostic.labels.iter().map(|label| label.span).chain([diagnostic.span]);
         let (first, last) =
             spans.fold((text.len(), 0), |(low, high), s| (low.min(s.start), high.max(s.end)));
-        let first = text.floor_char_boundary(first);
+        let first = floor(text, first);
         let window_start = text[..first].rfind('\n').map_or(0, |position| position + 1);
-        let last = text.ceil_char_boundary(last);
+        let last = ceil(text, last);
         let window_end = text[last..].find('\n').map_or(text.len(), |position| last + position);
         let window = &text[window_start..window_end];
         let shift = |span: Span| {
@@ -144,4 +160,14 @@ pub fn render(diagnostic: &Diagnostic, text: &str, name: &str, colour: bool) -> 
     }
     let renderer = if colour { Renderer::styled() } else { Renderer::plain() };
     renderer.render(&[group])
+}
+
+/// The last character boundary that is not after `offset`.
+pub(crate) fn floor(text: &str, offset: usize) -> usize {
+    (0..=offset.min(text.len())).rev().find(|at| text.is_char_boundary(*at)).unwrap_or(0)
+}
+
+/// The first character boundary that is not before `offset`.
+fn ceil(text: &str, offset: usize) -> usize {
+    (offset..text.len()).find(|at| text.is_char_boundary(*at)).unwrap_or(text.len())
 }

@@ -1,7 +1,7 @@
 //! Syntax errors in the reader's words: what was expected, what was found.
 
 use super::devices;
-use super::diagnostic::Diagnostic;
+use super::diagnostic::{Diagnostic, floor};
 use super::names::nearest;
 use super::parse::Rule;
 use super::source::{KEYWORDS, LogicalLine, Source};
@@ -68,14 +68,14 @@ pub(crate) fn syntax(source: &Source, line: &LogicalLine, error: &Error<Rule>) -
     let position = match error.location {
         InputLocation::Pos(position) | InputLocation::Span((position, _)) => position,
     };
-    let position = content.floor_char_boundary(position.min(content.len()));
+    let position = floor(content, position);
     let rest = content[position..].trim_start();
     let place = line.start + content.len() - rest.len();
     if !rest.is_empty() && stranger(rest) == Some(0) {
         return unexpected_character(source, place);
     }
     if let Some(open) = unclosed(content)
-        && rest.is_empty()
+        && (rest.is_empty() || rest.starts_with('>'))
     {
         let open = line.start + open;
         return Diagnostic::error(

@@ -10,6 +10,7 @@
 mod ask;
 mod build;
 mod claim;
+mod codes;
 mod definitions;
 mod devices;
 mod diagnostic;
@@ -21,11 +22,17 @@ mod parse;
 mod quantity;
 mod source;
 mod sources;
+mod symbols;
 mod syntax;
+#[cfg(test)]
+mod tests;
 mod units;
 mod walks;
 
-pub use diagnostic::{Diagnostic, Label, Severity, Span, line_and_column, render};
+pub use codes::CODES;
+pub use diagnostic::{
+    Diagnostic, Label, MOST_SHOWN, Severity, Span, line_and_column, render, render_all,
+};
 
 use crate::circuit::{Ask, Band, Circuit, Value};
 use build::Builder;

@@ -1,6 +1,6 @@
 //! Names: their ASCII form, reserved words, class letters, and the nearest known name to a typo.
 
-use crate::circuit::Class;
+use crate::circuit::{Class, Unit};
 
 /// Greek letters, capital and small, from alpha on as Unicode orders them.
 const GREEK: [&str; 25] = [
@@ -63,6 +63,18 @@ pub(crate) fn class_of_word(word: &str) -> Option<Class> {
 /// The class word of a class.
 pub(crate) fn word_of_class(class: Class) -> &'static str {
     CLASS_WORDS.iter().find(|(_, own)| *own == class).map_or("opamp", |(word, _)| word)
+}
+
+/// The unit of a class's value.
+pub(crate) fn unit_of(class: Class) -> Unit {
+    match class {
+        Class::Capacitor => Unit::FARAD,
+        Class::Inductor => Unit::HENRY,
+        Class::Conductance | Class::Admittance => Unit::SIEMENS,
+        Class::Voltage | Class::Opamp => Unit::VOLT,
+        Class::Current => Unit::AMPERE,
+        Class::Resistor | Class::Impedance => Unit::OHM,
+    }
 }
 
 /// Trade words whose first letter would mislead; a name that begins with one needs its class word.

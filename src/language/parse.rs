@@ -212,7 +212,7 @@ impl Reader<'_> {
             Rule::let_line => {
                 let name = self.name(&inner.next()?);
                 let value = match inner.next() {
-                    Some(pair) => Some(self.let_value(pair)?),
+                    Some(pair) => Some(Box::new(self.let_value(pair)?)),
                     None => None,
                 };
                 Some(StatementKind::Let(name, value))
@@ -225,19 +225,19 @@ impl Reader<'_> {
             }
             Rule::band_line => {
                 let from = self.quantity(inner.next()?)?;
-                Some(StatementKind::Band(from, self.quantity(inner.next()?)?))
+                Some(StatementKind::Band(Box::new((from, self.quantity(inner.next()?)?))))
             }
             Rule::temperature_line => {
                 let pair = inner.next()?;
                 let span = self.span(&pair);
                 let (figure, word) = figure_and_word(&pair);
                 match quantity::temperature(&figure, &word, span) {
-                    Ok(value) => Some(StatementKind::Temperature(Quantity {
+                    Ok(value) => Some(StatementKind::Temperature(Box::new(Quantity {
                         value,
                         unit: None,
                         tolerance: None,
                         span,
-                    })),
+                    }))),
                     Err(fault) => {
                         self.faults.push(fault);
                         None

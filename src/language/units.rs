@@ -6,10 +6,11 @@
 
 use super::definitions::{Definitions, Meaning};
 use super::diagnostic::{Diagnostic, Span};
+use super::names::{class_of_letter, unit_of};
 use super::syntax::{Expression, ExpressionKind};
-use crate::circuit::{Number, Unit};
+use crate::circuit::{Number, SymbolRole, Unit};
 use num_bigint::BigInt;
-use num_traits::{ToPrimitive, Zero};
+use num_traits::{One, Signed, ToPrimitive, Zero};
 use rustc_hash::FxHashMap;
 use std::collections::BTreeMap;
 
@@ -57,6 +58,13 @@ impl Form {
             if entry.is_zero() {
                 self.0.remove(base);
             }
+        }
+    }
+
+    /// Replaces an unknown.
+    fn substitute(&mut self, id: usize, solution: &Self) {
+        if let Some(exponent) = self.0.remove(&Base::Unknown(id)) {
+            self.multiply(solution, &exponent);
         }
     }
 
@@ -135,6 +143,18 @@ impl<'d> UnitSolver<'d> {
             )
             .help("a number with a unit gets a name: `let k = 2 mS`")
         });
+    }
+
+    /// Where nothing tells the unit of a parameter, its letter does (`Rx` is in ohm).
+    pub(crate) fn guess_free(&mut self) {
+        for (id, definition) in self.definitions.list.iter().enumerate() {
+            if definition.role == SymbolRole::Parameter
+                && let Some(class) = class_of_letter(&definition.name)
+                && self.reduce(Form::unknown(id)) == Form::unknown(id)
+            {
+                self.solved.insert(id, Form::of(unit_of(class)));
+            }
+        }
     }
 
     /// The unit of a definition; dimensionless where nothing tells.
@@ -225,10 +245,16 @@ impl<'d> UnitSolver<'d> {
         let found = self.reduce(found);
         let mut difference = found.clone();
         difference.multiply(&wanted, &minus_one);
-        let pivot = difference.0.iter().find_map(|(base, exponent)| match base {
-            Base::Unknown(id) => Some((*id, exponent.clone())),
-            _ => None,
-        });
+        // An exponent of ±1 keeps the exponents of the solution integers; of those the latest, so that
+        // a parameter that many values share stays free.
+        let pivot = difference
+            .0
+            .iter()
+            .filter_map(|(base, exponent)| match base {
+                Base::Unknown(id) => Some((*id, exponent.clone())),
+                _ => None,
+            })
+            .max_by_key(|(_, exponent)| exponent.abs().is_one());
         if let Some((id, exponent)) = pivot {
             difference.0.remove(&Base::Unknown(id));
             let mut solution = Form::default();
@@ -243,25 +269,40 @@ impl<'d> UnitSolver<'d> {
         }
     }
 
-    /// Puts in what is known, and keeps the short form for the next time.
-    fn reduce(&mut self, form: Form) -> Form {
-        let mut current = form.clone();
-        let mut steps = 0_usize;
-        while let Some((id, exponent)) = current.0.iter().find_map(|(base, exponent)| match base {
-            Base::Unknown(id) if self.solved.contains_key(id) => Some((*id, exponent.clone())),
+    /// Puts in what is known.
+    fn reduce(&mut self, mut form: Form) -> Form {
+        while let Some(id) = self.known_in(&form) {
+            self.compress(id);
+            form.substitute(id, &self.solved[&id]);
+        }
+        form
+    }
+
+    /// Makes the solution of an unknown free of other known ones, and all that it rests on as
+    /// well, so that a chain is walked once (as a union-find halves its paths).
+    fn compress(&mut self, id: usize) {
+        let mut stack = vec![id];
+        while let Some(top) = stack.last().copied() {
+            match self.known_in(&self.solved[&top]) {
+                None => {
+                    stack.pop();
+                }
+                Some(inner) if self.known_in(&self.solved[&inner]).is_some() => stack.push(inner),
+                Some(inner) => {
+                    let known = self.solved[&inner].clone();
+                    if let Some(form) = self.solved.get_mut(&top) {
+                        form.substitute(inner, &known);
+                    }
+                }
+            }
+        }
+    }
+
+    /// An unknown of the form that is solved.
+    fn known_in(&self, form: &Form) -> Option<usize> {
+        form.0.keys().find_map(|base| match base {
+            Base::Unknown(id) if self.solved.contains_key(id) => Some(*id),
             _ => None,
-        }) {
-            current.0.remove(&Base::Unknown(id));
-            current.multiply(&self.solved[&id], &exponent);
-            steps += 1;
-        }
-        if steps > 1
-            && form.0.len() == 1
-            && let Some((Base::Unknown(id), _)) = form.0.first_key_value()
-            && self.solved.contains_key(id)
-        {
-            self.solved.insert(*id, current.clone());
-        }
-        current
+        })
     }
 }

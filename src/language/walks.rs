@@ -5,7 +5,8 @@ use super::definitions::{Definition, Meaning, find_call};
 use super::devices::{self, Kind, PartLaw, Pin, When};
 use super::diagnostic::{Diagnostic, Span};
 use super::names::{
-    self, class_of_letter, class_of_word, looks_like_element, nearest, trade_word, word_of_class,
+    self, class_of_letter, class_of_word, looks_like_element, nearest, trade_word, unit_of,
+    word_of_class,
 };
 use super::syntax::{Content, Device, Item, Name, Part, Quantity, Step};
 use crate::circuit::{Class, SymbolRole, Unit};
@@ -457,18 +458,6 @@ struct Terminals {
     nodes: Vec<usize>,
     /// (index of the parameter, its name as written, its value)
     parameters: Vec<(usize, Name, Option<Content>)>,
-}
-
-/// The unit of a class's value.
-fn unit_of(class: Class) -> Unit {
-    match class {
-        Class::Capacitor => Unit::FARAD,
-        Class::Inductor => Unit::HENRY,
-        Class::Conductance | Class::Admittance => Unit::SIEMENS,
-        Class::Voltage | Class::Opamp => Unit::VOLT,
-        Class::Current => Unit::AMPERE,
-        Class::Resistor | Class::Impedance => Unit::OHM,
-    }
 }
 
 /// What is wrong with the alternation of nodes and elements.
