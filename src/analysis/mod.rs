@@ -8,6 +8,7 @@ mod error;
 mod judged;
 mod notice;
 mod numbers;
+pub mod roots;
 
 pub use closed_form::{Closed, ClosedForm, total};
 pub use error::AnalysisError;

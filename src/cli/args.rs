@@ -16,6 +16,8 @@ pub(crate) struct Arguments {
 pub(crate) enum Command {
     /// Closed forms, each cross-checked against a floating-point solve
     Derive(Derive),
+    /// Poles and zeros, and which elements set each
+    Roots(Roots),
 }
 
 #[derive(Debug, Args)]
@@ -33,6 +35,45 @@ pub(crate) struct Derive {
     /// End after this many seconds with what was reached
     #[arg(long, value_name = "SECONDS", value_parser = seconds)]
     pub(crate) stop_after: Option<f64>,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Roots {
+    #[command(flatten)]
+    pub(crate) input: Input,
+    #[command(flatten)]
+    pub(crate) output: RootsOutput,
+    /// Expand up to this many terms; the roots of longer formulas come without approximations
+    #[arg(long, value_name = "N", default_value_t = 20_000)]
+    pub(crate) max_terms: usize,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct RootsOutput {
+    /// How results are printed
+    #[arg(long, value_enum, default_value_t = RootsFormat::Text)]
+    pub(crate) format: RootsFormat,
+    /// ASCII only
+    #[arg(long)]
+    pub(crate) ascii: bool,
+    /// Colours in messages; NO_COLOR is respected
+    #[arg(long, value_enum, default_value_t = Colour::Auto)]
+    pub(crate) color: Colour,
+    /// Results only: no notices
+    #[arg(long)]
+    pub(crate) quiet: bool,
+}
+
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum RootsFormat {
+    /// For a terminal
+    Text,
+    /// A fragment for a document that uses amsmath
+    Latex,
+    /// For other programs
+    Json,
+    /// A picture of the complex plane
+    Svg,
 }
 
 #[derive(Debug, Args)]

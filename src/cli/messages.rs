@@ -18,12 +18,16 @@ pub(crate) struct Messages {
 
 impl Messages {
     pub(crate) fn new(output: &Output) -> Self {
-        match output.color {
+        Self::with(output.format == Format::Json, output.quiet, output.color)
+    }
+
+    pub(crate) fn with(json: bool, quiet: bool, colour: Colour) -> Self {
+        match colour {
             Colour::Auto => {}
             Colour::Always => ColorChoice::Always.write_global(),
             Colour::Never => ColorChoice::Never.write_global(),
         }
-        Self { json: output.format == Format::Json, quiet: output.quiet }
+        Self { json, quiet }
     }
 
     fn line(text: &str) {

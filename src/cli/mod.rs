@@ -15,6 +15,7 @@ mod derive;
 mod failure;
 mod input;
 mod messages;
+mod roots;
 
 use std::io::Write;
 use std::process::ExitCode;
@@ -39,6 +40,12 @@ pub(crate) fn run() -> ExitCode {
             Command::Derive(derive) => {
                 let messages = Messages::new(&derive.output);
                 finish(&messages, derive::run(&derive, &messages))
+            }
+            Command::Roots(roots) => {
+                let output = &roots.output;
+                let json = output.format == args::RootsFormat::Json;
+                let messages = Messages::with(json, output.quiet, output.color);
+                finish(&messages, roots::run(&roots, &messages))
             }
         });
     match worker.map(std::thread::JoinHandle::join) {

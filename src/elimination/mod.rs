@@ -34,11 +34,12 @@ use crate::algebra::{Polynomial, Var, modular::Field};
 use crate::circuit::{Circuit, ElementId, NodeId, Transfer};
 use diagram::{Diagram, Link};
 use passes::expand::{self, TermSet};
-use passes::{coefficients, count, numbers};
+use passes::{coefficients, count, gradient, numbers};
 use system::System;
 
 pub use error::EliminationError;
 pub use nested::{Nested, NestedFactor, NestedSum};
+pub use passes::gradient::Gradient;
 pub use value::{DividesByZero, fraction_of, symbol_of, variable_of};
 
 /// What the work may cost.
@@ -257,6 +258,20 @@ impl Elimination {
             &values,
             self.denominator,
         ))
+    }
+
+    /// Numerator and denominator at `s` and these symbol values (by index), each with its relative
+    /// derivatives with respect to `s` and to every symbol.
+    ///
+    /// # Cost
+    /// Two backward passes: as much as four values.
+    pub fn gradients_at(&self, s: Complex<f64>, symbols: &[f64]) -> [Gradient; 2] {
+        let weights: Vec<_> =
+            self.weights.iter().map(|w| numbers::complex_weight(w, s, symbols)).collect();
+        let values = passes::values(&numbers::ComplexNumbers, &self.diagram, &weights);
+        [self.numerator, self.denominator].map(|root| {
+            gradient::relative(&self.diagram, &self.weights, &weights, &values, root, (s, symbols))
+        })
     }
 
     /// Numerator and denominator modulo the prime of a field; `values` holds `s` first, then the symbols.

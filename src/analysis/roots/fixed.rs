@@ -33,11 +33,7 @@ impl<const L: usize> Fixed<L> {
     pub(super) fn to_scaled(self) -> BigInt {
         let (words, negative) = self.magnitude();
         let digits = words.iter().flat_map(|&word| [word as u32, (word >> 32) as u32]).collect();
-        BigInt::from_slice_native(negative, digits)
-    }
-
-    pub(super) fn is_zero(&self) -> bool {
-        self.0.iter().all(|&word| word == 0)
+        BigInt::new(if negative { Sign::Minus } else { Sign::Plus }, digits)
     }
 
     pub(super) fn is_negative(&self) -> bool {
@@ -133,6 +129,7 @@ impl<const L: usize> Fixed<L> {
                 }
                 Self(out)
             }
+            _ if shift >= 64 * L as i64 && self.is_negative() => Self([u64::MAX; L]),
             _ if shift >= 64 * L as i64 => Self::ZERO,
             _ if shift > 0 => self.shifted(63).shifted(shift - 63),
             _ => self.shifted(-63).shifted(shift + 63),
@@ -176,17 +173,6 @@ impl<const L: usize> Fixed<L> {
 /// `value`·2^`exponent`, where that is in the range of a double.
 pub(super) fn scale(value: f64, exponent: i64) -> f64 {
     libm::ldexp(value, exponent.clamp(-5000, 5000) as i32)
-}
-
-/// Big integers from native halves of words.
-trait FromHalves {
-    fn from_slice_native(negative: bool, digits: Vec<u32>) -> Self;
-}
-
-impl FromHalves for BigInt {
-    fn from_slice_native(negative: bool, digits: Vec<u32>) -> Self {
-        Self::new(if negative { Sign::Minus } else { Sign::Plus }, digits)
-    }
 }
 
 #[cfg(test)]
@@ -242,7 +228,7 @@ mod tests {
 
     #[test]
     fn doubles_far_below_the_last_place_are_zero() {
-        assert!(Fixed::<2>::from_f64(1e-300, 0).is_zero());
+        assert_eq!(Fixed::<2>::from_f64(1e-300, 0), Fixed::ZERO);
         assert_eq!(Fixed::<2>::from_f64(-1.5, 0).to_f64(), -1.5);
         assert_eq!(Fixed::<17>::from_f64(3.0, -1000).to_f64(), scale(3.0, -1000));
     }

@@ -4,6 +4,7 @@
 mod evidence;
 mod json;
 mod latex;
+pub mod roots;
 mod text;
 
 pub use evidence::evidence;

@@ -1,0 +1,117 @@
+//! How far each root moves with each symbol, by implicit differentiation.
+//!
+//! Where D(p) = 0, (x/p)·∂p/∂x = −(x·∂D/∂x)/(s·∂D/∂s) at s = p; both come from one backward pass over
+//! the diagram of the elimination, so long formulas are never expanded. A factor that numerator and
+//! denominator share multiplies both by the same number and does no harm unless it vanishes too.
+//!
+//! What must hold (the equations of a network are homogeneous in each unit): the sum over all symbols of
+//! the exponent of the second × sensitivity is −1, and of the volt and of the ampere it is 0. For
+//! an RC network that is Σ_R S = Σ_C S = −1, the scalings of impedance and of frequency.
+
+use num_complex::Complex;
+use num_traits::Zero;
+
+use crate::circuit::SymbolId;
+use crate::elimination::{Elimination, Gradient};
+
+/// (x/p)·∂p/∂x for one symbol: the real part is the relative change of |p|, the imaginary part the
+/// change of the angle, in radians, for a relative change of the symbol.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Sensitivity {
+    /// The symbol.
+    pub symbol: SymbolId,
+    /// The relative sensitivity.
+    pub value: Complex<f64>,
+}
+
+/// A polynomial's sensitivity is certain where the evaluation noise moves the root by less than this.
+const TRUSTED: f64 = 1e-6;
+
+/// Which roots are meant.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Side {
+    Zeros,
+    Poles,
+}
+
+/// The sensitivities of a simple root; none where the derivative vanishes in the arithmetic (a
+/// multiple root moves infinitely fast) and for a root at 0.
+pub(super) fn of_root(
+    elimination: &Elimination,
+    symbols: &[f64],
+    root: Complex<f64>,
+    side: Side,
+) -> Option<Vec<Sensitivity>> {
+    if root.is_zero() {
+        return None;
+    }
+    let [numerator, denominator] = elimination.gradients_at(root, symbols);
+    let gradient = match side {
+        Side::Zeros => numerator,
+        Side::Poles => denominator,
+    };
+    implicit(&gradient)
+}
+
+fn implicit(gradient: &Gradient) -> Option<Vec<Sensitivity>> {
+    let slope = gradient.by_s;
+    if slope.is_zero() || gradient.value.norm() > TRUSTED * slope.norm() {
+        return None;
+    }
+    let each = gradient
+        .by_symbol
+        .iter()
+        .map(|&(symbol, share)| Sensitivity { symbol, value: -share / slope });
+    Some(each.collect())
+}
+
+/// The sensitivities of the function itself at `s`: x·∂H/∂x / H; none where H or 1/H is 0.
+pub(super) fn of_value(
+    elimination: &Elimination,
+    symbols: &[f64],
+    s: Complex<f64>,
+) -> Option<Vec<Sensitivity>> {
+    let [above, below] = elimination.gradients_at(s, symbols);
+    if above.value.is_zero() || below.value.is_zero() {
+        return None;
+    }
+    let share = |gradient: &Gradient, symbol: SymbolId| {
+        let found = gradient.by_symbol.iter().find(|(other, _)| *other == symbol);
+        found.map_or_else(Complex::zero, |(_, share)| share / gradient.value)
+    };
+    let mut all: Vec<SymbolId> =
+        above.by_symbol.iter().chain(&below.by_symbol).map(|&(symbol, _)| symbol).collect();
+    all.sort_unstable();
+    all.dedup();
+    let each = all
+        .into_iter()
+        .map(|symbol| Sensitivity { symbol, value: share(&above, symbol) - share(&below, symbol) });
+    Some(each.collect())
+}
+
+/// s·H'/H at `s`.
+pub(super) fn logarithmic_slope(
+    elimination: &Elimination,
+    symbols: &[f64],
+    s: Complex<f64>,
+) -> Option<Complex<f64>> {
+    let [above, below] = elimination.gradients_at(s, symbols);
+    let slope = above.by_s / above.value - below.by_s / below.value;
+    slope.is_finite().then_some(slope)
+}
+
+/// The part of the largest sensitivity of a root from which on a symbol counts among those that set it.
+pub const SET_BY_SHARE: f64 = 0.1;
+
+/// The symbols whose sensitivity is at least [`SET_BY_SHARE`] of the largest, the largest first.
+pub(super) fn set_by(sensitivities: &[Sensitivity]) -> Vec<SymbolId> {
+    let size = |one: &Sensitivity| one.value.norm();
+    let largest = sensitivities.iter().map(size).fold(0.0, f64::max);
+    let mut kept: Vec<&Sensitivity> = sensitivities
+        .iter()
+        .filter(|one| size(one) > 0.0 && size(one) >= SET_BY_SHARE * largest)
+        .collect();
+    // Equal ones, but for rounding, stay in the circuit's order.
+    kept.sort_by_key(|one| std::cmp::Reverse((size(one) * 1e9 / largest).round() as i64));
+    kept.into_iter().map(|one| one.symbol).collect()
+}
