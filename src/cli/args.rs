@@ -43,6 +43,22 @@ pub(crate) struct Roots {
     pub(crate) input: Input,
     #[command(flatten)]
     pub(crate) output: RootsOutput,
+    /// Find the value of an element that moves something: "w0 = 1 kHz", "Q = 0.7", "p2 = 1 MHz",
+    /// "z1 = 50 Hz", "gain = 10"; "w0 of p3 = …" where there are several pairs
+    #[arg(long = "move", value_name = "WHAT = VALUE", requires = "with")]
+    pub(crate) target: Option<String>,
+    /// The element that `--move` may change
+    #[arg(long, value_name = "SYMBOL", requires = "target")]
+    pub(crate) with: Option<String>,
+    /// Draw this many circuits with values evenly between the limits of their tolerances
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u32).range(1..=1_000_000))]
+    pub(crate) monte_carlo: Option<u32>,
+    /// What the draws begin with; the same seed gives the same circuits
+    #[arg(long, value_name = "K", default_value_t = 1, requires = "monte_carlo")]
+    pub(crate) seed: u64,
+    /// Draw the paths of the poles while this element goes from a tenth to ten times its value
+    #[arg(long, value_name = "SYMBOL")]
+    pub(crate) locus: Option<String>,
     /// Expand up to this many terms; the roots of longer formulas come without approximations
     #[arg(long, value_name = "N", default_value_t = 20_000)]
     pub(crate) max_terms: usize,

@@ -1,11 +1,14 @@
 //! `cofactor roots`: poles and zeros, and which elements set each.
 
-use cofactor::analysis::roots;
-use cofactor::analysis::{self, Options};
-use cofactor::language::line_and_column;
-use cofactor::typeset::answer::roots::{self as typeset, Answer};
+use cofactor::analysis::roots::{self, Quantity, RootReport, Unreachable};
+use cofactor::analysis::{self, Derivation, Options};
+use cofactor::circuit::{Ask, Number, SymbolId, Transfer, Unit};
+use cofactor::language::{self, line_and_column};
+use cofactor::numeric::Assignment;
+use cofactor::typeset::answer::roots::{self as typeset, Answer, Moved, Report};
 use cofactor::typeset::answer::{self, TextStyle};
 use cofactor::typeset::json;
+use cofactor::typeset::number;
 use cofactor::typeset::screen::{Characters, Screen};
 
 use super::args::{Format, Roots, RootsFormat};
@@ -17,72 +20,321 @@ use super::{width, write_results};
 /// Runs the command; the exit code is 0, or 1 when a witness disagrees.
 pub(crate) fn run(arguments: &Roots, messages: &Messages) -> Result<u8, Failure> {
     let loaded = input::load(&arguments.input, messages)?;
-    let mut passed = true;
-    let mut results = Vec::new();
-    let mut warnings = remarks(&loaded);
+    let wishes = Wishes::new(arguments, &loaded)?;
+    let mut printer = Printer {
+        arguments,
+        messages,
+        loaded: &loaded,
+        wishes,
+        results: Vec::new(),
+        warnings: remarks(&loaded),
+        passed: true,
+    };
     for (index, ask) in loaded.asks.iter().enumerate() {
-        let mut reports = Vec::new();
-        for transfer in &ask.transfers {
-            let options = Options { max_terms: arguments.max_terms, ..Options::default() };
-            let derivation = analysis::derive(&loaded.circuit, transfer, &options)
-                .map_err(|error| Failure::analysis(&ask.name, &error))?;
-            let report = roots::analyse(&loaded.circuit, transfer, &derivation)
-                .map_err(|error| Failure::roots(&ask.name, &error))?;
-            passed &= derivation.evidence.passed();
-            for notice in derivation.notices.iter().chain(&report.notices) {
-                messages.notice(&ask.name, notice);
-                let warning = answer::warning(notice);
-                if !warnings.contains(&warning) {
-                    warnings.push(warning);
-                }
-            }
-            reports.push(report);
+        printer.take(ask, index == 0)?;
+    }
+    printer.finish()?;
+    Ok(u8::from(!printer.passed))
+}
+
+/// What the options ask for, with names resolved.
+struct Wishes {
+    target: Option<(Target, SymbolId)>,
+    locus: Option<SymbolId>,
+}
+
+impl Wishes {
+    fn new(arguments: &Roots, loaded: &Loaded) -> Result<Self, Failure> {
+        let symbol = |option: &str, name: &str| {
+            loaded.circuit.symbol(name.trim()).ok_or_else(|| {
+                Failure::option(
+                    format!("`{option}` names `{name}`, which is no symbol of this circuit"),
+                    "symbols are elements with a value of their own, and parameters",
+                )
+            })
+        };
+        let target = match (&arguments.target, &arguments.with) {
+            (Some(target), Some(with)) => Some((Target::read(target)?, symbol("--with", with)?)),
+            _ => None,
+        };
+        let locus = arguments.locus.as_deref().map(|name| symbol("--locus", name)).transpose()?;
+        if locus.is_some() && arguments.output.format != RootsFormat::Svg {
+            return Err(Failure::option("`--locus` is a picture".to_owned(), "add `--format svg`"));
         }
-        let answer = Answer { circuit: &loaded.circuit, ask, reports: &reports };
-        if arguments.output.format == RootsFormat::Json {
-            results.push(typeset::result(&answer));
-        } else {
-            print(arguments, &loaded, &answer, index == 0)?;
+        let pictures: usize = loaded.asks.iter().map(|ask| ask.transfers.len()).sum();
+        if arguments.output.format == RootsFormat::Svg && pictures != 1 {
+            return Err(Failure::option(
+                format!("a picture shows one function, and {pictures} are asked for"),
+                "name one: `cofactor roots FILE H --format svg`",
+            ));
+        }
+        Ok(Self { target, locus })
+    }
+}
+
+/// What is to be moved, and to where.
+#[derive(Clone)]
+struct Target {
+    text: String,
+    kind: Kind,
+    /// The root, from 1; the first pair where none is named.
+    root: Option<usize>,
+    value: Number,
+}
+
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Kind {
+    Pole,
+    Zero,
+    NaturalFrequency,
+    Quality,
+    Gain,
+}
+
+const MOVE_HELP: &str = "write \"w0 = 1 kHz\", \"Q = 0.7\", \"w0 of p3 = 1 kHz\", \"p2 = 1 MHz\", \
+                         \"z1 = 50 Hz\" or \"gain = 10\"; roots are numbered as in the table";
+
+impl Target {
+    fn read(text: &str) -> Result<Self, Failure> {
+        let wrong = || Failure::option(format!("`--move` cannot be read: `{text}`"), MOVE_HELP);
+        let (what, value) = text.split_once('=').ok_or_else(wrong)?;
+        let (number, unit) = language::quantity(value).map_err(|diagnostics| Failure::Text {
+            name: "--move".to_owned(),
+            text: value.to_owned(),
+            diagnostics,
+        })?;
+        let words: Vec<&str> = what.split_whitespace().collect();
+        let numbered = |word: &str, letter: char| {
+            word.strip_prefix(letter).and_then(|digits| digits.parse::<usize>().ok())
+        };
+        let (kind, root) = match words.as_slice() {
+            ["w0" | "ω0"] => (Kind::NaturalFrequency, None),
+            ["Q" | "q"] => (Kind::Quality, None),
+            ["w0" | "ω0", "of", pole] => {
+                (Kind::NaturalFrequency, Some(numbered(pole, 'p').ok_or_else(wrong)?))
+            }
+            ["Q" | "q", "of", pole] => {
+                (Kind::Quality, Some(numbered(pole, 'p').ok_or_else(wrong)?))
+            }
+            ["gain"] => (Kind::Gain, None),
+            [word] if numbered(word, 'p').is_some() => (Kind::Pole, numbered(word, 'p')),
+            [word] if numbered(word, 'z').is_some() => (Kind::Zero, numbered(word, 'z')),
+            _ => return Err(wrong()),
+        };
+        let frequency = matches!(kind, Kind::Pole | Kind::Zero | Kind::NaturalFrequency);
+        // The gain is in the function's unit, which is not known here.
+        let fits = match unit {
+            None => true,
+            Some(Unit::HERTZ) => frequency,
+            Some(_) => kind == Kind::Gain,
+        };
+        if !fits {
+            return Err(Failure::option(
+                format!("`--move {text}`: the unit does not fit"),
+                "frequencies are in Hz, Q has no unit, a gain is in the function's own unit",
+            ));
+        }
+        if kind != Kind::Gain && number <= Number::from_integer(0.into()) {
+            return Err(Failure::option(
+                format!("`--move {text}`: the value must be above 0"),
+                MOVE_HELP,
+            ));
+        }
+        Ok(Self { text: text.trim().to_owned(), kind, root, value: number })
+    }
+
+    fn quantity(&self, report: &RootReport) -> Quantity {
+        let mut number = 1;
+        let mut first_pair = 1;
+        for facts in &report.poles {
+            if !facts.root.is_real() {
+                first_pair = number;
+                break;
+            }
+            number += facts.root.multiplicity as usize;
+        }
+        let root = self.root.unwrap_or(first_pair);
+        match self.kind {
+            Kind::Pole => Quantity::Pole(root),
+            Kind::Zero => Quantity::Zero(root),
+            Kind::NaturalFrequency => Quantity::NaturalFrequency(root),
+            Kind::Quality => Quantity::Quality(root),
+            Kind::Gain => Quantity::DcGain,
         }
     }
-    if arguments.output.format == RootsFormat::Json {
+}
+
+struct Printer<'a> {
+    arguments: &'a Roots,
+    messages: &'a Messages,
+    loaded: &'a Loaded,
+    wishes: Wishes,
+    /// Under JSON everything is printed at the end.
+    results: Vec<typeset::RootsResult>,
+    warnings: Vec<json::Warning>,
+    passed: bool,
+}
+
+impl Printer<'_> {
+    fn take(&mut self, ask: &Ask, first: bool) -> Result<(), Failure> {
+        let circuit = &self.loaded.circuit;
+        let mut reports = Vec::new();
+        for transfer in &ask.transfers {
+            let options = Options { max_terms: self.arguments.max_terms, ..Options::default() };
+            let derivation = analysis::derive(circuit, transfer, &options)
+                .map_err(|error| Failure::analysis(&ask.name, &error))?;
+            let roots = roots::analyse(circuit, transfer, &derivation)
+                .map_err(|error| Failure::roots(&ask.name, &error))?;
+            self.passed &= derivation.evidence.passed();
+            for notice in derivation.notices.iter().chain(&roots.notices) {
+                self.messages.notice(&ask.name, notice);
+                let warning = answer::warning(notice);
+                if !self.warnings.contains(&warning) {
+                    self.warnings.push(warning);
+                }
+            }
+            if self.arguments.output.format == RootsFormat::Svg {
+                return self.picture(ask, transfer, &derivation, roots);
+            }
+            reports.push(self.report(ask, transfer, &derivation, roots)?);
+        }
+        let answer = Answer { circuit, ask, reports: &reports };
+        match self.arguments.output.format {
+            RootsFormat::Json => {
+                self.results.push(typeset::result(&answer));
+                Ok(())
+            }
+            RootsFormat::Latex => write_results(&typeset::latex(&answer)),
+            RootsFormat::Text | RootsFormat::Svg => self.text(&answer, first),
+        }
+    }
+
+    /// The roots, and what the options ask for besides.
+    fn report(
+        &self,
+        ask: &Ask,
+        transfer: &Transfer,
+        derivation: &Derivation,
+        roots: RootReport,
+    ) -> Result<Report, Failure> {
+        let circuit = &self.loaded.circuit;
+        let assignment = Assignment::for_transfer(circuit, transfer, 0);
+        let moved = match &self.wishes.target {
+            None => None,
+            Some((target, symbol)) => {
+                let quantity = target.quantity(&roots);
+                let nominal = roots::Nominal { derivation, assignment: &assignment };
+                let solution = roots::solve(nominal, quantity, *symbol, &target.value)
+                    .map_err(|error| self.unreachable(ask, target, *symbol, &error))?;
+                let value = num_traits::ToPrimitive::to_f64(&target.value).unwrap_or(f64::NAN);
+                Some(Moved { quantity, target: value, symbol: *symbol, solution })
+            }
+        };
+        let chance = self.arguments.monte_carlo.map(|trials| {
+            let places =
+                |list: &[roots::RootFacts]| list.iter().map(|facts| facts.root).collect::<Vec<_>>();
+            let (poles, zeros) = (places(&roots.poles), places(&roots.zeros));
+            let seed = self.arguments.seed;
+            let nominal = roots::Nominal { derivation, assignment: &assignment };
+            roots::monte_carlo(circuit, nominal, &poles, &zeros, trials as usize, seed)
+        });
+        Ok(Report { roots, chance, moved })
+    }
+
+    fn unreachable(
+        &self,
+        ask: &Ask,
+        target: &Target,
+        symbol: SymbolId,
+        error: &Unreachable,
+    ) -> Failure {
+        let name = &self.loaded.circuit[symbol].name;
+        let number = |value: f64| match Number::from_float(value) {
+            Some(exact) => number::rounded(&exact, 4, number::Medium::Unicode),
+            None => value.to_string(),
+        };
+        match error {
+            Unreachable::NoSuchQuantity => Failure::option(
+                format!("{}: there is no such thing to move: `{}`", ask.name, target.text),
+                MOVE_HELP,
+            ),
+            Unreachable::NoSuchSymbol => Failure::option(
+                format!("`--with {name}`: it has no positive value to start from"),
+                "give it a value in the file",
+            ),
+            Unreachable::OutOfReach { least, largest } => Failure::option(
+                format!(
+                    "{}: `{name}` alone cannot do `{}`: within a factor of a million it reaches {} \
+                     to {}",
+                    ask.name,
+                    target.text,
+                    number(*least),
+                    number(*largest)
+                ),
+                "choose one of the elements that the table names under `set by`",
+            ),
+        }
+    }
+
+    fn picture(
+        &self,
+        ask: &Ask,
+        transfer: &Transfer,
+        derivation: &Derivation,
+        roots: RootReport,
+    ) -> Result<(), Failure> {
+        let circuit = &self.loaded.circuit;
+        let assignment = Assignment::for_transfer(circuit, transfer, 0);
+        let locus = match self.wishes.locus {
+            None => None,
+            Some(symbol) => {
+                let nominal = roots::Nominal { derivation, assignment: &assignment };
+                Some(roots::locus(nominal, symbol).ok_or_else(|| {
+                    Failure::option(
+                        format!("`--locus {}`: it has no positive value", circuit[symbol].name),
+                        "give it a value in the file",
+                    )
+                })?)
+            }
+        };
+        let answer = Answer { circuit, ask, reports: &[] };
+        write_results(&typeset::map(&answer, transfer, &roots, locus.as_ref()))
+    }
+
+    fn text(&self, answer: &Answer<'_>, first: bool) -> Result<(), Failure> {
+        let output = &self.arguments.output;
+        let characters = if output.ascii { Characters::Ascii } else { Characters::Unicode };
+        let screen = Screen { width: width(Format::Text), characters };
+        let mut text = String::new();
+        match &self.loaded.circuit.title {
+            Some(title) if first && !output.quiet => text.push_str(&format!("{title}\n\n")),
+            _ if !first => text.push('\n'),
+            _ => {}
+        }
+        text.push_str(&typeset::text(answer, TextStyle { screen, quiet: output.quiet }));
+        write_results(&text)
+    }
+
+    fn finish(&mut self) -> Result<(), Failure> {
+        if self.arguments.output.format != RootsFormat::Json {
+            return Ok(());
+        }
         let whole = typeset::Roots {
             schema: typeset::ROOTS_SCHEMA,
-            circuit: loaded.circuit.title.clone(),
-            symbols: answer::symbols(&loaded.circuit),
-            results,
-            warnings,
+            circuit: self.loaded.circuit.title.clone(),
+            symbols: answer::symbols(&self.loaded.circuit),
+            results: std::mem::take(&mut self.results),
+            warnings: std::mem::take(&mut self.warnings),
         };
         let mut text =
             serde_json::to_string_pretty(&whole).map_err(|error| Failure::output(&error.into()))?;
         text.push('\n');
-        write_results(&text)?;
+        write_results(&text)
     }
-    Ok(u8::from(!passed))
-}
-
-fn print(
-    arguments: &Roots,
-    loaded: &Loaded,
-    answer: &Answer<'_>,
-    first: bool,
-) -> Result<(), Failure> {
-    let output = &arguments.output;
-    let characters = if output.ascii { Characters::Ascii } else { Characters::Unicode };
-    let screen = Screen { width: width(Format::Text), characters };
-    let style = TextStyle { screen, quiet: output.quiet };
-    let mut text = String::new();
-    match &loaded.circuit.title {
-        Some(title) if first && !output.quiet => text.push_str(&format!("{title}\n\n")),
-        _ if !first => text.push('\n'),
-        _ => {}
-    }
-    text.push_str(&typeset::text(answer, style));
-    write_results(&text)
 }
 
 fn remarks(loaded: &Loaded) -> Vec<json::Warning> {
-    let warning = |diagnostic: &cofactor::language::Diagnostic| {
+    let warning = |diagnostic: &language::Diagnostic| {
         let (line, column) = line_and_column(&loaded.text, diagnostic.span.start);
         json::Warning {
             code: diagnostic.code.to_owned(),

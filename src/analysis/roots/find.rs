@@ -115,7 +115,9 @@ fn square_roots(disc: &Disc) -> [(Complex<f64>, f64); 2] {
     // √(1 + e) is within 0.51·|e| of 1 for the small e there are here; the root itself rounds.
     let relative = 0.51 * disc.radius / x.norm() + 6.0 * f64::EPSILON;
     let bound = relative * root.norm();
-    [(root, bound), (-root, bound)]
+    // Without the sign that a zero may have.
+    let opposite = Complex::new(0.0 - root.re, 0.0 - root.im);
+    [(root, bound), (opposite, bound)]
 }
 
 #[cfg(test)]

@@ -7,21 +7,42 @@
 //! May use: the rest of [`crate::analysis`], [`crate::circuit`], [`crate::algebra`],
 //! [`crate::elimination`]. Prints nothing.
 
+mod approximate;
+mod cancelled;
 mod error;
 mod find;
 mod fixed;
+mod frequency;
 mod isolate;
+mod locus;
+mod monte_carlo;
+mod preferred;
 mod sensitivity;
+mod solve;
+mod stability;
+mod tolerance;
+mod values;
 
+pub use approximate::{Approximation, Condition, Form, GOOD, TOLERABLE, is_plain, value_of};
+pub use cancelled::Cancelled;
 pub use error::RootsError;
 pub use find::{Root, find};
+pub use frequency::{BandEdge, DcGain};
+pub use locus::{Locus, locus};
+pub use monte_carlo::{Chance, Spread, monte_carlo};
+pub use preferred::Series;
 pub use sensitivity::{SET_BY_SHARE, Sensitivity};
+pub use solve::{Preferred, Quantity, Solution, Unreachable, solve};
+pub use stability::{Conditions, Verdict, is_hurwitz, verdict};
+pub use tolerance::Shift;
+pub use values::Nominal;
 
-use num_traits::ToPrimitive;
+use num_traits::{Signed, ToPrimitive, Zero};
 
-use super::{Derivation, Notice, NumericForm};
-use crate::algebra::Univariate;
-use crate::circuit::{Circuit, SymbolId, SymbolRole, Transfer};
+use super::{ClosedForm, Derivation, Notice, NumericForm};
+use crate::algebra::{Polynomial, Univariate, Var};
+use crate::circuit::{Circuit, Number, SymbolId, SymbolRole, Transfer};
+use crate::elimination::symbol_of;
 use crate::numeric::{Assignment, Origin, used_symbols};
 use sensitivity::Side;
 
@@ -34,6 +55,16 @@ pub struct RootReport {
     pub zeros: Vec<RootFacts>,
     /// H = gain · Π(s − zero)/Π(s − pole).
     pub gain: f64,
+    /// H(0), where it is finite and not 0.
+    pub dc_gain: Option<DcGain>,
+    /// Where the magnitude has fallen to 1/√2.
+    pub band_edge: Option<BandEdge>,
+    /// Where the poles lie, exactly.
+    pub verdict: Verdict,
+    /// What keeps them in the left half plane; none for orders above four and long formulas.
+    pub conditions: Option<Conditions>,
+    /// Poles and zeros that coincide at the nominal values only.
+    pub cancelled: Vec<Cancelled>,
     /// Remarks.
     pub notices: Vec<Notice>,
 }
@@ -47,6 +78,20 @@ pub struct RootFacts {
     pub sensitivities: Option<Vec<Sensitivity>>,
     /// The symbols with at least [`SET_BY_SHARE`] of the largest sensitivity, the largest first.
     pub set_by: Vec<SymbolId>,
+    /// A short formula.
+    pub approximation: Option<Approximation>,
+    /// What the tolerances do to the size of the root.
+    pub shift: Option<Shift>,
+    /// What they do to the Q of a pair.
+    pub q_shift: Option<Shift>,
+}
+
+impl RootFacts {
+    /// (x/Q)·∂Q/∂x for a pair off the imaginary axis: tan(arg p)·Im S, since Q = 1/(2·|cos arg p|).
+    pub fn q_sensitivity(&self, one: &Sensitivity) -> Option<f64> {
+        self.root.q()?;
+        Some(self.root.value.im / self.root.value.re * one.value.im)
+    }
 }
 
 /// Finds and describes the roots of a derived transfer function.
@@ -61,35 +106,129 @@ pub fn analyse(
     let assignment = Assignment::for_transfer(circuit, transfer, 0);
     let numeric = numeric_form(circuit, transfer, derivation, &assignment)?;
     let symbols = assignment.floats();
-    let describe = |root: Root, side: Side| {
-        let sensitivities = if root.multiplicity == 1 {
-            sensitivity::of_root(&derivation.elimination, &symbols, root.value, side)
-        } else {
-            None
-        };
-        let sensitivities = sensitivities.map(|all| without_pi(circuit, all));
-        let set_by = sensitivities.as_deref().map(sensitivity::set_by).unwrap_or_default();
-        RootFacts { root, sensitivities, set_by }
-    };
+    let elimination = &derivation.elimination;
     let numerator = Univariate::from_rationals(&numeric.numerator);
     let denominator = Univariate::from_rationals(&numeric.denominator);
-    let all = |polynomial: &Univariate, side: Side| -> Result<Vec<RootFacts>, RootsError> {
-        Ok(find(polynomial)?.into_iter().map(|root| describe(root, side)).collect())
+    let fraction = match &derivation.form {
+        ClosedForm::Expanded(fraction) => Some(fraction),
+        ClosedForm::Nested(_) => None,
     };
-    let poles = all(&denominator, Side::Poles)?;
-    let zeros = all(&numerator, Side::Zeros)?;
+    let describer = Describer { circuit, derivation, symbols: &symbols };
+    let poles =
+        describer.all(&denominator, fraction.map(|form| form.denominator()), Side::Poles)?;
+    let zeros = describer.all(&numerator, fraction.map(|form| form.numerator()), Side::Zeros)?;
     let gain = if numerator.is_zero() {
         0.0
     } else {
         let ratio = numerator.leading_coefficient() / denominator.leading_coefficient();
         ratio.to_f64().unwrap_or(f64::NAN)
     };
-    Ok(RootReport { poles, zeros, gain, notices: Vec::new() })
+    let value = |polynomial: &Polynomial| {
+        polynomial.evaluate(|variable| value_of_symbol(&assignment.numbers, variable))
+    };
+    // The conditions take every symbol as positive.
+    let all_positive = assignment.numbers.iter().all(Signed::is_positive);
+    let conditions = fraction
+        .filter(|_| all_positive)
+        .and_then(|form| stability::conditions(form, |part| value(part).is_positive()));
+    let cancelled = cancelled::find_cancelled(derivation, &assignment.numbers, &symbols)?;
+    let mut notices = Vec::new();
+    if cancelled.iter().any(|pair| pair.root.value.re >= 0.0) {
+        notices.push(Notice {
+            code: "hidden-pole",
+            message:
+                "a pole that is not in the left half plane is cancelled by a zero: the function \
+                      does not show it, the circuit still has it"
+                    .to_owned(),
+            line: 0,
+        });
+    }
+    Ok(RootReport {
+        dc_gain: frequency::dc_gain(&numerator, &denominator, elimination, &symbols)
+            .map(|gain| DcGain { sensitivities: describer.named(gain.sensitivities), ..gain }),
+        band_edge: frequency::band_edge(&numerator, &denominator, elimination, &symbols)
+            .map(|edge| BandEdge { sensitivities: describer.named(edge.sensitivities), ..edge }),
+        verdict: verdict(&denominator),
+        conditions,
+        poles,
+        zeros,
+        gain,
+        cancelled,
+        notices,
+    })
 }
 
-fn without_pi(circuit: &Circuit, mut all: Vec<Sensitivity>) -> Vec<Sensitivity> {
-    all.retain(|one| circuit[one.symbol].role != SymbolRole::Pi);
-    all
+fn value_of_symbol(numbers: &[Number], variable: Var) -> Number {
+    let symbol = symbol_of(variable).and_then(|symbol| numbers.get(symbol.0 as usize).cloned());
+    symbol.unwrap_or_else(Number::zero)
+}
+
+struct Describer<'a> {
+    circuit: &'a Circuit,
+    derivation: &'a Derivation,
+    symbols: &'a [f64],
+}
+
+impl Describer<'_> {
+    fn all(
+        &self,
+        polynomial: &Univariate,
+        form: Option<&Polynomial>,
+        side: Side,
+    ) -> Result<Vec<RootFacts>, RootsError> {
+        let roots = find(polynomial)?;
+        let approximations = match form {
+            Some(form) => approximate::all(form, self.symbols, &roots),
+            None => vec![None; roots.len()],
+        };
+        let facts = roots.into_iter().zip(approximations);
+        Ok(facts
+            .map(|(root, approximation)| {
+                let sensitivities = self.sensitivities(&root, form, side);
+                self.describe(root, approximation, sensitivities)
+            })
+            .collect())
+    }
+
+    fn sensitivities(
+        &self,
+        root: &Root,
+        form: Option<&Polynomial>,
+        side: Side,
+    ) -> Option<Vec<Sensitivity>> {
+        if root.multiplicity > 1 || root.value.is_zero() {
+            return None;
+        }
+        let elimination = &self.derivation.elimination;
+        let found = sensitivity::of_root(elimination, self.symbols, root.value, side);
+        self.named(found.or_else(|| sensitivity::of_polynomial(form?, self.symbols, root.value)))
+    }
+
+    fn describe(
+        &self,
+        root: Root,
+        approximation: Option<Approximation>,
+        sensitivities: Option<Vec<Sensitivity>>,
+    ) -> RootFacts {
+        let set_by = sensitivities.as_deref().map(sensitivity::set_by).unwrap_or_default();
+        let mut facts =
+            RootFacts { root, sensitivities, set_by, approximation, shift: None, q_shift: None };
+        if let Some(all) = &facts.sensitivities {
+            facts.shift = tolerance::shift(self.circuit, all, |one| one.value.re);
+            if facts.root.q().is_some() {
+                let q = |one: &Sensitivity| facts.q_sensitivity(one).unwrap_or(0.0);
+                facts.q_shift = tolerance::shift(self.circuit, all, q);
+            }
+        }
+        facts
+    }
+
+    /// Without the number π, which nobody can change.
+    fn named(&self, all: Option<Vec<Sensitivity>>) -> Option<Vec<Sensitivity>> {
+        let mut all = all?;
+        all.retain(|one| self.circuit[one.symbol].role != SymbolRole::Pi);
+        Some(all)
+    }
 }
 
 /// The numeric form, or why there is none.

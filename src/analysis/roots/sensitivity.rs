@@ -9,10 +9,11 @@
 //! an RC network that is Σ_R S = Σ_C S = −1, the scalings of impedance and of frequency.
 
 use num_complex::Complex;
-use num_traits::Zero;
+use num_traits::{ToPrimitive, Zero};
 
+use crate::algebra::Polynomial;
 use crate::circuit::SymbolId;
-use crate::elimination::{Elimination, Gradient};
+use crate::elimination::{Elimination, Gradient, symbol_of};
 
 /// (x/p)·∂p/∂x for one symbol: the real part is the relative change of |p|, the imaginary part the
 /// change of the angle, in radians, for a relative change of the symbol.
@@ -50,6 +51,43 @@ pub(super) fn of_root(
         Side::Zeros => numerator,
         Side::Poles => denominator,
     };
+    implicit(&gradient)
+}
+
+/// As [`of_root`], from the terms of the polynomial in lowest terms: for where a common factor of the
+/// elimination vanishes too.
+pub(super) fn of_polynomial(
+    polynomial: &Polynomial,
+    symbols: &[f64],
+    root: Complex<f64>,
+) -> Option<Vec<Sensitivity>> {
+    let mut gradient =
+        Gradient { value: Complex::zero(), by_s: Complex::zero(), by_symbol: Vec::new() };
+    let variables = polynomial.variables().filter_map(symbol_of);
+    gradient.by_symbol.extend(variables.map(|symbol| (symbol, Complex::zero())));
+    for (powers, coefficient) in polynomial.terms() {
+        let mut term = Complex::new(coefficient.to_f64()?, 0.0);
+        for (variable, power) in powers.clone() {
+            let base = match symbol_of(variable) {
+                Some(symbol) => Complex::new(symbols[symbol.0 as usize], 0.0),
+                None => root,
+            };
+            term *= base.powu(power);
+        }
+        gradient.value += term;
+        for (variable, power) in powers {
+            let share = term * f64::from(power);
+            match symbol_of(variable) {
+                None => gradient.by_s += share,
+                Some(symbol) => {
+                    let place = gradient.by_symbol.binary_search_by_key(&symbol, |one| one.0);
+                    if let Ok(place) = place {
+                        gradient.by_symbol[place].1 += share;
+                    }
+                }
+            }
+        }
+    }
     implicit(&gradient)
 }
 

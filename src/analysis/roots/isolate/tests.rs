@@ -101,16 +101,3 @@ fn roots_too_close_for_any_precision_are_refused() {
     let whole = [square - 1, twice, BigInt::from(1)];
     assert_eq!(isolate(&whole), Err(Failure::TooClose));
 }
-
-#[test]
-#[ignore = "measures"]
-fn time() {
-    for n in [10, 20, 30, 40, 60, 80] {
-        let (c, _) = ladder(n);
-        let t = std::time::Instant::now();
-        for _ in 0..5 {
-            let _ = std::hint::black_box(isolate(std::hint::black_box(&c)));
-        }
-        eprintln!("{n}: {:?}", t.elapsed() / 5);
-    }
-}
