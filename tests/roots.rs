@@ -273,3 +273,112 @@ x > C1 = 1 nF > out\nout > voltage E = k*V(y) > ground\nask H = V(out)/Vin\n"
     let conditions = found["stable_when_positive"].as_array().expect("conditions");
     assert_eq!(conditions.len(), 1, "{conditions:?}");
 }
+
+mod sums {
+    //! Sums of sensitivities and finite differences on random circuits.
+    //!
+    //! Network equations are homogeneous in each unit: measured in units that are k times smaller, every
+    //! value is larger by k to the power of its exponent of that unit, and so is every root, a number in
+    //! 1/s. Euler's theorem makes of that: Σ exponent of the second × S = −1, Σ exponent of the volt
+    //! × S = 0, Σ exponent of the ampere × S = 0. For an RC network: Σ_R S = Σ_C S = −1; with inductors
+    //! Σ_L S + Σ_C S = −1 (frequency) and Σ_R S + Σ_L S = Σ_C S + Σ_G S (impedance level).
+
+    use cofactor::algebra::modular::Random;
+    use cofactor::analysis::roots::{RootFacts, RootReport, analyse};
+    use cofactor::analysis::{Options, derive};
+    use cofactor::circuit::{Circuit, Number, SymbolId};
+    use cofactor::language::read;
+
+    /// A ladder of random elements with a transconductance over two of its nodes.
+    fn random_circuit(random: &mut Random) -> Circuit {
+        let mut draw = |below: u64| random.word() % below;
+        let nodes = 2 + draw(3);
+        let mut text = "n0 > voltage Vin > ground\nband 1 Hz to 1 GHz\n".to_owned();
+        for node in 1..=nodes {
+            let before = node - 1;
+            let value = 1 + draw(99);
+            match draw(3) {
+                0 => text.push_str(&format!("n{before} > La{node} = {value} uH > n{node}\n")),
+                1 => text.push_str(&format!(
+                    "n{before} > Ra{node} = {value} kohm || Ca{node} = {value} pF > n{node}\n"
+                )),
+                _ => text.push_str(&format!("n{before} > Ra{node} = {value} kohm > n{node}\n")),
+            }
+            let value = 1 + draw(99);
+            text.push_str(&format!("n{node} > Cb{node} = {value} nF > ground\n"));
+            text.push_str(&format!("n{node} > Rb{node} = {} kohm > ground\n", 1 + draw(50)));
+        }
+        let (from, to) = (1 + draw(nodes), 1 + draw(nodes));
+        text.push_str(&format!(
+            "n{to} > current J = gm*V(n{from}) > ground\nlet gm = {} uS\n",
+            1 + draw(900)
+        ));
+        text.push_str(&format!("ask H = V(n{nodes}) / Vin\n"));
+        read(&text).circuit.unwrap_or_else(|| panic!("{text}"))
+    }
+
+    fn report(circuit: &Circuit) -> RootReport {
+        let transfer = &circuit.asks[0].transfers[0];
+        let derivation = derive(circuit, transfer, &Options::default()).expect("a derivation");
+        analyse(circuit, transfer, &derivation).expect("roots")
+    }
+
+    fn all(report: &RootReport) -> impl Iterator<Item = &RootFacts> {
+        report.poles.iter().chain(&report.zeros)
+    }
+
+    #[test]
+    fn sensitivities_add_up_by_units() {
+        let mut random = Random::new(11);
+        let mut checked = 0;
+        for _ in 0..60 {
+            let circuit = random_circuit(&mut random);
+            for facts in all(&report(&circuit)) {
+                let Some(sensitivities) = &facts.sensitivities else { continue };
+                let mut sums = [num_complex::Complex::new(0.0, 0.0); 3];
+                for one in sensitivities {
+                    let unit = circuit[one.symbol].unit;
+                    for (sum, exponent) in
+                        sums.iter_mut().zip([unit.second, unit.volt, unit.ampere])
+                    {
+                        *sum += one.value * f64::from(exponent);
+                    }
+                }
+                for (sum, expected) in sums.iter().zip([-1.0, 0.0, 0.0]) {
+                    assert!((sum - expected).norm() < 1e-7, "{sums:?} {facts:?}");
+                }
+                checked += 1;
+            }
+        }
+        assert!(checked > 200, "{checked}");
+    }
+
+    #[test]
+    fn finite_differences_agree() {
+        let mut random = Random::new(5);
+        for _ in 0..12 {
+            let circuit = random_circuit(&mut random);
+            let before = report(&circuit);
+            for index in 0..circuit.symbols.len() {
+                let symbol = SymbolId(u32::try_from(index).expect("few symbols"));
+                let moved = |parts: i64| {
+                    let mut changed = circuit.clone();
+                    let factor = Number::new((1_000_000 + parts).into(), 1_000_000.into());
+                    let nominal = &mut changed.symbols[index].nominal;
+                    *nominal = nominal.as_ref().map(|value| value * factor);
+                    report(&changed)
+                };
+                let (up, down) = (moved(1), moved(-1));
+                // Close pairs of roots may change places.
+                for (facts, (a, b)) in all(&before).zip(all(&up).zip(all(&down))) {
+                    let Some(sensitivities) = &facts.sensitivities else { continue };
+                    let found = sensitivities.iter().find(|one| one.symbol == symbol);
+                    let found = found.map_or(num_complex::Complex::new(0.0, 0.0), |one| one.value);
+                    let slope = (a.root.value - b.root.value) / (facts.root.value * 2e-6);
+                    let bound = 1e-4 * (1.0 + found.norm());
+                    assert!((slope - found).norm() < bound, "{symbol:?} {slope} {facts:?}");
+                }
+            }
+        }
+    }
+}

@@ -6,7 +6,7 @@
 //! within [`GOOD`] of the exact root is taken, else the best one within [`TOLERABLE`], else none.
 
 use num_complex::Complex;
-use num_traits::{One, Signed, ToPrimitive};
+use num_traits::ToPrimitive;
 
 use super::find::Root;
 use crate::algebra::{Fraction, Polynomial, Var};
@@ -35,14 +35,18 @@ pub enum Form {
     /// The root itself.
     Real(Fraction),
     /// A pair.
-    Pair {
-        /// The square of ω0.
-        w0_squared: Fraction,
-        /// The square of Q; none on the imaginary axis.
-        q_squared: Option<Fraction>,
-        /// The quadratic 1 + s/(ω0·Q) + s²/ω0² that has the pair as roots: its coefficients.
-        quadratic: [Fraction; 2],
-    },
+    Pair(Box<Pair>),
+}
+
+/// What is known of a pair.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Pair {
+    /// The square of ω0.
+    pub w0_squared: Fraction,
+    /// The square of Q; none on the imaginary axis.
+    pub q_squared: Option<Fraction>,
+    /// 1/(ω0·Q) and 1/ω0²: the pair are the roots of 1 + s·(first) + s²·(second).
+    pub quadratic: [Fraction; 2],
 }
 
 /// `large` is much larger than `small`.
@@ -204,12 +208,12 @@ fn pair(coefficients: &[Coefficient], root: &Root) -> Option<Approximation> {
                 Some(Fraction::new(&(low * high), &(middle * middle))?)
             }
         };
-        let form = Form::Pair {
+        let pair = Pair {
             w0_squared: Fraction::new(low, high)?,
             q_squared,
             quadratic: [Fraction::new(middle, low)?, Fraction::new(high, low)?],
         };
-        Some((form, error))
+        Some((Form::Pair(Box::new(pair)), error))
     })
 }
 
@@ -224,15 +228,11 @@ pub fn value_of(form: &Form, symbols: &[f64]) -> Complex<f64> {
     };
     match form {
         Form::Real(fraction) => Complex::new(value(fraction), 0.0),
-        Form::Pair { quadratic: [b, c], .. } => {
+        Form::Pair(pair) => {
+            let [b, c] = &pair.quadratic;
             let (b, c) = (Complex::new(value(b), 0.0), Complex::new(value(c), 0.0));
             let discriminant = (b * b - c * 4.0).sqrt();
             (discriminant - b) / (c * 2.0)
         }
     }
-}
-
-/// Whether a condition says only that something is much larger than 1.
-pub fn is_plain(condition: &Condition) -> bool {
-    condition.small.to_constant().is_some_and(|one| one.is_one() && one.is_positive())
 }

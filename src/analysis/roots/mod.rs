@@ -23,7 +23,7 @@ mod stability;
 mod tolerance;
 mod values;
 
-pub use approximate::{Approximation, Condition, Form, GOOD, TOLERABLE, is_plain, value_of};
+pub use approximate::{Approximation, Condition, Form, GOOD, Pair, TOLERABLE, value_of};
 pub use cancelled::Cancelled;
 pub use error::RootsError;
 pub use find::{Root, find};

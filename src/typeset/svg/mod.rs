@@ -22,6 +22,7 @@ pub struct Picture {
     rules: String,
     dark_rules: String,
     body: String,
+    clips: u32,
 }
 
 impl Picture {
@@ -42,6 +43,7 @@ impl Picture {
             rules: String::new(),
             dark_rules: String::new(),
             body: String::new(),
+            clips: 0,
         };
         picture.rule("text", "font:13px sans-serif;fill:#222", "fill:#ddd");
         picture.rule(".frame", "fill:none;stroke:#888;stroke-width:1", "stroke:#777");
@@ -105,7 +107,8 @@ impl Picture {
     /// Begins a group that is cut off at a rectangle; [`Self::end_clip`] ends it.
     pub fn begin_clip(&mut self, [x, y]: [f64; 2], [width, height]: [f64; 2]) {
         let (x, y, w, h) = (number(x), number(y), number(width), number(height));
-        let id = format!("{}-clip", self.identifier);
+        self.clips += 1;
+        let id = format!("{}-clip-{}", self.identifier, self.clips);
         let _ = writeln!(
             self.body,
             "<clipPath id=\"{id}\"><rect x=\"{x}\" y=\"{y}\" width=\"{w}\" height=\"{h}\"/></clipPath>\n\

@@ -346,11 +346,11 @@ impl Writer<'_> {
             expression: self.text(&words::expression(found, self.letters)),
             w0_squared: squared(|form| match form {
                 Form::Real(_) => None,
-                Form::Pair { w0_squared, .. } => Some(w0_squared),
+                Form::Pair(pair) => Some(&pair.w0_squared),
             }),
             q_squared: squared(|form| match form {
                 Form::Real(_) => None,
-                Form::Pair { q_squared, .. } => q_squared.as_ref(),
+                Form::Pair(pair) => pair.q_squared.as_ref(),
             }),
             relative_error: found.relative_error,
             while_large: found.conditions.iter().map(large).collect(),

@@ -113,11 +113,12 @@ impl Writer<'_> {
             Form::Real(value) => {
                 format!("{letter}_{{{number}}} \\approx {}", text(&words::fraction(value, letters)))
             }
-            Form::Pair { w0_squared, quadratic: [b, c], .. } => {
+            Form::Pair(pair) => {
+                let [b, c] = &pair.quadratic;
                 let print = |part: &crate::algebra::Polynomial| text(&letters.polynomial(part));
                 let mut line = format!(
                     "{letter}_{{{number}}}:\\quad \\omega_0 \\approx {}",
-                    root(w0_squared, &print)
+                    root(&pair.w0_squared, &print)
                 );
                 if !b.is_zero() {
                     let _ = write!(line, ",\\quad Q \\approx {}", quality(b, c, &print));

@@ -10,6 +10,7 @@ use num_complex::Complex;
 use super::Answer;
 use crate::analysis::roots::{Locus, RootFacts, RootReport};
 use crate::circuit::Transfer;
+use crate::typeset::number::superscript;
 use crate::typeset::svg::{Axis, Picture, label, ticks};
 
 const SIZE: [f64; 2] = [560.0, 560.0];
@@ -30,7 +31,8 @@ pub fn map(
     let name = super::label(answer, transfer);
     let roots = || report.poles.iter().chain(&report.zeros).map(|facts| facts.root.value);
     let paths = || locus.into_iter().flat_map(|locus| locus.paths.iter().flatten().flatten());
-    let plane = Plane::around(roots().chain(paths().copied()), roots());
+    let sizes: Vec<f64> = roots().chain(paths().copied()).map(|root| root.norm()).collect();
+    let plane = Plane::around(&sizes);
     let title = match locus {
         Some(locus) => {
             format!("Root locus of {name} against {}", answer.circuit[locus.symbol].name)
@@ -53,7 +55,12 @@ pub fn map(
     );
     picture.rule(".arrow", "fill:#0b5394;stroke:none", "fill:#7fbcf5");
     picture.rule(".right", "fill:#c0392b;opacity:.07", "opacity:.16");
-    picture.text("", [LEFT + SIDE / 2.0, 24.0], "middle", &title);
+    picture.text("", [LEFT + SIDE / 2.0, 20.0], "middle", &title);
+    let key = match locus {
+        Some(_) => "× poles, ○ zeros, • poles at ten times the value",
+        None => "× poles, ○ zeros",
+    };
+    picture.text("", [LEFT + SIDE, TOP - 8.0], "end", key);
     plane.ground(&mut picture);
     picture.begin_clip([LEFT, TOP], [SIDE, SIDE]);
     if let Some(locus) = locus {
@@ -111,14 +118,11 @@ struct Plane {
 }
 
 impl Plane {
-    /// A plane that holds all points, on a scale for the roots.
-    fn around(
-        all: impl Iterator<Item = Complex<f64>>,
-        roots: impl Iterator<Item = Complex<f64>>,
-    ) -> Self {
-        let largest = all.map(|root| root.norm()).fold(0.0, f64::max);
-        let smallest =
-            roots.map(|root| root.norm()).filter(|&size| size > 0.0).fold(f64::INFINITY, f64::min);
+    /// A plane that holds numbers of these sizes.
+    fn around(sizes: &[f64]) -> Self {
+        let largest = sizes.iter().copied().fold(0.0, f64::max);
+        let above_zero = sizes.iter().copied().filter(|&size| size > 0.0);
+        let smallest = above_zero.fold(f64::INFINITY, f64::min);
         if largest == 0.0 {
             return Self { half: 1.0, smallest: None };
         }
@@ -176,9 +180,10 @@ impl Plane {
                 }
                 picture.end_clip();
                 for decade in (1..=decades).step_by(1 + decades as usize / 8) {
-                    let size = inner * libm::pow(10.0, f64::from(decade));
+                    let power = (libm::log10(inner).round() as i64) + i64::from(decade);
                     let across = x.place(f64::from(decade));
-                    picture.text("", [across, bottom + 18.0], "middle", &label(size, ""));
+                    let size = format!("10{}", superscript(power));
+                    picture.text("", [across, bottom + 18.0], "middle", &size);
                     picture.line("axis", [across, bottom], [across, bottom + 4.0]);
                 }
                 let words =

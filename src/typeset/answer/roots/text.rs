@@ -68,6 +68,9 @@ struct Line<'a> {
     facts: &'a RootFacts,
 }
 
+/// A quantity, its relative sensitivities, and its shift by the tolerances.
+type Row = (String, Vec<(SymbolId, f64)>, Option<Shift>);
+
 /// The lines of a list of roots.
 fn lines(letter: char, roots: &[RootFacts]) -> Vec<Line<'_>> {
     let mut lines = Vec::new();
@@ -235,7 +238,7 @@ impl Writer<'_> {
     /// A table of relative sensitivities and what the tolerances do.
     fn sensitivities(&self) -> String {
         let roots = &self.report.roots;
-        let mut rows: Vec<(String, Vec<(SymbolId, f64)>, Option<Shift>)> = Vec::new();
+        let mut rows: Vec<Row> = Vec::new();
         for (letter, list) in [('p', &roots.poles), ('z', &roots.zeros)] {
             for Line { name, facts, .. } in lines(letter, list) {
                 let Some(all) = &facts.sensitivities else { continue };
@@ -292,7 +295,7 @@ impl Writer<'_> {
     }
 
     /// The symbols that matter most, as many as there is room for, in the circuit's order.
-    fn shown(&self, rows: &[(String, Vec<(SymbolId, f64)>, Option<Shift>)]) -> Vec<SymbolId> {
+    fn shown(&self, rows: &[Row]) -> Vec<SymbolId> {
         let mut largest: Vec<(SymbolId, f64)> = Vec::new();
         for &(id, value) in rows.iter().flat_map(|row| &row.1) {
             match largest.iter_mut().find(|(other, _)| *other == id) {
@@ -332,9 +335,10 @@ impl Writer<'_> {
             Form::Real(value) => {
                 format!("{name} {about} {}", self.line(&words::fraction(value, letters)))
             }
-            Form::Pair { w0_squared, quadratic: [b, c], .. } => {
+            Form::Pair(pair) => {
+                let [b, c] = &pair.quadratic;
                 let w0 = if self.is_ascii() { "w0" } else { "ω0" };
-                let w0 = format!("{name}: {w0} {about} {}", self.root_of(w0_squared));
+                let w0 = format!("{name}: {w0} {about} {}", self.root_of(&pair.w0_squared));
                 if b.is_zero() { w0 } else { format!("{w0}, Q {about} {}", self.quality(b, c)) }
             }
         };

@@ -28,7 +28,7 @@ pub(super) fn quadratic([b, c]: &[Fraction; 2], letters: Lettering) -> Formula {
 pub(super) fn expression(approximation: &Approximation, letters: Lettering) -> Formula {
     match &approximation.form {
         Form::Real(value) => fraction(value, letters),
-        Form::Pair { quadratic: coefficients, .. } => quadratic(coefficients, letters),
+        Form::Pair(pair) => quadratic(&pair.quadratic, letters),
     }
 }
 
