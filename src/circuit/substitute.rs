@@ -35,7 +35,11 @@ impl Law {
     /// The values in the law.
     pub fn values(&self) -> Vec<&Value> {
         match self {
-            Self::Impedance(value) | Self::Admittance(value) => vec![value],
+            Self::Impedance(value)
+            | Self::Admittance(value)
+            | Self::Transformer { ratio: value, .. }
+            | Self::Gyrator { conductance: value, .. }
+            | Self::Mutual { inductance: value, .. } => vec![value],
             Self::ControlledVoltage(controls) | Self::ControlledCurrent(controls) => {
                 controls.iter().map(|control| &control.gain).collect()
             }
@@ -46,7 +50,11 @@ impl Law {
     /// The values in the law, to be changed.
     pub fn values_mut(&mut self) -> Vec<&mut Value> {
         match self {
-            Self::Impedance(value) | Self::Admittance(value) => vec![value],
+            Self::Impedance(value)
+            | Self::Admittance(value)
+            | Self::Transformer { ratio: value, .. }
+            | Self::Gyrator { conductance: value, .. }
+            | Self::Mutual { inductance: value, .. } => vec![value],
             Self::ControlledVoltage(controls) | Self::ControlledCurrent(controls) => {
                 controls.iter_mut().map(|control| &mut control.gain).collect()
             }

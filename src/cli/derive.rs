@@ -87,7 +87,7 @@ fn answers(
 }
 
 fn derive(circuit: &Circuit, ask: &Ask, options: &Options) -> Result<Vec<Derivation>, Failure> {
-    ask.transfers
+    ask.transfers()
         .iter()
         .map(|transfer| analysis::derive(circuit, transfer, options))
         .collect::<Result<_, AnalysisError>>()

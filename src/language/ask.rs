@@ -8,7 +8,9 @@ use super::diagnostic::{Diagnostic, Span};
 use super::names::{self, is_ground, nearest};
 use super::sources::{self, Access};
 use super::syntax::{Argument, Expression, ExpressionKind, Name, Query};
-use crate::circuit::{Ask, Circuit, Drive, ElementId, GROUND, Law, NodeId, Probe, Transfer, Unit};
+use crate::circuit::{
+    Ask, Circuit, Drive, ElementId, GROUND, Law, NodeId, Probe, Question, Transfer, Unit,
+};
 use rustc_hash::FxHashMap;
 
 /// Resolves a query against a circuit; the line is left 0.
@@ -21,7 +23,7 @@ pub(crate) fn resolve(circuit: &Circuit, query: &Query) -> Result<Ask, Vec<Diagn
 
 /// The nodes that a question is about.
 pub(crate) fn nodes(ask: &Ask) -> impl Iterator<Item = NodeId> {
-    ask.transfers.iter().flat_map(|transfer| {
+    ask.transfers().iter().flat_map(|transfer| {
         let mut nodes = Vec::new();
         for probe in [transfer.numerator, transfer.denominator] {
             if let Probe::Voltage(a, b) = probe {
@@ -78,8 +80,6 @@ pub(crate) struct Resolver<'c> {
     sources: Vec<ElementId>,
 }
 
-type Found = (Vec<Transfer>, bool);
-
 impl<'c> Resolver<'c> {
     /// Indexes the names of a circuit.
     pub(crate) fn new(circuit: &'c Circuit) -> Self {
@@ -110,19 +110,19 @@ impl<'c> Resolver<'c> {
             Some(name) => Some((self.independent_source(name)?, name.span)),
             None => None,
         };
-        let (transfers, superposition) = self.transfers(&query.expression, from)?;
+        let question = self.question(&query.expression, from)?;
         let mut text = tidy(&query.expression);
         if let Some(from) = &query.from {
             text = format!("{text} from {}", from.text);
         }
-        Ok(Ask { name: query.name.text.clone(), text, transfers, superposition, line: 0 })
+        Ok(Ask { name: query.name.text.clone(), text, question, line: 0 })
     }
 
-    fn transfers(
+    fn question(
         &self,
         expression: &Expression,
         from: Option<(ElementId, Span)>,
-    ) -> Result<Found, Diagnostic> {
+    ) -> Result<Question, Diagnostic> {
         if let ExpressionKind::Call(name, arguments) = &expression.kind
             && names::QUERIES.contains(&name.text.as_str())
         {
@@ -134,14 +134,14 @@ impl<'c> Resolver<'c> {
                 )
                 .help("leave `from` out"));
             }
-            return self.port_query(name, arguments, expression.span).map(|one| (vec![one], false));
+            return self.port_query(name, arguments, expression.span).map(Question::Ratio);
         }
         match &expression.kind {
             ExpressionKind::Product(factors) => {
                 if let [upper, lower] = factors.as_slice()
                     && let ExpressionKind::Power(lower, -1) = &lower.kind
                 {
-                    return self.ratio(upper, lower, from).map(|one| (vec![one], false));
+                    return self.ratio(upper, lower, from).map(Question::Ratio);
                 }
                 Err(no_query(expression.span))
             }
@@ -233,7 +233,7 @@ impl<'c> Resolver<'c> {
         &self,
         expression: &Expression,
         from: Option<(ElementId, Span)>,
-    ) -> Result<Found, Diagnostic> {
+    ) -> Result<Question, Diagnostic> {
         let side = self.side(expression)?;
         let sources = match from {
             Some((source, _)) => vec![source],
@@ -254,7 +254,7 @@ impl<'c> Resolver<'c> {
             removed: Vec::new(),
             unit: self.unit(side).over(self.unit(Side::Source(source))),
         };
-        Ok((sources.into_iter().map(transfer).collect(), true))
+        Ok(Question::Superposition(sources.into_iter().map(transfer).collect()))
     }
 
     fn port_query(

@@ -74,6 +74,9 @@ pub(crate) fn unit_of(class: Class) -> Unit {
         Class::Voltage | Class::Opamp => Unit::VOLT,
         Class::Current => Unit::AMPERE,
         Class::Resistor | Class::Impedance => Unit::OHM,
+        Class::Nullor | Class::Transformer => Unit::ONE,
+        Class::Gyrator => Unit::SIEMENS,
+        Class::Mutual => Unit::HENRY,
     }
 }
 

@@ -523,27 +523,27 @@ fn questions_find_their_source() {
     };
     let (circuit, h) = ask("", "V(out)/Vin");
     let vin = circuit.element("Vin").map(Drive::Source);
-    assert_eq!((h.text.as_str(), h.line, h.superposition), ("V(out) / Vin", 4, false));
-    assert_eq!(Some(h.transfers[0].drive), vin);
-    assert_eq!(h.transfers[0].denominator, Probe::Drive);
+    assert_eq!((h.text.as_str(), h.line, h.is_superposition()), ("V(out) / Vin", 4, false));
+    assert_eq!(Some(h.transfers()[0].drive), vin);
+    assert_eq!(h.transfers()[0].denominator, Probe::Drive);
     let (_, h) = ask("", "I(R2) / V(in)");
-    assert_eq!(h.transfers[0].unit, Unit::SIEMENS);
+    assert_eq!(h.transfers()[0].unit, Unit::SIEMENS);
     let (_, h) = ask("", "Vin / I(R1)");
-    assert_eq!((h.transfers[0].numerator, h.transfers[0].unit), (Probe::Drive, Unit::OHM));
+    assert_eq!((h.transfers()[0].numerator, h.transfers()[0].unit), (Probe::Drive, Unit::OHM));
     let second = "ground > current Ib > out";
     let (_, h) = ask(second, "V(out)");
-    assert_eq!((h.transfers.len(), h.superposition), (2, true));
-    assert_eq!(h.transfers[1].unit, Unit::OHM);
+    assert_eq!((h.transfers().len(), h.is_superposition()), (2, true));
+    assert_eq!(h.transfers()[1].unit, Unit::OHM);
     let (circuit, h) = ask(second, "V(out, in) / V(out) from Ib");
-    assert_eq!(Some(h.transfers[0].drive), circuit.element("Ib").map(Drive::Source));
+    assert_eq!(Some(h.transfers()[0].drive), circuit.element("Ib").map(Drive::Source));
     // The denominator is set by one source: no `from` is needed.
     let (circuit, h) = ask(second, "V(out) / V(in)");
-    assert_eq!(Some(h.transfers[0].drive), circuit.element("Vin").map(Drive::Source));
+    assert_eq!(Some(h.transfers()[0].drive), circuit.element("Vin").map(Drive::Source));
     let (circuit, h) = ask(second, "impedance(ground, out)");
-    assert_eq!(h.transfers[0].removed, circuit.element("Ib").into_iter().collect::<Vec<_>>());
+    assert_eq!(h.transfers()[0].removed, circuit.element("Ib").into_iter().collect::<Vec<_>>());
     let (_, h) = ask(second, "admittance(in, out)");
-    assert_eq!((h.transfers[0].numerator, h.transfers[0].unit), (Probe::Drive, Unit::SIEMENS));
-    assert!(h.transfers[0].removed.is_empty());
+    assert_eq!((h.transfers()[0].numerator, h.transfers()[0].unit), (Probe::Drive, Unit::SIEMENS));
+    assert!(h.transfers()[0].removed.is_empty());
 }
 
 #[test]

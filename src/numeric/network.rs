@@ -396,7 +396,8 @@ fn stamp<F: Field>(
         Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls) => {
             Stamp::Controls(controls.iter().map(|c| at(&c.gain)).collect::<Option<_>>()?)
         }
-        Law::VoltageSource | Law::CurrentSource | Law::Nullor(..) => Stamp::None,
+        // Magnetic elements were lowered before.
+        _ => Stamp::None,
     })
 }
 
@@ -427,7 +428,7 @@ pub(crate) fn summed<F: Field>(field: &F, row: &[(usize, F::Element)]) -> Vec<(u
 /// [`NumericError::Singular`] where such a part cannot be solved by itself,
 /// [`NumericError::Undetermined`] where a voltage between two parts is asked for.
 pub fn grounded_nodes(circuit: &Circuit, transfer: &Transfer) -> Result<Vec<NodeId>, NumericError> {
-    Ok(Network::new(circuit, transfer)?.grounded)
+    Ok(Network::new(&super::lowered(circuit), transfer)?.grounded)
 }
 
 fn check_ids(circuit: &Circuit, transfer: &Transfer) -> Result<(), NumericError> {

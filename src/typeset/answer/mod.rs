@@ -39,7 +39,7 @@ impl<'a> Answer<'a> {
 
     /// Transfer functions and their derivations.
     fn parts(&self) -> impl Iterator<Item = (&'a Transfer, &'a Derivation)> {
-        self.ask.transfers.iter().zip(self.derivations)
+        self.ask.transfers().iter().zip(self.derivations)
     }
 
     /// The name of the source that drives a transfer function.

@@ -44,7 +44,7 @@ pub fn text(answer: &Answer<'_>, style: TextStyle) -> String {
             facts(&mut out, answer, transfer, derivation, &names, style);
         }
     }
-    if answer.ask.superposition && !style.quiet {
+    if answer.ask.is_superposition() && !style.quiet {
         let _ = writeln!(out, "\n{}", superposition(answer));
     }
     out
@@ -53,7 +53,7 @@ pub fn text(answer: &Answer<'_>, style: TextStyle) -> String {
 /// `H`, or `H[Vin]` for a source's share in a superposition.
 fn label(answer: &Answer<'_>, transfer: &Transfer) -> String {
     match answer.source(transfer) {
-        Some(source) if answer.ask.superposition => format!("{}[{source}]", answer.ask.name),
+        Some(source) if answer.ask.is_superposition() => format!("{}[{source}]", answer.ask.name),
         _ => answer.ask.name.clone(),
     }
 }
@@ -65,7 +65,7 @@ fn heading(answer: &Answer<'_>, transfer: &Transfer, name: &str, style: TextStyl
         format!("   in {}", unit_text(transfer.unit, style))
     };
     let query = match answer.source(transfer) {
-        Some(source) if answer.ask.superposition => format!("{} / {source}", answer.ask.text),
+        Some(source) if answer.ask.is_superposition() => format!("{} / {source}", answer.ask.text),
         _ => answer.ask.text.clone(),
     };
     format!("{name}: {query}{unit}\n")
@@ -231,7 +231,7 @@ fn superscript(power: usize) -> String {
 fn superposition(answer: &Answer<'_>) -> String {
     let shares: Vec<String> = answer
         .ask
-        .transfers
+        .transfers()
         .iter()
         .filter_map(|transfer| answer.source(transfer))
         .map(|source| format!("{}[{source}]*{source}", answer.ask.name))
