@@ -10,6 +10,8 @@
 //! Coefficients are accumulated in 64 or 128 bits where a bound on their size allows it, else in
 //! big integers.
 
+use std::cmp::Ordering;
+
 use num_bigint::BigInt;
 
 use super::{Integer, Key, Layout, LongKey, Packing, Polynomial};
@@ -227,31 +229,39 @@ fn sparse<K: Key, A: Accumulator>(a: &Polynomial, b: &Polynomial, layout: Layout
 }
 
 /// Merges two descending lists; like terms are added.
-fn merged<K: Key, A: Accumulator>(mut upper: Vec<(K, A)>, lower: Vec<(K, A)>) -> Vec<(K, A)> {
+fn merged<K: Key, A: Accumulator>(mut upper: Vec<(K, A)>, mut lower: Vec<(K, A)>) -> Vec<(K, A)> {
     match (upper.last(), lower.first()) {
         (Some(last), Some(first)) if last.0 <= first.0 => {}
         _ => {
-            upper.extend(lower);
+            upper.append(&mut lower);
             return upper;
         }
     }
     let mut result = Vec::with_capacity(upper.len() + lower.len());
-    let (mut left, mut right) = (upper.into_iter().peekable(), lower.into_iter().peekable());
-    while let (Some(a), Some(b)) = (left.peek(), right.peek()) {
-        match a.0.cmp(&b.0) {
-            std::cmp::Ordering::Greater => result.extend(left.next()),
-            std::cmp::Ordering::Less => result.extend(right.next()),
-            std::cmp::Ordering::Equal => {
-                if let (Some(mut a), Some(b)) = (left.next(), right.next()) {
-                    a.1.add(&b.1);
-                    if !a.1.is_zero() {
-                        result.push(a);
-                    }
+    let (mut i, mut j) = (0, 0);
+    while i < upper.len() && j < lower.len() {
+        let (left, right) = (&mut upper[i], &mut lower[j]);
+        match left.0.cmp(&right.0) {
+            Ordering::Greater => {
+                result.push((left.0.clone(), std::mem::take(&mut left.1)));
+                i += 1;
+            }
+            Ordering::Less => {
+                result.push((right.0.clone(), std::mem::take(&mut right.1)));
+                j += 1;
+            }
+            Ordering::Equal => {
+                let mut sum = std::mem::take(&mut left.1);
+                sum.add(&right.1);
+                if !sum.is_zero() {
+                    result.push((left.0.clone(), sum));
                 }
+                i += 1;
+                j += 1;
             }
         }
     }
-    result.extend(left);
-    result.extend(right);
+    result.extend(upper.drain(i..));
+    result.extend(lower.drain(j..));
     result
 }
