@@ -38,6 +38,8 @@ pub(crate) struct System {
     pub(crate) numerator: usize,
     /// Likewise the denominator.
     pub(crate) denominator: usize,
+    /// Likewise the determinant of the network itself.
+    pub(crate) determinant: usize,
 }
 
 impl System {
@@ -195,10 +197,7 @@ impl<'c> Builder<'c> {
                     self.push(nullor(pair, nullator).choice(), vec![id], false);
                 }
                 Law::VoltageSource if self.transfer.drive != Drive::Source(id) => {
-                    // A source of 0 V between a node and itself says nothing.
-                    if pair.0 != pair.1 {
-                        self.push(short(pair), vec![id], false);
-                    }
+                    self.push(short(pair), vec![id], false);
                 }
                 Law::Transformer { ratio, secondary } => {
                     let ratio = self.fraction(id, ratio)?;
@@ -407,7 +406,7 @@ impl<'c> Builder<'c> {
         };
         let mut choice = Choice::default();
         let mut index_of = Vec::new();
-        for probe in [self.transfer.numerator, self.transfer.denominator] {
+        for probe in [self.transfer.numerator, self.transfer.denominator, Probe::Drive] {
             let alternative = match probe {
                 Probe::Drive if is_voltage => alternative(1, vec![port], vec![port]),
                 Probe::Drive => alternative(1, vec![], vec![]),
@@ -434,6 +433,7 @@ impl<'c> Builder<'c> {
             grounded: Vec::new(),
             numerator: index_of[0],
             denominator: index_of[1],
+            determinant: index_of[2],
         })
     }
 

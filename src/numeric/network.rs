@@ -129,7 +129,10 @@ impl<'a> Network<'a> {
             // A given current does not answer to a voltage: it joins nothing.
             let is_given = match &element.law {
                 Law::CurrentSource => true,
-                Law::ControlledCurrent(controls) => controls.is_empty(),
+                // A control from a node to itself is 0.
+                Law::ControlledCurrent(controls) => controls.iter().all(|control| {
+                    matches!(control.quantity, Quantity::Voltage(a, b) if a == b)
+                }),
                 _ => false,
             };
             if !is_given {
