@@ -201,12 +201,11 @@ impl Elimination {
     /// How many terms each power of `s` has, without making them.
     pub fn count_terms(&self) -> TermCounts {
         let weights: Vec<_> = self.weights.iter().map(count::weight).collect();
-        let values = passes::values(&count::Counts, &self.diagram, &weights);
-        TermCounts {
-            numerator: passes::at(&count::Counts, &values, self.numerator),
-            denominator: passes::at(&count::Counts, &values, self.denominator),
-            exact: self.distinct,
-        }
+        let roots = [self.numerator, self.denominator];
+        let mut counts = passes::at_links(&count::Counts, &self.diagram, &weights, &roots);
+        let denominator = counts.pop().unwrap_or_default();
+        let numerator = counts.pop().unwrap_or_default();
+        TermCounts { numerator, denominator, exact: self.distinct }
     }
 
     /// Numerator and denominator as polynomials, terms collected; not yet in lowest terms.

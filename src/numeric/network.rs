@@ -130,9 +130,9 @@ impl<'a> Network<'a> {
             let is_given = match &element.law {
                 Law::CurrentSource => true,
                 // A control from a node to itself is 0.
-                Law::ControlledCurrent(controls) => controls.iter().all(|control| {
-                    matches!(control.quantity, Quantity::Voltage(a, b) if a == b)
-                }),
+                Law::ControlledCurrent(controls) => controls
+                    .iter()
+                    .all(|control| matches!(control.quantity, Quantity::Voltage(a, b) if a == b)),
                 _ => false,
             };
             if !is_given {

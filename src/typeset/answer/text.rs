@@ -27,6 +27,9 @@ impl TextStyle {
     }
 }
 
+/// Digits of a number of terms that are printed.
+const LONGEST_COUNT: usize = 60;
+
 /// One answer: formulas, numbers, evidence.
 pub fn text(answer: &Answer<'_>, style: TextStyle) -> String {
     let names = answer.names();
@@ -112,7 +115,7 @@ fn facts(
 ) {
     out.push('\n');
     let mut fact = |title: &str, text: String| {
-        let _ = writeln!(out, "  {title:<16}{text}");
+        let _ = writeln!(out, "  {title:<18}{text}");
     };
     if let Some(numeric) = &derivation.numeric {
         fact("with numbers", numbers(numeric, style));
@@ -123,8 +126,14 @@ fn facts(
         fact("towards infinity", asymptote(&high, transfer.unit, names, style, derivation, true));
     }
     if let ClosedForm::Nested(_) = derivation.form {
-        let count = total(&derivation.counts);
+        let count = total(&derivation.counts).to_string();
         let about = if derivation.counts.exact { "" } else { "at most " };
+        // Hundreds of digits help nobody; JSON has them all.
+        let count = if count.len() <= LONGEST_COUNT {
+            count
+        } else {
+            format!("about {}.{}e{}", &count[..1], &count[1..4], count.len() - 1)
+        };
         fact("expanded", format!("{about}{count} terms"));
     }
     fact("checked", evidence(&derivation.evidence));
