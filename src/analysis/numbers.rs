@@ -41,16 +41,17 @@ pub(crate) fn nominal(
         );
         return None;
     }
-    let (n, d) = (Univariate::new(numerator), Univariate::new(denominator));
+    let (n, d) = (Univariate::from_rationals(&numerator), Univariate::from_rationals(&denominator));
     let before = d.degree();
-    let (n, d) = Univariate::lowest_terms(&n, &d);
+    let (n, d) = Univariate::lowest_terms(&n, &d)?;
     if d.degree() < before {
         say(
             "cancelled-at-nominal",
             "at the nominal values a pole and a zero coincide; they are cancelled in the numeric form",
         );
     }
-    let (numerator, denominator) = (n.coefficients(), d.coefficients());
+    let coefficients = |of: &Univariate| (0..=of.degree()).map(|power| of.coefficient(power)).collect();
+    let (numerator, denominator): (Vec<Number>, Vec<Number>) = (coefficients(&n), coefficients(&d));
     let scale = denominator.iter().find(|c| !c.is_zero()).cloned().unwrap_or_else(Number::one);
     let scaled = |of: Vec<Number>| of.into_iter().map(|c| c / &scale).collect();
     Some(NumericForm { numerator: scaled(numerator), denominator: scaled(denominator) })

@@ -19,7 +19,7 @@ use super::super::polynomial::Polynomial;
 
 /// A full set of gradings, solved for the variables that can be left out.
 #[derive(Debug)]
-pub(super) struct Grading {
+pub(in crate::algebra) struct Grading {
     field: Field,
     kept: Vec<Var>,
     /// Each left-out variable with the change of its exponent for a step in each kept one.
@@ -28,7 +28,7 @@ pub(super) struct Grading {
 
 impl Grading {
     /// The gradings common to both operands, which contain the same variables; none without any.
-    pub(super) fn find(a: &Polynomial, b: &Polynomial) -> Option<Self> {
+    pub(in crate::algebra) fn find(a: &Polynomial, b: &Polynomial) -> Option<Self> {
         let field = primes().next()?;
         let variables: Vec<Var> = a.variables().collect();
         let count = variables.len();
@@ -89,12 +89,12 @@ impl Grading {
     }
 
     /// Sets the variables to be left out to 1.
-    pub(super) fn apply(&self, value: &Polynomial) -> Polynomial {
+    pub(in crate::algebra) fn apply(&self, value: &Polynomial) -> Polynomial {
         value.projected(&self.kept)
     }
 
     /// Finds their exponents again, the lowest of each being 0; none if they are no small integers.
-    pub(super) fn restore(&self, value: &Polynomial) -> Option<Polynomial> {
+    pub(in crate::algebra) fn restore(&self, value: &Polynomial) -> Option<Polynomial> {
         let exponents = |term: usize| -> Vec<i64> {
             let words = value.monomial_words(term);
             let field = |variable: &Var| value.layout.field(*variable);

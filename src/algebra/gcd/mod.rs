@@ -18,6 +18,7 @@ mod tests;
 
 use std::collections::BTreeMap;
 
+pub(super) use homogeneous::Grading;
 pub use subresultant::gcd as subresultant_gcd;
 
 use super::integer::Integer;
@@ -105,7 +106,7 @@ fn gcd_of_cores(a: &Polynomial, b: &Polynomial) -> Polynomial {
             return divisor.clone();
         }
     }
-    let reduced = homogeneous::Grading::find(a, b).and_then(|grading| {
+    let reduced = Grading::find(a, b).and_then(|grading| {
         let (left, right) = (grading.apply(a), grading.apply(b));
         grading.restore(&gcd_with_degrees(&left, &right, &degrees)).map(Polynomial::abs)
     });

@@ -6,6 +6,7 @@
 mod dense;
 mod field;
 mod random;
+mod splitting;
 
 pub use dense::Dense;
 pub use field::{Field, primes};

@@ -1,6 +1,6 @@
 //! Values modulo a prime, at a point or along one variable.
 
-use super::{Polynomial, Var};
+use super::{Integer, Polynomial, Var};
 use crate::algebra::modular::{Dense, Field};
 
 impl Polynomial {
@@ -38,6 +38,19 @@ impl Polynomial {
                 (variable, Dense::new(line))
             })
             .collect()
+    }
+
+    /// With each coefficient replaced by the number nearest to 0 in its residue class.
+    pub(crate) fn symmetric_modulo(&self, field: &Field) -> Self {
+        let mut result = Self { layout: self.layout.clone(), ..Self::zero() };
+        for (words, coefficient) in self.monomials().zip(&self.coefficients) {
+            let value = field.symmetric(coefficient.modulo(field.modulus()));
+            if value != 0 {
+                result.words.extend_from_slice(words);
+                result.coefficients.push(Integer::Small(value));
+            }
+        }
+        result.tightened()
     }
 
     fn term_values(&self, field: &Field, value: impl Fn(Var) -> u64) -> Vec<u64> {

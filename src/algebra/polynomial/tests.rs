@@ -28,6 +28,12 @@ pub(crate) fn polynomial(variables: u32, degree: u32, terms: usize) -> BoxedStra
         .boxed()
 }
 
+/// The same without 0.
+pub(crate) fn nonzero(variables: u32, degree: u32, terms: usize) -> BoxedStrategy<Polynomial> {
+    let any = polynomial(variables, degree, terms);
+    any.prop_map(|value| if value.is_zero() { Polynomial::one() } else { value }).boxed()
+}
+
 fn canonical(value: Polynomial) -> Polynomial {
     value.assert_canonical();
     value
