@@ -50,7 +50,8 @@ pub(crate) fn nominal(
             "at the nominal values a pole and a zero coincide; they are cancelled in the numeric form",
         );
     }
-    let coefficients = |of: &Univariate| (0..=of.degree()).map(|power| of.coefficient(power)).collect();
+    let coefficients =
+        |of: &Univariate| (0..=of.degree()).map(|power| of.coefficient(power)).collect();
     let (numerator, denominator): (Vec<Number>, Vec<Number>) = (coefficients(&n), coefficients(&d));
     let scale = denominator.iter().find(|c| !c.is_zero()).cloned().unwrap_or_else(Number::one);
     let scaled = |of: Vec<Number>| of.into_iter().map(|c| c / &scale).collect();

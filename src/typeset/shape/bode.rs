@@ -6,7 +6,7 @@ use crate::typeset::Formula;
 
 /// The shape `bode`: the constant that rules at low frequencies, a power of `s`, and a fraction of
 /// polynomials that begin with 1.
-pub fn bode(fraction: &Fraction, letters: Lettering) -> Formula {
+pub fn bode(fraction: &Fraction, letters: Lettering<'_>) -> Formula {
     if fraction.is_zero() {
         return Formula::integer(0);
     }
@@ -27,7 +27,7 @@ fn lowest(polynomial: &Polynomial) -> (Polynomial, u32) {
 }
 
 /// a/b in lowest terms.
-pub(crate) fn ratio(a: &Polynomial, b: &Polynomial, letters: Lettering) -> Formula {
+pub(crate) fn ratio(a: &Polynomial, b: &Polynomial, letters: Lettering<'_>) -> Formula {
     match Fraction::new(a, b) {
         Some(fraction) => Formula::quotient(
             letters.polynomial(fraction.numerator()),
@@ -38,7 +38,12 @@ pub(crate) fn ratio(a: &Polynomial, b: &Polynomial, letters: Lettering) -> Formu
 }
 
 /// 1 + s·(c₁/c₀) + s²·(c₂/c₀) + …
-fn from_one(polynomial: &Polynomial, first: &Polynomial, from: u32, letters: Lettering) -> Formula {
+fn from_one(
+    polynomial: &Polynomial,
+    first: &Polynomial,
+    from: u32,
+    letters: Lettering<'_>,
+) -> Formula {
     let parts = polynomial.coefficients(Var::S);
     let terms = parts
         .iter()

@@ -4,11 +4,13 @@
 //! of them have the same value. What they share is here: a polynomial written out, and the signs.
 
 mod bode;
+mod compact;
 mod nested;
 mod powers;
 
 pub use bode::bode;
 pub(crate) use bode::ratio;
+pub use compact::compact;
 pub use nested::{Layered, nested};
 pub use powers::powers;
 
@@ -19,16 +21,24 @@ use num_traits::Signed;
 use super::{Formula, Letter};
 use crate::algebra::{Fraction, Polynomial, Var};
 use crate::analysis::ClosedForm;
+use crate::circuit::{Symbol, Unit};
 use crate::elimination::Elimination;
 
 /// Which letter a variable is.
 #[derive(Clone, Copy, Debug, Default)]
-pub struct Lettering {
+pub struct Lettering<'a> {
     /// The variable that stands for π, when there is one.
     pub pi: Option<Var>,
+    /// The symbols, for what they are by their nature; those beyond are taken for numbers.
+    pub symbols: &'a [Symbol],
 }
 
-impl Lettering {
+impl Lettering<'_> {
+    /// The unit of a symbol.
+    pub(crate) fn unit(self, symbol: u32) -> Unit {
+        self.symbols.get(symbol as usize).map_or(Unit::ONE, |symbol| symbol.unit)
+    }
+
     /// The letter of a variable: `s`, π, or the symbol one below the variable's number.
     pub fn letter(self, variable: Var) -> Letter {
         match variable.0.checked_sub(1) {
@@ -108,16 +118,13 @@ pub fn write(
     form: &ClosedForm,
     elimination: &Elimination,
     shape: Shape,
-    letters: Lettering,
+    letters: Lettering<'_>,
 ) -> Option<Layered> {
     let plain = |formula| Some(Layered { definitions: Vec::new(), formula });
     match (form, shape) {
         (ClosedForm::Expanded(fraction), Shape::Powers) => plain(powers(fraction, letters)),
         (ClosedForm::Expanded(fraction), Shape::Bode) => plain(bode(fraction, letters)),
-        (ClosedForm::Expanded(fraction), Shape::Compact) => {
-            let (powers, bode) = (powers(fraction, letters), bode(fraction, letters));
-            plain(if bode.symbols() < powers.symbols() { bode } else { powers })
-        }
+        (ClosedForm::Expanded(fraction), Shape::Compact) => plain(compact(fraction, letters)),
         (ClosedForm::Expanded(_), Shape::Nested) => Some(nested(&elimination.nested(), letters)),
         (ClosedForm::Nested(sums), Shape::Nested | Shape::Compact) => Some(nested(sums, letters)),
         (ClosedForm::Nested(_), Shape::Powers | Shape::Bode) => None,

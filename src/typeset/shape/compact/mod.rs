@@ -1,0 +1,132 @@
+//! The shape `compact`: what a designer would have written by hand.
+//!
+//! Strategies make candidates, and the one that costs the reader least ([`cost`]) wins: one bar with
+//! factors above and below ([`quotient`]), sums of two simpler fractions ([`split`]), reciprocals of
+//! such sums, each part again by all strategies, a few levels deep. Sums are factored by kernels
+//! ([`sum`]). The winner has been compared with the fraction at random points ([`verify`]).
+//!
+//! The work is counted; past a bound the choices that are left are not made. What is too large for
+//! this is written by powers of `s`.
+
+mod cost;
+mod inverse;
+mod kernel;
+mod laurent;
+mod order;
+mod quotient;
+mod split;
+mod sum;
+mod verify;
+
+use rustc_hash::FxHashMap;
+
+use super::{Lettering, bode, powers};
+use crate::algebra::{Fraction, Polynomial, gcd};
+use crate::typeset::Formula;
+use laurent::Ring;
+use quotient::Factored;
+use sum::{Form, Writer};
+
+/// Terms of fractions that are split.
+const MAX_SPLIT_TERMS: usize = 60;
+/// Splits of splits.
+const MAX_DEPTH: usize = 3;
+/// Splits that are followed.
+const MAX_SPLITS: usize = 6;
+
+/// The shape `compact`.
+pub fn compact(fraction: &Fraction, letters: Lettering<'_>) -> Formula {
+    let ring = Ring::new(&[fraction.numerator(), fraction.denominator()]);
+    let mut search = Search { writer: Writer::new(ring, letters), known: FxHashMap::default() };
+    if let Some(form) = search.best(fraction, MAX_DEPTH)
+        && verify::equal(&form.formula, fraction, letters)
+    {
+        return form.formula;
+    }
+    let (powers, bode) = (powers(fraction, letters), bode(fraction, letters));
+    if bode.symbols() < powers.symbols() { bode } else { powers }
+}
+
+struct Search<'a> {
+    writer: Writer<'a>,
+    known: FxHashMap<(Fraction, usize), Form>,
+}
+
+impl Search<'_> {
+    /// The best form that is found; `None` where something is too large.
+    fn best(&mut self, fraction: &Fraction, depth: usize) -> Option<Form> {
+        if fraction.is_zero() {
+            return Some(Form::new(Formula::integer(0)));
+        }
+        let key = (fraction.clone(), depth);
+        if let Some(known) = self.known.get(&key) {
+            return Some(known.clone());
+        }
+        let mut best = Factored::new(fraction, &self.writer)?.write(&mut self.writer);
+        let terms = fraction.numerator().len() + fraction.denominator().len();
+        if depth > 0 && terms <= MAX_SPLIT_TERMS && !self.writer.exhausted() {
+            for pair in split::splits(fraction).iter().take(MAX_SPLITS) {
+                if let Some(form) = self.sum_of(pair, depth - 1, false) {
+                    best = best.better(form);
+                }
+            }
+            if let Some(inverse) = fraction.recip() {
+                for pair in split::splits(&inverse).iter().take(MAX_SPLITS) {
+                    if let Some(form) = self.sum_of(pair, depth - 1, true) {
+                        best = best.better(form);
+                    }
+                }
+            }
+        }
+        self.known.insert(key, best.clone());
+        Some(best)
+    }
+
+    /// The sum of two fractions, or its reciprocal; with and without what both share before it.
+    fn sum_of(&mut self, pair: &split::Pair, depth: usize, inverse: bool) -> Option<Form> {
+        let (a, b) = pair;
+        let mut best = self.written(a, b, None, depth, inverse)?;
+        let above = gcd(a.numerator(), b.numerator());
+        let below = gcd(a.denominator(), b.denominator());
+        let shared = Fraction::new(&above, &below)?;
+        if !shared.is_one() {
+            let (a, b) = (a.checked_div(&shared)?, b.checked_div(&shared)?);
+            best = best.better(self.written(&a, &b, Some(&shared), depth, inverse)?);
+        }
+        Some(best)
+    }
+
+    fn written(
+        &mut self,
+        a: &Fraction,
+        b: &Fraction,
+        factor: Option<&Fraction>,
+        depth: usize,
+        inverse: bool,
+    ) -> Option<Form> {
+        let sum = order::sum([self.best(a, depth)?.formula, self.best(b, depth)?.formula]);
+        let factor = match factor {
+            None => Formula::integer(1),
+            Some(factor) => {
+                let factor = if inverse { factor.recip()? } else { factor.clone() };
+                Factored::new(&factor, &self.writer)?.write(&mut self.writer).formula
+            }
+        };
+        if !inverse {
+            return Some(Form::new(order::product([factor, sum])));
+        }
+        let negative = sum.is_negative();
+        let sum = cost::unsigned(&sum).clone();
+        let reciprocal = Formula::quotient(Formula::integer(1), sum.clone());
+        let mut form = Form::new(order::product([factor.clone(), reciprocal]));
+        if let Some(parallel) = inverse::inverse(&sum, self.writer.letters) {
+            form = form.better(Form::new(order::product([factor, parallel])));
+        }
+        Some(if negative { Form::new(form.formula.negative()) } else { form })
+    }
+}
+
+/// A polynomial in compact form, as other shapes use it for coefficients.
+pub(super) fn polynomial(polynomial: &Polynomial, letters: Lettering<'_>) -> Formula {
+    compact(&Fraction::from(polynomial.clone()), letters)
+}
