@@ -19,8 +19,11 @@ const BAR_BELOW: u32 = 5;
 const BAR_BELOW_ONE: u32 = 15;
 /// `s` in a parallel.
 const S_IN_PARALLEL: u32 = 25;
-/// A polynomial in `s` that begins with a quotient and does not end with a bare power of `s`.
+/// A sum over a bar that has bars itself, as a term of a sum: `(1 + a/b)/c + d`.
+const BAR_ABOVE: u32 = 10;
+/// A polynomial in `s` that begins with a quotient; less where it ends with a bare power of `s`.
 const BEGINS_WITH_QUOTIENT: u32 = 20;
+const MONIC: u32 = 12;
 
 /// What is known of a formula from below.
 #[derive(Clone, Copy, Default)]
@@ -70,8 +73,7 @@ fn measure(formula: &Formula) -> Measure {
         View::Sum(terms) => {
             let whole = all(terms);
             let penalty = terms.iter().map(term_penalty).sum();
-            let begins =
-                if whole.s && begins_with_quotient(terms) { BEGINS_WITH_QUOTIENT } else { 0 };
+            let begins = if whole.s { begins_with_quotient(terms) } else { 0 };
             whole.plus(penalty).plus(begins)
         }
         View::Quotient(above, below) => {
@@ -107,20 +109,31 @@ fn term_penalty(term: &Formula) -> u32 {
         (false, true) => MIXED_POWERS,
         _ => 0,
     };
-    let pole = below.is_some_and(|below| match below.view() {
-        View::Product(factors) => {
-            factors.iter().any(|factor| !is_power_of_s(factor) && contains_s(factor))
-        }
-        _ => !is_power_of_s(below) && contains_s(below),
-    });
-    powers + if pole { POLE_IN_TERM } else { 0 }
+    let pole = if below.is_some_and(has_pole) { POLE_IN_TERM } else { 0 };
+    let above = if below.is_some() && measure(above).bar { BAR_ABOVE } else { 0 };
+    powers + pole + above
 }
 
-/// True for `1/R + s·C`, false for `1/(R·C) + s`.
-fn begins_with_quotient(terms: &[Formula]) -> bool {
-    let quotient = |term: &Formula| matches!(unsigned(term).view(), View::Quotient(..));
-    let begins = terms.iter().any(|term| quotient(term) && !contains_s(term));
-    begins && !terms.iter().any(is_power_of_s)
+/// For `1/R + s·C`, `1/(s·C) + R` and the like; less for `1/(R·C) + s`.
+fn begins_with_quotient(terms: &[Formula]) -> u32 {
+    let quotient = |term: &Formula| match unsigned(term).view() {
+        View::Quotient(above, below) => !contains_s(above) && !has_pole(below),
+        _ => false,
+    };
+    match terms.iter().any(quotient) {
+        false => 0,
+        true if terms.iter().any(is_power_of_s) => MONIC,
+        true => BEGINS_WITH_QUOTIENT,
+    }
+}
+
+/// Whether `s` stands in a divisor other than as a mere factor.
+pub(super) fn has_pole(below: &Formula) -> bool {
+    let factors = match below.view() {
+        View::Product(factors) => factors,
+        _ => std::slice::from_ref(below),
+    };
+    factors.iter().any(|factor| !is_power_of_s(factor) && contains_s(factor))
 }
 
 /// `s` or a power of it.

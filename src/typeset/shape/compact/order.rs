@@ -1,7 +1,7 @@
 //! The order that readers expect: in sums numbers first, then by powers of `s`, single symbols before
 //! products; in products the number, `s`, the symbols, then the parentheses; names in reference order.
 
-use super::cost::unsigned;
+use super::cost::{has_pole, unsigned};
 use crate::typeset::{Formula, Letter, View};
 
 /// A sum in order, beginning with a term that is not negative where there is one.
@@ -61,6 +61,7 @@ fn flat(formula: &Formula) -> Vec<Formula> {
 
 #[derive(PartialEq, Eq, PartialOrd, Ord)]
 struct Key {
+    pole: bool,
     power: i64,
     class: u8,
     letters: Vec<Letter>,
@@ -79,7 +80,7 @@ fn key(term: &Formula) -> Key {
         View::Letter(_) | View::Power(..) => 1,
         _ => 2,
     };
-    Key { power, class, letters: letters(term) }
+    Key { pole: below.is_some_and(has_pole), power, class, letters: letters(term) }
 }
 
 fn factor_key(factor: &Formula) -> (u8, Vec<Letter>) {
@@ -104,7 +105,7 @@ fn power_of_s(formula: &Formula) -> i64 {
 }
 
 /// The first letters of a formula, in reading order.
-fn letters(formula: &Formula) -> Vec<Letter> {
+pub(super) fn letters(formula: &Formula) -> Vec<Letter> {
     const ENOUGH: usize = 12;
     let mut found = Vec::new();
     let mut pending = vec![formula];

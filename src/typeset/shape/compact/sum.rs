@@ -8,13 +8,15 @@
 //! Sums are remembered, and the work is counted: past the bound nothing is tried any more that
 //! needs a choice.
 
+use std::cmp::Ordering;
+
 use num_rational::BigRational;
 use rustc_hash::FxHashMap;
 
 use super::cost::{SYMBOL, cost};
 use super::kernel::divisions;
 use super::laurent::{Laurent, Ring, integer};
-use super::order;
+use super::order::{self, letters};
 use crate::typeset::Formula;
 use crate::typeset::shape::Lettering;
 
@@ -31,9 +33,14 @@ impl Form {
         Self { formula, cost }
     }
 
-    /// The cheaper one; the first of equals.
+    /// The cheaper one; of equals the one whose names come in reference order.
     pub(super) fn better(self, other: Self) -> Self {
-        if other.cost < self.cost { other } else { self }
+        let wins = match other.cost.cmp(&self.cost) {
+            Ordering::Less => true,
+            Ordering::Equal => letters(&other.formula) < letters(&self.formula),
+            Ordering::Greater => false,
+        };
+        if wins { other } else { self }
     }
 }
 
