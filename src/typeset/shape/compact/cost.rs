@@ -11,7 +11,7 @@ pub(super) const SYMBOL: u32 = 10;
 /// `s·(a + s·b)` inside a sum: the coefficients of the powers cannot be read off.
 const CROSSED_POWERS: u32 = 40;
 /// `a·(1 + s·b)` inside a sum.
-const MIXED_POWERS: u32 = 10;
+const MIXED_POWERS: u32 = 15;
 /// A term of a sum with `s` below a bar: poles and zeros of the whole are not seen.
 const POLE_IN_TERM: u32 = 20;
 /// `a/(1 + b/c)`, and the same under a bare 1.
@@ -21,8 +21,10 @@ const BAR_BELOW_ONE: u32 = 15;
 const S_IN_PARALLEL: u32 = 25;
 /// A sum over a bar that has bars itself, as a term of a sum: `(1 + a/b)/c + d`.
 const BAR_ABOVE: u32 = 10;
+/// `a/(s·b) + c` or `a/(1 + s·b) + c` above or below a bar.
+const POLE_BESIDE_BAR: u32 = 15;
 /// A polynomial in `s` that begins with a quotient; less where it ends with a bare power of `s`.
-const BEGINS_WITH_QUOTIENT: u32 = 20;
+const BEGINS_WITH_QUOTIENT: u32 = 30;
 const MONIC: u32 = 12;
 
 /// What is known of a formula from below.
@@ -83,7 +85,8 @@ fn measure(formula: &Formula) -> Measure {
                 (true, true) => BAR_BELOW_ONE,
                 (true, false) => BAR_BELOW,
             };
-            Measure { bar: true, ..a.and(b).plus(2 + compound) }
+            let poles = [above, below].into_iter().map(pole_beside_bar).sum::<u32>();
+            Measure { bar: true, ..a.and(b).plus(2 + compound + poles) }
         }
         View::Parallel(operands) => {
             let whole = all(operands);
@@ -110,21 +113,46 @@ fn term_penalty(term: &Formula) -> u32 {
         _ => 0,
     };
     let pole = if below.is_some_and(has_pole) { POLE_IN_TERM } else { 0 };
-    let above = if below.is_some() && measure(above).bar { BAR_ABOVE } else { 0 };
+    let above = if below.is_some() && has_long_bar(above) { BAR_ABOVE } else { 0 };
     powers + pole + above
 }
 
-/// For `1/R + s·C`, `1/(s·C) + R` and the like; less for `1/(R·C) + s`.
+/// Whether a sum stands over a bar somewhere.
+fn has_long_bar(formula: &Formula) -> bool {
+    match formula.view() {
+        View::Quotient(above, _) => matches!(above.view(), View::Sum(_)),
+        _ => formula.operands().iter().any(has_long_bar),
+    }
+}
+
+/// For `1/R + s·C` and the like, not for `1 + a/b + s·C`; less for `1/(R·C) + s`.
 fn begins_with_quotient(terms: &[Formula]) -> u32 {
-    let quotient = |term: &Formula| match unsigned(term).view() {
-        View::Quotient(above, below) => !contains_s(above) && !has_pole(below),
+    let mut constants = terms.iter().filter(|term| !contains_s(term)).peekable();
+    let quotient = |term: &Formula| matches!(unsigned(term).view(), View::Quotient(..));
+    if constants.peek().is_none() || !constants.all(quotient) {
+        0
+    } else if terms.iter().any(is_power_of_s) {
+        MONIC
+    } else {
+        BEGINS_WITH_QUOTIENT
+    }
+}
+
+/// For a factor that is a sum with `s` in the divisor of a term.
+fn pole_beside_bar(side: &Formula) -> u32 {
+    let pole = |term: &Formula| match unsigned(term).view() {
+        View::Quotient(_, below) => contains_s(below),
         _ => false,
     };
-    match terms.iter().any(quotient) {
-        false => 0,
-        true if terms.iter().any(is_power_of_s) => MONIC,
-        true => BEGINS_WITH_QUOTIENT,
-    }
+    let sum = |factor: &Formula| match factor.view() {
+        View::Sum(terms) => terms.iter().any(pole),
+        _ => false,
+    };
+    let factors = match side.view() {
+        View::Product(factors) => factors,
+        _ => std::slice::from_ref(side),
+    };
+    if factors.iter().any(sum) { POLE_BESIDE_BAR } else { 0 }
 }
 
 /// Whether `s` stands in a divisor other than as a mere factor.

@@ -1,6 +1,9 @@
 //! The order that readers expect: in sums numbers first, then by powers of `s`, single symbols before
 //! products; in products the number, `s`, the symbols, then the parentheses; names in reference order.
 
+use num_bigint::BigInt;
+use num_rational::BigRational;
+
 use super::cost::{has_pole, unsigned};
 use crate::typeset::{Formula, Letter, View};
 
@@ -37,6 +40,13 @@ pub(super) fn product(factors: impl IntoIterator<Item = Formula>) -> Formula {
                     View::Quotient(a, b) => {
                         above.extend(flat(a));
                         below.extend(flat(b));
+                    }
+                    View::Number(value) => {
+                        let integer = |part: &BigInt| {
+                            Formula::number(BigRational::from_integer(part.clone()))
+                        };
+                        above.push(integer(value.numer()));
+                        below.push(integer(value.denom()));
                     }
                     _ => above.push(factor.clone()),
                 }

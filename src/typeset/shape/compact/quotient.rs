@@ -75,7 +75,7 @@ impl Factored {
             lowest.is_some_and(|(_, part)| balance(&part) == 0)
         };
         let found =
-            self.factors.iter_mut().find(|(factor, power)| *power == 1 && difference(factor));
+            self.factors.iter_mut().find(|(factor, power)| *power % 2 != 0 && difference(factor));
         if let Some((factor, _)) = found {
             factor.terms.iter_mut().for_each(|term| term.1 = -term.1);
             self.number = -&self.number;
