@@ -2,7 +2,7 @@
 //!
 //! A symbol costs [`SYMBOL`], everything else less or little more, so that the shortest form wins
 //! unless it hides what a designer looks for: the powers of `s` in order, a polynomial that begins
-//! with 1 or a plain product, one bar above another.
+//! with 1 or a plain product, one bar above another, poles inside sums. One pass from below.
 
 use crate::typeset::{Formula, Letter, View};
 
@@ -12,17 +12,21 @@ pub(super) const SYMBOL: u32 = 10;
 const CROSSED_POWERS: u32 = 40;
 /// `a·(1 + s·b)` inside a sum.
 const MIXED_POWERS: u32 = 15;
-/// A term of a sum with `s` below a bar: poles and zeros of the whole are not seen.
+/// A term of a sum with a sum in `s` below a bar: poles and zeros of the whole are not seen.
 const POLE_IN_TERM: u32 = 20;
+/// The same with a sum in `s` above the bar too.
+const RATIO_IN_TERM: u32 = 40;
+/// Such terms, or `a/(s·b)`, in a sum that is itself above or below a bar.
+const POLE_ABOVE: u32 = 15;
+const POLE_BELOW: u32 = 5;
+const S_DIVISOR: u32 = 15;
 /// `a/(1 + b/c)`, and the same under a bare 1.
 const BAR_BELOW: u32 = 5;
 const BAR_BELOW_ONE: u32 = 15;
+/// A sum over a bar that has long bars itself, as a term of a sum: `(1 + (a + b)/c)/d + e`.
+const BAR_ABOVE: u32 = 10;
 /// `s` in a parallel.
 const S_IN_PARALLEL: u32 = 25;
-/// A sum over a bar that has bars itself, as a term of a sum: `(1 + a/b)/c + d`.
-const BAR_ABOVE: u32 = 10;
-/// `a/(s·b) + c` or `a/(1 + s·b) + c` above or below a bar.
-const POLE_BESIDE_BAR: u32 = 15;
 /// A polynomial in `s` that begins with a quotient; less where it ends with a bare power of `s`.
 const BEGINS_WITH_QUOTIENT: u32 = 30;
 const MONIC: u32 = 12;
@@ -33,16 +37,32 @@ struct Measure {
     cost: u32,
     /// `s` occurs.
     s: bool,
-    /// A bar occurs.
+    /// A bar occurs; a sum stands over a bar.
     bar: bool,
+    long_bar: bool,
+    /// Among the factors: a power of `s`; something else in `s`.
+    power_of_s: bool,
+    sum_in_s: bool,
+    /// It is a quotient.
+    quotient: bool,
+    /// Quotients: a sum in `s` below; also above; a mere power of `s` below.
+    pole: bool,
+    ratio: bool,
+    s_divisor: bool,
+    /// Factors that are sums: a term has a pole, or a mere power of `s` below.
+    pole_term: bool,
+    s_divisor_term: bool,
 }
 
 impl Measure {
+    /// What holds of a whole when it holds of a part.
     fn and(self, other: Self) -> Self {
         Self {
             cost: self.cost.saturating_add(other.cost),
             s: self.s | other.s,
             bar: self.bar | other.bar,
+            long_bar: self.long_bar | other.long_bar,
+            ..Self::default()
         }
     }
 
@@ -56,112 +76,105 @@ pub(super) fn cost(formula: &Formula) -> u32 {
     measure(formula).cost
 }
 
-/// Whether `s` occurs.
-pub(super) fn contains_s(formula: &Formula) -> bool {
-    matches!(formula.view(), View::Letter(Letter::S)) || formula.operands().iter().any(contains_s)
-}
-
 fn measure(formula: &Formula) -> Measure {
-    let all =
-        |operands: &[Formula]| operands.iter().map(measure).fold(Measure::default(), Measure::and);
+    let leaf = Measure::default();
     match formula.view() {
-        View::Number(_) => Measure::default().plus(u32::from(!formula.is_one())),
-        View::Letter(Letter::S) => Measure { s: true, ..Measure::default() },
-        View::Letter(Letter::Pi | Letter::Frequency) => Measure::default(),
-        View::Letter(Letter::Symbol(_) | Letter::Definition(_)) => Measure::default().plus(SYMBOL),
+        View::Number(_) => leaf.plus(u32::from(!formula.is_one())),
+        View::Letter(Letter::S) => Measure { s: true, power_of_s: true, ..leaf },
+        View::Letter(Letter::Pi | Letter::Frequency) => leaf,
+        View::Letter(Letter::Symbol(_) | Letter::Definition(_)) => leaf.plus(SYMBOL),
         View::Power(base, _) => measure(base).plus(1),
         View::Negative(operand) => measure(operand).plus(1),
-        View::Product(factors) => all(factors),
-        View::Sum(terms) => {
-            let whole = all(terms);
-            let penalty = terms.iter().map(term_penalty).sum();
-            let begins = if whole.s { begins_with_quotient(terms) } else { 0 };
-            whole.plus(penalty).plus(begins)
-        }
-        View::Quotient(above, below) => {
-            let (a, b) = (measure(above), measure(below));
-            let compound = match (b.bar, matches!(above.view(), View::Number(_))) {
-                (false, _) => 0,
-                (true, true) => BAR_BELOW_ONE,
-                (true, false) => BAR_BELOW,
-            };
-            let poles = [above, below].into_iter().map(pole_beside_bar).sum::<u32>();
-            Measure { bar: true, ..a.and(b).plus(2 + compound + poles) }
-        }
+        View::Product(factors) => factors.iter().map(measure).fold(leaf, |whole, factor| Measure {
+            power_of_s: whole.power_of_s | factor.power_of_s,
+            sum_in_s: whole.sum_in_s | factor.sum_in_s,
+            pole_term: whole.pole_term | factor.pole_term,
+            s_divisor_term: whole.s_divisor_term | factor.s_divisor_term,
+            ..whole.and(factor)
+        }),
+        View::Sum(terms) => sum(terms),
+        View::Quotient(above, below) => quotient(above, below),
         View::Parallel(operands) => {
-            let whole = all(operands);
-            Measure { bar: false, ..whole.plus(if whole.s { S_IN_PARALLEL } else { 1 }) }
+            let whole = operands.iter().map(measure).fold(leaf, Measure::and);
+            let cost = if whole.s { S_IN_PARALLEL } else { 1 };
+            Measure { bar: false, sum_in_s: whole.s, ..whole.plus(cost) }
         }
     }
 }
 
-fn term_penalty(term: &Formula) -> u32 {
-    let term = unsigned(term);
-    let (above, below) = match term.view() {
-        View::Quotient(above, below) => (above, Some(below)),
-        _ => (term, None),
+fn sum(terms: &[Formula]) -> Measure {
+    let mut whole = Measure::default();
+    // Constant terms that are quotients, and those that are not; a bare power of s.
+    let (mut quotients, mut plain, mut monic) = (false, false, false);
+    for term in terms {
+        let measured = measure(term);
+        let powers = match (measured.power_of_s, measured.sum_in_s) {
+            (true, true) => CROSSED_POWERS,
+            (false, true) => MIXED_POWERS,
+            _ => 0,
+        };
+        let pole = match (measured.pole, measured.ratio) {
+            (_, true) => RATIO_IN_TERM,
+            (true, _) => POLE_IN_TERM,
+            _ => 0,
+        };
+        let above =
+            if measured.quotient && measured.long_bar && nested(term) { BAR_ABOVE } else { 0 };
+        quotients |= !measured.s && measured.quotient;
+        plain |= !measured.s && !measured.quotient;
+        monic |= is_power_of_s(term);
+        let (pole_term, s_divisor_term) =
+            (whole.pole_term | measured.pole, whole.s_divisor_term | measured.s_divisor);
+        whole = whole.and(measured.plus(powers + pole + above));
+        (whole.pole_term, whole.s_divisor_term) = (pole_term, s_divisor_term);
+    }
+    let begins = match (whole.s && quotients && !plain, monic) {
+        (false, _) => 0,
+        (true, true) => MONIC,
+        (true, false) => BEGINS_WITH_QUOTIENT,
     };
-    let factors = match above.view() {
-        View::Product(factors) => factors,
-        _ => std::slice::from_ref(above),
-    };
-    let outside = factors.iter().any(is_power_of_s);
-    let inside = factors.iter().any(|factor| !is_power_of_s(factor) && contains_s(factor));
-    let powers = match (outside, inside) {
-        (true, true) => CROSSED_POWERS,
-        (false, true) => MIXED_POWERS,
-        _ => 0,
-    };
-    let pole = if below.is_some_and(has_pole) { POLE_IN_TERM } else { 0 };
-    let above = if below.is_some() && has_long_bar(above) { BAR_ABOVE } else { 0 };
-    powers + pole + above
+    Measure { sum_in_s: whole.s, ..whole.plus(begins) }
 }
 
-/// Whether a sum stands over a bar somewhere.
-fn has_long_bar(formula: &Formula) -> bool {
-    match formula.view() {
-        View::Quotient(above, _) => matches!(above.view(), View::Sum(_)),
-        _ => formula.operands().iter().any(has_long_bar),
+fn quotient(above: &Formula, below: &Formula) -> Measure {
+    let (a, b) = (measure(above), measure(below));
+    let mut cost = 2;
+    cost += match (b.bar, matches!(above.view(), View::Number(_))) {
+        (false, _) => 0,
+        (true, true) => BAR_BELOW_ONE,
+        (true, false) => BAR_BELOW,
+    };
+    cost += if a.pole_term { POLE_ABOVE } else { 0 } + if b.pole_term { POLE_BELOW } else { 0 };
+    cost += if a.s_divisor_term | b.s_divisor_term { S_DIVISOR } else { 0 };
+    Measure {
+        bar: true,
+        long_bar: a.long_bar | b.long_bar | matches!(above.view(), View::Sum(_)),
+        quotient: true,
+        power_of_s: a.power_of_s,
+        sum_in_s: a.sum_in_s,
+        pole: b.sum_in_s,
+        ratio: b.sum_in_s && a.sum_in_s,
+        s_divisor: b.power_of_s && !b.sum_in_s,
+        ..a.and(b).plus(cost)
     }
 }
 
-/// For `1/R + s·C` and the like, not for `1 + a/b + s·C`; less for `1/(R·C) + s`.
-fn begins_with_quotient(terms: &[Formula]) -> u32 {
-    let mut constants = terms.iter().filter(|term| !contains_s(term)).peekable();
-    let quotient = |term: &Formula| matches!(unsigned(term).view(), View::Quotient(..));
-    if constants.peek().is_none() || !constants.all(quotient) {
-        0
-    } else if terms.iter().any(is_power_of_s) {
-        MONIC
-    } else {
-        BEGINS_WITH_QUOTIENT
+/// Whether the numerator of a quotient has a sum over a bar.
+fn nested(term: &Formula) -> bool {
+    match unsigned(term).view() {
+        View::Quotient(above, _) => measure(above).long_bar,
+        _ => false,
     }
 }
 
-/// For a factor that is a sum with `s` in the divisor of a term.
-fn pole_beside_bar(side: &Formula) -> u32 {
-    let pole = |term: &Formula| match unsigned(term).view() {
-        View::Quotient(_, below) => contains_s(below),
-        _ => false,
-    };
-    let sum = |factor: &Formula| match factor.view() {
-        View::Sum(terms) => terms.iter().any(pole),
-        _ => false,
-    };
-    let factors = match side.view() {
-        View::Product(factors) => factors,
-        _ => std::slice::from_ref(side),
-    };
-    if factors.iter().any(sum) { POLE_BESIDE_BAR } else { 0 }
+/// Whether `s` occurs.
+pub(super) fn contains_s(formula: &Formula) -> bool {
+    measure(formula).s
 }
 
-/// Whether `s` stands in a divisor other than as a mere factor.
+/// Whether a sum in `s` stands among the factors of a divisor.
 pub(super) fn has_pole(below: &Formula) -> bool {
-    let factors = match below.view() {
-        View::Product(factors) => factors,
-        _ => std::slice::from_ref(below),
-    };
-    factors.iter().any(|factor| !is_power_of_s(factor) && contains_s(factor))
+    measure(below).sum_in_s
 }
 
 /// `s` or a power of it.

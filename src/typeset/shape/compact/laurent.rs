@@ -137,6 +137,7 @@ impl Laurent {
             .sum()
     }
 
+    #[cfg(test)]
     pub(super) fn contains_s(&self) -> bool {
         self.terms.iter().any(|term| term.0[0] != 0)
     }
