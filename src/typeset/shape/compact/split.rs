@@ -5,6 +5,8 @@
 //! x = ∞ or x = 0. Both give polynomial part and rest, `s·L1 + RL/(1 + s·RL·C1)`, and partial
 //! fractions, `R2/(R1 + R2) − R4/(R3 + R4)`.
 
+use num_traits::Signed;
+
 use crate::algebra::{Fraction, Polynomial, Var};
 
 /// Two fractions whose sum is the whole.
@@ -22,11 +24,14 @@ pub(super) fn literals(fraction: &Fraction) -> usize {
 pub(super) fn splits(fraction: &Fraction) -> Vec<Pair> {
     let (n, d) = (fraction.numerator(), fraction.denominator());
     let before = literals(fraction);
+    // Where all is positive, a difference would only hide that.
+    let positive = !has_negative(fraction);
     let mut found: Vec<(usize, Pair)> = Vec::new();
     let mut take = |first: Option<Fraction>| {
         let Some(first) = first else { return };
         let rest = fraction - &first;
-        if first.is_zero() || rest.is_zero() {
+        let difference = || has_negative(&first) || has_negative(&rest);
+        if first.is_zero() || rest.is_zero() || (positive && difference()) {
             return;
         }
         let after = literals(&first) + literals(&rest);
@@ -55,6 +60,13 @@ pub(super) fn splits(fraction: &Fraction) -> Vec<Pair> {
     }
     found.sort_by_key(|(after, _)| *after);
     found.into_iter().map(|(_, pair)| pair).collect()
+}
+
+/// Whether a coefficient is negative.
+fn has_negative(fraction: &Fraction) -> bool {
+    [fraction.numerator(), fraction.denominator()]
+        .iter()
+        .any(|part| part.terms().any(|(_, coefficient)| coefficient.is_negative()))
 }
 
 /// Lowest and highest power with their coefficients.
