@@ -20,6 +20,8 @@ use crate::typeset::Formula;
 const MAX_ROUNDS: usize = 8;
 /// Sums longer than this stay as they are.
 const MAX_TERMS: usize = 40;
+/// From this many terms on only the most useful starts are made.
+const MANY_TERMS: usize = 16;
 
 /// number · monomial · Π factor^power.
 pub(super) struct Factored {
@@ -155,8 +157,11 @@ impl Factored {
                         if value == kept {
                             continue;
                         }
+                        let literals = self.literals(&divisors, index);
                         divisors[index][place] = value;
-                        if self.hopeless(&divisors, best.cost) {
+                        if self.literals(&divisors, index) > literals
+                            || self.hopeless(&divisors, best.cost)
+                        {
                             continue;
                         }
                         let form = self.with(&divisors, writer);
@@ -172,6 +177,13 @@ impl Factored {
             }
         }
         best
+    }
+
+    /// Symbols of the monomial, and of a factor when it is written out.
+    fn literals(&self, divisors: &[Exponents], index: usize) -> usize {
+        let monomial = self.monomial_with(divisors);
+        let monomial = monomial.iter().skip(1).filter(|power| **power != 0).count();
+        monomial + self.factors[index].0.over(&divisors[index]).literals()
     }
 
     /// Whether even the least number of symbols would be too many.

@@ -48,7 +48,7 @@ impl Form {
 const MAX_CHOICE: usize = 120;
 
 /// Term comparisons spent on choices, of all sums of one problem together.
-const MAX_WORK: u64 = 3_000_000;
+const MAX_WORK: u64 = 300_000;
 
 /// Writes sums.
 #[derive(Debug)]
