@@ -92,6 +92,8 @@ pub(crate) enum ShapeName {
     Powers,
     /// Gain, power of s, and polynomials that begin with 1
     Bode,
+    /// Irreducible factors
+    Product,
     /// Named sub-expressions
     Nested,
 }

@@ -7,12 +7,14 @@ mod bode;
 mod compact;
 mod nested;
 mod powers;
+mod product;
 
 pub use bode::bode;
 pub(crate) use bode::ratio;
 pub use compact::compact;
 pub use nested::{Layered, nested};
 pub use powers::powers;
+pub use product::product;
 
 use num_bigint::BigInt;
 use num_rational::BigRational;
@@ -88,10 +90,19 @@ impl Lettering<'_> {
     }
 }
 
-/// Numerator and denominator with the sign that reads best: the denominator begins with a plus.
+/// Numerator and denominator with the sign that reads best: below the bar the lowest power of `s`
+/// is not negative; where it has both signs, the numerator decides.
 pub(crate) fn signed(fraction: &Fraction) -> (Polynomial, Polynomial) {
     let (n, d) = (fraction.numerator().clone(), fraction.denominator().clone());
-    if d.coefficient(Var::S, d.trailing_degree(Var::S)).is_negative() { (-n, -d) } else { (n, d) }
+    let balance = |polynomial: &Polynomial| -> i64 {
+        let lowest = polynomial.coefficient(Var::S, polynomial.trailing_degree(Var::S));
+        lowest.terms().map(|(_, coefficient)| if coefficient.is_negative() { -1 } else { 1 }).sum()
+    };
+    let sign = match balance(&d) {
+        0 => balance(&n),
+        balance => balance,
+    };
+    if sign < 0 { (-n, -d) } else { (n, d) }
 }
 
 /// s to a power, times something.
@@ -108,6 +119,8 @@ pub enum Shape {
     Powers,
     /// Gain, power of `s`, and polynomials that begin with 1.
     Bode,
+    /// Irreducible factors.
+    Product,
     /// Named sub-expressions.
     Nested,
 }
@@ -124,9 +137,13 @@ pub fn write(
     match (form, shape) {
         (ClosedForm::Expanded(fraction), Shape::Powers) => plain(powers(fraction, letters)),
         (ClosedForm::Expanded(fraction), Shape::Bode) => plain(bode(fraction, letters)),
+        (ClosedForm::Expanded(fraction), Shape::Product) => plain(product(fraction, letters)),
         (ClosedForm::Expanded(fraction), Shape::Compact) => plain(compact(fraction, letters)),
         (ClosedForm::Expanded(_), Shape::Nested) => Some(nested(&elimination.nested(), letters)),
         (ClosedForm::Nested(sums), Shape::Nested | Shape::Compact) => Some(nested(sums, letters)),
-        (ClosedForm::Nested(_), Shape::Powers | Shape::Bode) => None,
+        (ClosedForm::Nested(_), Shape::Powers | Shape::Bode | Shape::Product) => None,
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -23,7 +23,8 @@ use rustc_hash::FxHashMap;
 use super::{Lettering, bode, powers};
 use crate::algebra::{Fraction, Polynomial, gcd};
 use crate::typeset::Formula;
-use laurent::Ring;
+use laurent::{Laurent, Ring};
+pub(super) use order::product;
 use quotient::Factored;
 use sum::{Form, Writer};
 
@@ -113,20 +114,52 @@ impl Search<'_> {
             }
         };
         if !inverse {
-            return Some(Form::new(order::product([factor, sum])));
+            return Some(Form::new(product([factor, sum])));
         }
         let negative = sum.is_negative();
         let sum = cost::unsigned(&sum).clone();
         let reciprocal = Formula::quotient(Formula::integer(1), sum.clone());
-        let mut form = Form::new(order::product([factor.clone(), reciprocal]));
+        let mut form = Form::new(product([factor.clone(), reciprocal]));
         if let Some(parallel) = inverse::inverse(&sum, self.writer.letters) {
-            form = form.better(Form::new(order::product([factor, parallel])));
+            form = form.better(Form::new(product([factor, parallel])));
         }
         Some(if negative { Form::new(form.formula.negative()) } else { form })
     }
 }
 
-/// A polynomial in compact form, as other shapes use it for coefficients.
-pub(super) fn polynomial(polynomial: &Polynomial, letters: Lettering<'_>) -> Formula {
-    compact(&Fraction::from(polynomial.clone()), letters)
+/// Writes coefficients for other shapes, all of one fraction with one memory.
+pub(super) struct Coefficients<'a> {
+    search: Search<'a>,
+}
+
+impl<'a> Coefficients<'a> {
+    /// For coefficients of these polynomials.
+    pub(super) fn new(polynomials: &[&Polynomial], letters: Lettering<'a>) -> Self {
+        let writer = Writer::new(Ring::new(polynomials), letters);
+        Self { search: Search { writer, known: FxHashMap::default() } }
+    }
+
+    /// A polynomial, factored.
+    pub(super) fn polynomial(&mut self, polynomial: &Polynomial) -> Formula {
+        let writer = &mut self.search.writer;
+        match Laurent::new(polynomial, &writer.ring) {
+            Some(sum) if !polynomial.is_zero() => writer.sum(&sum).formula,
+            _ => writer.letters.polynomial(polynomial),
+        }
+    }
+
+    /// The irreducible factors of a fraction, each by powers of `s`.
+    pub(super) fn factored(&mut self, fraction: &Fraction) -> Option<Formula> {
+        let factored = Factored::new(fraction, &self.search.writer)?;
+        Some(factored.plain(&mut self.search.writer))
+    }
+
+    /// a/b in compact form.
+    pub(super) fn ratio(&mut self, a: &Polynomial, b: &Polynomial) -> Formula {
+        let form = Fraction::new(a, b).and_then(|ratio| self.search.best(&ratio, 2));
+        match form {
+            Some(form) => form.formula,
+            None => Formula::quotient(self.polynomial(a), self.polynomial(b)),
+        }
+    }
 }

@@ -28,8 +28,8 @@ pub(super) fn sum(terms: impl IntoIterator<Item = Formula>) -> Formula {
     if negative { ordered.negative() } else { ordered }
 }
 
-/// A product in order.
-pub(super) fn product(factors: impl IntoIterator<Item = Formula>) -> Formula {
+/// A product in order, over one bar.
+pub(in super::super) fn product(factors: impl IntoIterator<Item = Formula>) -> Formula {
     let whole = Formula::product(factors);
     let negative = whole.is_negative();
     let ordered = match unsigned(&whole).view() {

@@ -97,6 +97,17 @@ impl Factored {
         best
     }
 
+    /// The factors by powers of `s`, none of them divided by anything.
+    pub(in super::super) fn plain(&self, writer: &mut Writer<'_>) -> Formula {
+        let mut sides: [Vec<Formula>; 2] = Default::default();
+        for (factor, power) in &self.factors {
+            let formula = writer.by_powers(&factor.by_power());
+            sides[usize::from(*power < 0)].push(Formula::power(formula, power.abs()));
+        }
+        let [above, below] = sides;
+        quotient(writer.monomial(&self.monomial, &self.number), above, below)
+    }
+
     /// Divisors to begin with.
     fn starts(&self, writer: &Writer<'_>) -> Vec<Vec<Exponents>> {
         let lowest = |factor: &Laurent| {
@@ -130,9 +141,11 @@ impl Factored {
                 .collect()
         };
         let mut starts = vec![each(&|_| writer.ring.one())];
-        for start in
-            [each(&lowest), each(&highest), used_up, each(&|factor: &Laurent| factor.degrees())]
-        {
+        let mut others = vec![each(&lowest), used_up];
+        if self.factors.iter().map(|(factor, _)| factor.len()).sum::<usize>() <= MANY_TERMS {
+            others.extend([each(&highest), each(&|factor: &Laurent| factor.degrees())]);
+        }
+        for start in others {
             if !starts.contains(&start) {
                 starts.push(start);
             }
@@ -245,7 +258,7 @@ fn quotient(monomial: Formula, above: Vec<Formula>, below: Vec<Formula>) -> Form
 const MAX_FACTORED: usize = 4000;
 
 /// Content and factors; a long polynomial is its own factor, apart from what is seen at once.
-pub(crate) fn factors(polynomial: &Polynomial) -> (BigInt, Vec<(Polynomial, u32)>) {
+pub(in super::super) fn factors(polynomial: &Polynomial) -> (BigInt, Vec<(Polynomial, u32)>) {
     if polynomial.len() <= MAX_FACTORED {
         let found = factor(polynomial);
         return (found.content, found.factors);

@@ -150,7 +150,7 @@ impl<'a> Writer<'a> {
     }
 
     /// c₀ + s·c₁ + s²·c₂ + …
-    fn by_powers(&mut self, parts: &[(i8, Laurent)]) -> Formula {
+    pub(super) fn by_powers(&mut self, parts: &[(i8, Laurent)]) -> Formula {
         let terms: Vec<Formula> = parts
             .iter()
             .map(|(power, part)| {
