@@ -94,6 +94,8 @@ pub(crate) enum ShapeName {
     Bode,
     /// Irreducible factors
     Product,
+    /// Coefficients as sums of reactive elements times what they see
+    ByElement,
     /// Named sub-expressions
     Nested,
 }

@@ -25,6 +25,7 @@ pub(crate) fn run(arguments: &Derive, messages: &Messages) -> Result<u8, Failure
         Some(ShapeName::Powers) => Shape::Powers,
         Some(ShapeName::Bode) => Shape::Bode,
         Some(ShapeName::Product) => Shape::Product,
+        Some(ShapeName::ByElement) => Shape::ByElement,
         Some(ShapeName::Nested) => Shape::Nested,
     };
     let options = Options { max_terms: arguments.max_terms, ..Options::default() };

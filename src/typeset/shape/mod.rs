@@ -4,6 +4,7 @@
 //! of them have the same value. What they share is here: a polynomial written out, and the signs.
 
 mod bode;
+mod by_element;
 mod compact;
 mod nested;
 mod powers;
@@ -11,6 +12,7 @@ mod product;
 
 pub use bode::bode;
 pub(crate) use bode::ratio;
+pub use by_element::by_element;
 pub use compact::compact;
 pub use nested::{Layered, nested};
 pub use powers::powers;
@@ -121,6 +123,8 @@ pub enum Shape {
     Bode,
     /// Irreducible factors.
     Product,
+    /// Coefficients as sums of reactive elements times what they see.
+    ByElement,
     /// Named sub-expressions.
     Nested,
 }
@@ -138,10 +142,11 @@ pub fn write(
         (ClosedForm::Expanded(fraction), Shape::Powers) => plain(powers(fraction, letters)),
         (ClosedForm::Expanded(fraction), Shape::Bode) => plain(bode(fraction, letters)),
         (ClosedForm::Expanded(fraction), Shape::Product) => plain(product(fraction, letters)),
+        (ClosedForm::Expanded(fraction), Shape::ByElement) => plain(by_element(fraction, letters)),
         (ClosedForm::Expanded(fraction), Shape::Compact) => plain(compact(fraction, letters)),
         (ClosedForm::Expanded(_), Shape::Nested) => Some(nested(&elimination.nested(), letters)),
         (ClosedForm::Nested(sums), Shape::Nested | Shape::Compact) => Some(nested(sums, letters)),
-        (ClosedForm::Nested(_), Shape::Powers | Shape::Bode | Shape::Product) => None,
+        (ClosedForm::Nested(_), _) => None,
     }
 }
 

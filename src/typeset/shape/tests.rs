@@ -5,6 +5,7 @@ use num_rational::BigRational;
 
 use super::*;
 use crate::algebra::modular::Random;
+use crate::circuit::SymbolRole;
 use crate::typeset::{Dialect, SymbolTable, plain};
 
 /// A value for each letter that is no root of what occurs here.
@@ -55,7 +56,7 @@ fn homogeneous(random: &mut Random, variables: u32, degree: usize, terms: u64) -
 }
 
 fn fraction(random: &mut Random, case: u64) -> Option<Fraction> {
-    let mut part = |random: &mut Random| match case % 4 {
+    let part = |random: &mut Random| match case % 4 {
         0 => polynomial(random, 4, 6, true),
         1 => &polynomial(random, 3, 3, true) * &polynomial(random, 4, 3, true),
         2 => homogeneous(random, 6, 3, 8),
@@ -73,12 +74,30 @@ fn fraction(random: &mut Random, case: u64) -> Option<Fraction> {
     }
 }
 
+/// Every second symbol is a capacitance.
+fn some_capacitors() -> Vec<Symbol> {
+    let symbol = |index: u32| Symbol {
+        name: format!("x{index}"),
+        role: SymbolRole::Parameter,
+        unit: if index % 2 == 0 { Unit::OHM } else { Unit::FARAD },
+        nominal: None,
+        tolerance: None,
+    };
+    (0..6).map(symbol).collect()
+}
+
 #[test]
 fn every_shape_has_the_value_of_the_fraction() {
     let mut random = Random::new(20);
-    let letters = Lettering::default();
-    let shapes: [(&str, fn(&Fraction, Lettering<'_>) -> Formula); 4] =
-        [("compact", compact), ("powers", powers), ("bode", bode), ("product", product)];
+    let symbols = some_capacitors();
+    let letters = Lettering { pi: None, symbols: &symbols };
+    let shapes: [(&str, fn(&Fraction, Lettering<'_>) -> Formula); 5] = [
+        ("compact", compact),
+        ("powers", powers),
+        ("bode", bode),
+        ("product", product),
+        ("by-element", by_element),
+    ];
     for case in 0..64 {
         let Some(fraction) = fraction(&mut random, case) else { continue };
         let expected = fraction.evaluate(|variable| {

@@ -13,7 +13,9 @@ const CROSSED_POWERS: u32 = 40;
 /// `a·(1 + s·b)` inside a sum.
 const MIXED_POWERS: u32 = 15;
 /// A term of a sum with a sum in `s` below a bar: poles and zeros of the whole are not seen.
-const POLE_IN_TERM: u32 = 20;
+const POLE_IN_TERM: u32 = 15;
+/// A bare number beside such a term: `2/(1 + s·a) − 1`.
+const NUMBER_BESIDE_POLE: u32 = 15;
 /// The same with a sum in `s` above the bar too.
 const RATIO_IN_TERM: u32 = 40;
 /// Such terms, or `a/(s·b)`, in a sum that is itself above or below a bar.
@@ -105,7 +107,7 @@ fn measure(formula: &Formula) -> Measure {
 fn sum(terms: &[Formula]) -> Measure {
     let mut whole = Measure::default();
     // Constant terms that are quotients, and those that are not; a bare power of s.
-    let (mut quotients, mut plain, mut monic) = (false, false, false);
+    let (mut quotients, mut plain, mut monic, mut number) = (false, false, false, false);
     for term in terms {
         let measured = measure(term);
         let powers = match (measured.power_of_s, measured.sum_in_s) {
@@ -123,6 +125,7 @@ fn sum(terms: &[Formula]) -> Measure {
         quotients |= !measured.s && measured.quotient;
         plain |= !measured.s && !measured.quotient;
         monic |= is_power_of_s(term);
+        number |= matches!(unsigned(term).view(), View::Number(_));
         let (pole_term, s_divisor_term) =
             (whole.pole_term | measured.pole, whole.s_divisor_term | measured.s_divisor);
         whole = whole.and(measured.plus(powers + pole + above));
@@ -133,7 +136,9 @@ fn sum(terms: &[Formula]) -> Measure {
         (true, true) => MONIC,
         (true, false) => BEGINS_WITH_QUOTIENT,
     };
-    Measure { sum_in_s: whole.s, ..whole.plus(begins) }
+    let beside = if number && whole.pole_term { NUMBER_BESIDE_POLE } else { 0 };
+    let (pole_term, s_divisor_term) = (whole.pole_term, whole.s_divisor_term);
+    Measure { sum_in_s: whole.s, pole_term, s_divisor_term, ..whole.plus(begins + beside) }
 }
 
 fn quotient(above: &Formula, below: &Formula) -> Measure {

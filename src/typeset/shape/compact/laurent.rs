@@ -137,11 +137,6 @@ impl Laurent {
             .sum()
     }
 
-    #[cfg(test)]
-    pub(super) fn contains_s(&self) -> bool {
-        self.terms.iter().any(|term| term.0[0] != 0)
-    }
-
     /// The parts by power of `s`, lowest first, without the power.
     pub(super) fn by_power(&self) -> Vec<(i8, Self)> {
         let mut parts: Vec<(i8, Self)> = Vec::new();

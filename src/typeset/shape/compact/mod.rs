@@ -21,7 +21,7 @@ mod verify;
 use rustc_hash::FxHashMap;
 
 use super::{Lettering, bode, powers};
-use crate::algebra::{Fraction, Polynomial, gcd};
+use crate::algebra::{Fraction, Polynomial, Var, gcd};
 use crate::typeset::Formula;
 use laurent::{Laurent, Ring};
 pub(super) use order::product;
@@ -90,7 +90,9 @@ impl Search<'_> {
         let above = gcd(a.numerator(), b.numerator());
         let below = gcd(a.denominator(), b.denominator());
         let shared = Fraction::new(&above, &below)?;
-        if !shared.is_one() {
+        // A mere s stays with the terms: s·L is an impedance.
+        let symbols = |part: &Polynomial| part.variables().any(|variable| variable != Var::S);
+        if symbols(shared.numerator()) || symbols(shared.denominator()) {
             let (a, b) = (a.checked_div(&shared)?, b.checked_div(&shared)?);
             best = best.better(self.written(&a, &b, Some(&shared), depth, inverse)?);
         }

@@ -24,14 +24,14 @@ pub(super) fn literals(fraction: &Fraction) -> usize {
 pub(super) fn splits(fraction: &Fraction) -> Vec<Pair> {
     let (n, d) = (fraction.numerator(), fraction.denominator());
     let before = literals(fraction);
-    // Where all is positive, a difference would only hide that.
-    let positive = !has_negative(fraction);
+    // Where all has one sign, a difference would only hide that.
+    let sign = sign(fraction);
     let mut found: Vec<(usize, Pair)> = Vec::new();
     let mut take = |first: Option<Fraction>| {
         let Some(first) = first else { return };
         let rest = fraction - &first;
-        let difference = || has_negative(&first) || has_negative(&rest);
-        if first.is_zero() || rest.is_zero() || (positive && difference()) {
+        let difference = || [&first, &rest].iter().any(|part| self::sign(part) != sign);
+        if first.is_zero() || rest.is_zero() || (sign.is_some() && difference()) {
             return;
         }
         let after = literals(&first) + literals(&rest);
@@ -62,11 +62,14 @@ pub(super) fn splits(fraction: &Fraction) -> Vec<Pair> {
     found.into_iter().map(|(_, pair)| pair).collect()
 }
 
-/// Whether a coefficient is negative.
-fn has_negative(fraction: &Fraction) -> bool {
-    [fraction.numerator(), fraction.denominator()]
-        .iter()
-        .any(|part| part.terms().any(|(_, coefficient)| coefficient.is_negative()))
+/// Whether the fraction is negative for positive values; `None` where that depends on them.
+fn sign(fraction: &Fraction) -> Option<bool> {
+    let one = |polynomial: &Polynomial| {
+        let mut signs = polynomial.terms().map(|(_, coefficient)| coefficient.is_negative());
+        let first = signs.next()?;
+        signs.all(|sign| sign == first).then_some(first)
+    };
+    Some(one(fraction.numerator())? != one(fraction.denominator())?)
 }
 
 /// Lowest and highest power with their coefficients.
