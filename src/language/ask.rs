@@ -438,8 +438,7 @@ fn tidy(expression: &Expression) -> String {
     match &expression.kind {
         ExpressionKind::Name(name) => name.clone(),
         ExpressionKind::Call(name, arguments) => {
-            let list: Vec<&str> =
-                arguments.iter().map(|argument| argument.text.as_str()).collect();
+            let list: Vec<&str> = arguments.iter().map(|argument| argument.text.as_str()).collect();
             format!("{}({})", name.text, list.join(", "))
         }
         ExpressionKind::Product(factors) => match factors.as_slice() {

@@ -17,8 +17,8 @@ use super::syntax::{
 };
 use super::units::UnitSolver;
 use crate::circuit::{
-    Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, NodeId, Number, SymbolRole, Unit,
-    Value,
+    Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, NodeId, Number, SymbolRole,
+    Unit, Value,
 };
 use num_traits::Signed;
 use rustc_hash::FxHashMap;
@@ -369,7 +369,9 @@ impl<'s> Builder<'s> {
         for term in terms.iter().flatten() {
             visit_names(&term.gain, &mut note);
         }
-        for expression in self.queries.iter().filter_map(|(query, _)| reference_of(&query.expression)) {
+        for expression in
+            self.queries.iter().filter_map(|(query, _)| reference_of(&query.expression))
+        {
             visit_names(expression, &mut note);
         }
         // A claim makes no parameters, but it uses those that there are.
@@ -434,7 +436,9 @@ impl<'s> Builder<'s> {
                 solver.demand(&term.gain, given.over(term.access.unit()), "factor");
             }
         }
-        for expression in self.queries.iter().filter_map(|(query, _)| reference_of(&query.expression)) {
+        for expression in
+            self.queries.iter().filter_map(|(query, _)| reference_of(&query.expression))
+        {
             solver.demand(expression, Unit::OHM, "reference resistance");
         }
         solver.guess_free();

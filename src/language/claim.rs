@@ -255,7 +255,11 @@ impl Builder<'_> {
     }
 
     /// Resolves the claims of the file; `asked` holds the names of all questions.
-    pub(crate) fn resolve_claims(&mut self, circuit: &mut Circuit, asked: &FxHashMap<String, Span>) {
+    pub(crate) fn resolve_claims(
+        &mut self,
+        circuit: &mut Circuit,
+        asked: &FxHashMap<String, Span>,
+    ) {
         let formulas = Formulas::new(circuit);
         let mut claims = Vec::new();
         for draft in std::mem::take(&mut self.claims) {
@@ -309,7 +313,9 @@ fn name_fault(circuit: &Circuit, name: &Name) -> Option<Diagnostic> {
                 None if known.is_empty() => {
                     fault.help(format!("ask for it first: `ask {} = V(out) / Vin`", name.text))
                 }
-                None => fault.help(format!("there are: {}", known[..known.len().min(8)].join(", "))),
+                None => {
+                    fault.help(format!("there are: {}", known[..known.len().min(8)].join(", ")))
+                }
             })
         }
     }
@@ -373,8 +379,8 @@ pub fn claim_units(circuit: &Circuit, claim: &Claim) -> Result<Unit, UnitClash> 
     let source = Source::new(&claim.text);
     let range = 0..source.text.len();
     let mut faults = Vec::new();
-    let expression = parse::tokens(&source, &range, Rule::expression_text, &mut faults)
-        .and_then(|pair| {
+    let expression =
+        parse::tokens(&source, &range, Rule::expression_text, &mut faults).and_then(|pair| {
             Reader { source: &source, offset: 0, faults: &mut faults }.whole_expression(pair)
         });
     let formulas = Formulas::new(circuit);
@@ -403,9 +409,9 @@ fn value_unit(circuit: &Circuit, value: &Value) -> Option<Unit> {
         Value::Sum(parts) | Value::Parallel(parts) => {
             parts.iter().find_map(|part| value_unit(circuit, part))
         }
-        Value::Product(factors) => factors.iter().try_fold(Unit::ONE, |unit, factor| {
-            Some(unit.times(value_unit(circuit, factor)?))
-        }),
+        Value::Product(factors) => factors
+            .iter()
+            .try_fold(Unit::ONE, |unit, factor| Some(unit.times(value_unit(circuit, factor)?))),
         Value::Power(base, exponent) => Some(value_unit(circuit, base)?.power(*exponent)),
         Value::Negative(inner) => value_unit(circuit, inner),
     }

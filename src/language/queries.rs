@@ -8,7 +8,9 @@ use super::claim;
 use super::diagnostic::{Diagnostic, Span};
 use super::names::nearest;
 use super::syntax::{Argument, Content, Expression, ExpressionKind, Name};
-use crate::circuit::{ElementId, GROUND, Law, NodeId, ParameterSet, Question, TwoPort, Unit, Value};
+use crate::circuit::{
+    ElementId, GROUND, Law, NodeId, ParameterSet, Question, TwoPort, Unit, Value,
+};
 use num_traits::Signed;
 
 /// The words of the sets.
@@ -180,10 +182,7 @@ impl Resolver<'_> {
             .zip(&circuit.elements)
             .filter(|(_, element)| {
                 element.name.starts_with(&dotted)
-                    && matches!(
-                        element.law,
-                        Law::ControlledVoltage(_) | Law::ControlledCurrent(_)
-                    )
+                    && matches!(element.law, Law::ControlledVoltage(_) | Law::ControlledCurrent(_))
             })
             .map(|(id, _)| id)
             .collect();
@@ -237,8 +236,12 @@ pub(crate) fn empty_port(span: Span) -> Diagnostic {
 }
 
 fn wrong_two_port(span: Span) -> Diagnostic {
-    Diagnostic::error("arguments", span, "`two_port(…)` takes a set and two ports of two nodes each")
-        .help("write `two_port(z, in ground, out ground)`, or `two_port(scattering, a b, c d, 50)`")
+    Diagnostic::error(
+        "arguments",
+        span,
+        "`two_port(…)` takes a set and two ports of two nodes each",
+    )
+    .help("write `two_port(z, in ground, out ground)`, or `two_port(scattering, a b, c d, 50)`")
 }
 
 fn wrong_return_ratio(span: Span) -> Diagnostic {
@@ -247,9 +250,5 @@ fn wrong_return_ratio(span: Span) -> Diagnostic {
 }
 
 fn no_dependent_source(name: &Name) -> Diagnostic {
-    Diagnostic::error(
-        "return-ratio",
-        name.span,
-        format!("`{}` is no dependent source", name.text),
-    )
+    Diagnostic::error("return-ratio", name.span, format!("`{}` is no dependent source", name.text))
 }

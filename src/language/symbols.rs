@@ -16,9 +16,12 @@ impl Builder<'_> {
         for value in values(circuit) {
             mark(value, &mut occurs);
         }
-        for expression in self.queries.iter().filter_map(|(query, _)| reference_of(&query.expression)) {
+        for expression in
+            self.queries.iter().filter_map(|(query, _)| reference_of(&query.expression))
+        {
             visit_names(expression, &mut |name, _| {
-                let settled = self.definitions.find(name).and_then(|id| self.definitions.settled(id));
+                let settled =
+                    self.definitions.find(name).and_then(|id| self.definitions.settled(id));
                 if let Some(settled) = settled {
                     mark(&settled.value, &mut occurs);
                 }
