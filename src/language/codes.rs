@@ -32,6 +32,11 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "a band is empty, does not begin above 0 or has a tolerance",
         "write it like `band 10 Hz to 1 MHz`",
     ),
+    (
+        "bias",
+        "a bias is not above 0, has no number, or the kind of device takes none",
+        "write it like `at 1 mA`, with `beta = 100`, `VA = 50 V` as numbers",
+    ),
     ("both-ends", "both ends of an element are on one node", "check the walk and the wires"),
     ("capital-k", "`K` was written for kilo", "write `k`"),
     (
@@ -44,6 +49,11 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "a claim names no single answer",
         "name an `ask`, or an entry of a two-port set (`P.z21`)",
     ),
+    (
+        "coupling",
+        "a coupling is stronger than two inductors can have, or its factor is no number",
+        "write a factor between -1 and 1, or an inductance of at most √(L1·L2)",
+    ),
     ("decimal-comma", "a comma was written as the decimal sign", "write a point"),
     (
         "device-in-value",
@@ -52,6 +62,7 @@ pub const CODES: &[(&str, &str, &str)] = &[
     ),
     ("digit-groups", "spaces stand inside a number", "write the digits together"),
     ("duplicate", "a name or a statement stands twice", "choose another name, or remove one"),
+    ("either", "two parameters say the same thing twice", "leave one of them out"),
     (
         "element-as-node",
         "an element stands where a walk has a node",
@@ -63,6 +74,7 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "`from` names a source that the query does not need or contradicts",
         "leave `from` out",
     ),
+    ("inductors", "a coupling names what is no inductor", "name two different inductors"),
     ("limit", "a limit of what is no symbol", "name a symbol, or `s`"),
     ("meg", "`meg` was written for mega", "write `M`"),
     (
@@ -84,6 +96,11 @@ pub const CODES: &[(&str, &str, &str)] = &[
     ("nesting", "parentheses are nested too deep", "name a part with `let`"),
     ("no-class", "an element's name does not tell its class", "write the class word before it"),
     ("no-function", "a name stands before `(` and is no query", "write `*` between them"),
+    (
+        "no-number",
+        "a coupling factor gives no number, because an inductor has none",
+        "give both inductors their values",
+    ),
     ("no-parameters", "a device has no parameter", "name those that exist"),
     (
         "no-query",
@@ -126,6 +143,7 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "name a dependent source, a finite op-amp or a device's `gm`",
     ),
     ("role", "a terminal has no node or several", "write `role node` and a comma"),
+    ("rounded", "a number is irrational", "it is rounded to 30 digits; nothing is to be done"),
     (
         "s-in-value",
         "the value of an element other than an impedance or admittance depends on `s`",

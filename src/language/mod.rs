@@ -8,12 +8,14 @@
 //! May use: [`crate::circuit`].
 
 mod ask;
+mod bias;
 mod build;
 mod claim;
 mod codes;
 mod definitions;
 mod devices;
 mod diagnostic;
+mod expand;
 mod expression;
 mod fault;
 mod names;
@@ -29,6 +31,7 @@ mod syntax;
 mod tests;
 mod units;
 mod walks;
+mod warnings;
 
 pub use claim::{UnitClash, claim_units};
 pub use codes::CODES;
