@@ -6,8 +6,9 @@
 
 use super::ask::{self, Resolver};
 use super::bias::{BiasDraft, CouplingDraft, ShotDraft};
+use super::blocks;
 use super::definitions::{Definition, Definitions, Meaning, find_call, visit_names};
-use super::diagnostic::{Diagnostic, MOST_SHOWN, Severity, Span};
+use super::diagnostic::{Diagnostic, Label, MOST_SHOWN, Severity, Span};
 use super::names::{self, is_ground, nearest};
 use super::nodes::Nodes;
 use super::queries::reference_of;
@@ -69,6 +70,8 @@ pub(crate) struct Builder<'s> {
     pub(crate) faults: Vec<Diagnostic>,
     /// True if a line could not be read: then unknown names prove nothing.
     pub(crate) incomplete: bool,
+    /// True while a line of a block is taken in.
+    pub(crate) in_block: bool,
     title: Option<(String, Span)>,
     band: Option<(Band, Span)>,
     pub(crate) queries: Vec<(Query, Span)>,
@@ -98,6 +101,7 @@ impl<'s> Builder<'s> {
             devices: FxHashMap::default(),
             definitions: Definitions::default(),
             incomplete: !faults.is_empty(),
+            in_block: false,
             faults,
             title: None,
             band: None,
@@ -116,8 +120,16 @@ impl<'s> Builder<'s> {
         mut self,
         statements: Vec<Statement>,
     ) -> (Option<Circuit>, Vec<Diagnostic>) {
+        let statements = blocks::put_in(statements, &mut self.faults);
+        self.incomplete |= !self.faults.is_empty();
         for statement in statements {
+            let (used, before) = (statement.used, self.faults.len());
             self.statement(statement);
+            if let Some(used) = used {
+                for fault in &mut self.faults[before..] {
+                    fault.labels.push(Label { span: used, text: "used here".to_owned() });
+                }
+            }
         }
         let circuit = self.finish();
         let sound = !self.faults.iter().any(|fault| fault.severity == Severity::Error);
@@ -140,6 +152,7 @@ impl<'s> Builder<'s> {
 
     fn statement(&mut self, statement: Statement) {
         let span = statement.span;
+        self.in_block = statement.used.is_some();
         match statement.kind {
             StatementKind::Title(title) => {
                 if let Some((_, first)) = &self.title {
@@ -160,25 +173,14 @@ impl<'s> Builder<'s> {
             }
             StatementKind::Limit(name, point) => self.limits.push((name, point)),
             StatementKind::Temperature(quantity) => self.set_temperature(*quantity),
-            StatementKind::BlockStart(block) => {
-                let [terminals, parameters] = [block.terminals.len(), block.parameters.len()];
-                let block = format!(
-                    "a block (`{}`, {terminals} terminals, {parameters} parameters)",
-                    block.name.text
-                );
-                self.not_yet(span, &block);
-                self.incomplete = true;
+            StatementKind::Instance(name) => {
+                if self.is_free(&name) {
+                    self.devices.insert(name.text, name.span);
+                }
             }
-            StatementKind::BlockEnd => self.not_yet(span, "`end` of a block"),
-            StatementKind::Use(device) => {
-                self.not_yet(span, &format!("`use {}`", device.kind.text));
-                self.incomplete = true;
-            }
+            // Blocks are put in before anything is built.
+            StatementKind::BlockStart(_) | StatementKind::BlockEnd | StatementKind::Use(_) => {}
         }
-    }
-
-    pub(crate) fn not_yet(&mut self, span: Span, what: &str) {
-        self.error("not-yet", span, format!("{what} is not yet supported"));
     }
 
     fn band(&mut self, from: &Quantity, to: &Quantity, span: Span) {
@@ -241,7 +243,7 @@ impl<'s> Builder<'s> {
         self.definitions.add(Definition {
             name: name.text,
             span: name.span,
-            role: SymbolRole::Parameter,
+            role: if self.in_block { SymbolRole::DeviceParameter } else { SymbolRole::Parameter },
             meaning,
             unit,
             uses: 0,
@@ -252,12 +254,14 @@ impl<'s> Builder<'s> {
 
     /// Reports a name that cannot be given: reserved, or with a sign or a dot in it.
     pub(crate) fn refuse_name(&mut self, name: &Name) -> bool {
-        if names::is_reserved(&name.text) {
+        // A name of a block stands behind that of its use.
+        let local = if self.in_block { names::local(&name.text) } else { &name.text };
+        if names::is_reserved(local) {
             self.error("reserved", name.span, format!("`{}` is a word of the language", name.text));
             return true;
         }
-        let good = name.text.chars().all(|c| c.is_ascii_alphanumeric() || c == '_')
-            && !name.text.starts_with(|c: char| c.is_ascii_digit());
+        let good = local.chars().all(|c| c.is_ascii_alphanumeric() || c == '_')
+            && !local.starts_with(|c: char| c.is_ascii_digit());
         if !good {
             self.faults.push(
                 Diagnostic::error("bad-name", name.span, format!("`{}` is no name", name.text))

@@ -37,6 +37,17 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "a bias is not above 0, has no number, or the kind of device takes none",
         "write it like `at 1 mA`, with `beta = 100`, `VA = 50 V` as numbers",
     ),
+    ("block-end", "a block has no `end`, or an `end` has no block", "close each block by `end`"),
+    (
+        "block-parameter",
+        "a block's parameter that is an element has a value already",
+        "leave out one of the two values",
+    ),
+    (
+        "block-statement",
+        "a block holds a line that belongs to the circuit",
+        "keep walks, devices, `let` and `use` in blocks, and the rest outside",
+    ),
     ("both-ends", "both ends of an element are on one node", "check the walk and the wires"),
     ("capital-k", "`K` was written for kilo", "write `k`"),
     (
@@ -113,7 +124,6 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "a source's value is not linear in voltages and currents",
         "write a sum of factor times `V(…)` or `I(…)`",
     ),
-    ("not-yet", "this part of the language is not yet supported", "leave it out"),
     ("number", "a number is malformed", "write it like `0.5` or `1e3`"),
     (
         "number-letter",
@@ -187,6 +197,7 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "a parameter's unit would have an odd power",
         "check the expressions that hold it",
     ),
+    ("unknown-block", "a block is not defined", "check the name, or define it"),
     ("unknown-class", "a word before an element's name is no class", "use one of the class words"),
     (
         "unknown-element",

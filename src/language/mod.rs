@@ -9,6 +9,7 @@
 
 mod ask;
 mod bias;
+mod blocks;
 mod build;
 mod claim;
 mod codes;
@@ -23,6 +24,7 @@ mod nodes;
 mod parse;
 mod quantity;
 mod queries;
+mod scope;
 mod source;
 mod sources;
 mod symbols;

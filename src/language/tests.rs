@@ -1,5 +1,6 @@
 //! Every refusal of the language is a row here, and so is every thing that it accepts beside it.
 
+mod blocks;
 mod claims;
 mod devices;
 
@@ -263,6 +264,7 @@ fn every_code_is_explained() {
     let sources = [
         include_str!("ask.rs"),
         include_str!("bias.rs"),
+        include_str!("blocks.rs"),
         include_str!("build.rs"),
         include_str!("claim.rs"),
         include_str!("definitions.rs"),
@@ -272,6 +274,7 @@ fn every_code_is_explained() {
         include_str!("parse.rs"),
         include_str!("quantity.rs"),
         include_str!("queries.rs"),
+        include_str!("scope.rs"),
         include_str!("sources.rs"),
         include_str!("symbols.rs"),
         include_str!("units.rs"),
@@ -281,7 +284,13 @@ fn every_code_is_explained() {
     let mut used: Vec<&str> = sources
         .iter()
         .flat_map(|source| {
-            let calls = ["Diagnostic::error(", "Diagnostic::warning(", "Diagnostic::notice(", "self.error(", "fault("];
+            let calls = [
+                "Diagnostic::error(",
+                "Diagnostic::warning(",
+                "Diagnostic::notice(",
+                "self.error(",
+                "fault(",
+            ];
             calls.into_iter().flat_map(|call| source.split(call).skip(1))
         })
         .filter_map(|rest| rest.trim_start().strip_prefix('"')?.split('"').next())

@@ -47,7 +47,7 @@ impl Builder<'_> {
 
     /// The node of that name; reports names that no node can bear.
     pub(crate) fn node(&mut self, name: &Name) -> Option<usize> {
-        match node_fault(name) {
+        match node_fault(name, self.in_block) {
             Some(fault) => {
                 self.faults.push(fault);
                 self.incomplete = true;
@@ -269,8 +269,8 @@ fn wrong_order(steps: &[Step]) -> Option<Diagnostic> {
 }
 
 /// What is wrong with the name of a node.
-pub(crate) fn node_fault(name: &Name) -> Option<Diagnostic> {
-    let text = name.text.as_str();
+pub(crate) fn node_fault(name: &Name, in_block: bool) -> Option<Diagnostic> {
+    let text = if in_block { names::local(&name.text) } else { name.text.as_str() };
     let fault = |message: String| Diagnostic::error("bad-node", name.span, message);
     if text == "0" {
         return Some(fault("node `0` has no meaning here".to_owned()).help("write `ground`"));

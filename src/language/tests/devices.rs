@@ -129,7 +129,8 @@ fn couplings_get_their_numbers() {
     let check = |coils: (&str, &str), parameter: &str, expected: Option<Number>, notes: &[&str]| {
         let (first, second) = coils;
         let reading = read(&format!(
-            "a > L1{first} > ground\nb > L2{second} > ground\nmutual M1: inductors L1 L2{parameter}"
+            "a > L1{first} > ground\nb > L2{second} > ground\nmutual M1: inductors L1 L2{parameter}\n\
+             ask Z = impedance(a, b)"
         ));
         assert_eq!(codes(&reading), notes, "{parameter}");
         let circuit = reading.circuit.unwrap_or_default();
@@ -144,8 +145,7 @@ fn couplings_get_their_numbers() {
     check((" = 4 mH", " = L1"), ", factor = 0.5", Some(ratio(2, 1000)), &[]);
     check(("", " = 9 mH"), ", factor = 0.5", None, &["no-number"]);
     // √2 (from memory), to thirty digits.
-    let digits: num_bigint::BigInt =
-        "141421356237309504880168872421".parse().unwrap_or_default();
+    let digits: num_bigint::BigInt = "141421356237309504880168872421".parse().unwrap_or_default();
     let root = Number::from(digits) / Number::from(num_bigint::BigInt::from(10).pow(29));
     check((" = 1 H", " = 2 H"), ", factor = 1", Some(root), &["rounded"]);
 }
