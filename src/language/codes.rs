@@ -132,12 +132,12 @@ pub const CODES: &[(&str, &str, &str)] = &[
     ),
     ("number-range", "a number is too large, too small or too long", "check the exponent"),
     ("open-end", "nothing else is tied to one end of an element", "check the node's name"),
-    ("parenthesis", "a parenthesis is never closed", "add the missing `)`"),
     (
         "parameter-set",
         "a set of two-port parameters is unknown",
         "use z, y, h, g, chain, inverse_chain, scattering or transfer_scattering",
     ),
+    ("parenthesis", "a parenthesis is never closed", "add the missing `)`"),
     ("power", "a power is no integer, or too large", "use integer powers"),
     ("power-stars", "`**` was written for a power", "write `^`"),
     ("query-in-value", "a query stands inside an expression", "ask for it by itself"),

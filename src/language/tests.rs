@@ -302,6 +302,22 @@ fn every_code_is_explained() {
     assert_eq!(explained, used);
 }
 
+#[test]
+fn the_page_of_diagnostics_is_current() {
+    use std::fmt::Write;
+    let mut page = "# Diagnostics of the reader\n\n\
+                    Each finding bears a code, which stays the same. This page is made from the list \
+                    of codes by a test:\n`UPDATE_EXPECT=1 cargo test --lib page_of_diagnostics` writes it anew.\n\n\
+                    | code | cause | remedy |\n| --- | --- | --- |\n"
+        .to_owned();
+    for (code, cause, remedy) in super::CODES {
+        let escaped = |text: &str| text.replace('|', "\\|");
+        // Writing into a string cannot fail.
+        let _ = writeln!(page, "| `{code}` | {} | {} |", escaped(cause), escaped(remedy));
+    }
+    expect_test::expect_file!["../../docs/diagnostics.md"].assert_eq(&page);
+}
+
 /// The values of all elements, as text with the symbols' names.
 fn laws(circuit: &Circuit) -> Vec<String> {
     circuit

@@ -17,7 +17,7 @@ fn blocks_are_put_in_with_names_of_their_own() {
             "S1.R: in n1 Z S1.R",
             "S1.C: n1 ground Y (s*S1.C)",
             "S2.R: n1 out Z S2.R",
-            "S2.C: out ground Y (s*(2*S1.C))",
+            "S2.C: out ground Y (s*2*S1.C)",
         ],
     );
     let circuit = circuit(&format!("{SECTION}use section S1: a in, b n1, R = 10 kΩ"));
@@ -37,7 +37,7 @@ fn what_a_block_owns_gets_its_name() {
          use stage S1: a in, b out, gain = 1e5",
         &[
             "S1.R1: in S1.x Z (2*R0)",
-            "S1.R2: S1.x ground Z (3*(2*R0))",
+            "S1.R2: S1.x ground Z (S1.k*(2*R0))",
             "S1.L1: S1.x ground Z (s*S1.L1)",
             "S1.L2: out ground Z (s*S1.L2)",
             "S1.M1: ground ground couples S1.L1 S1.L2 by S1.M1",
