@@ -206,7 +206,7 @@ fn judge(seed: u64) -> Result<Outcome, String> {
     let Some(circuit) = language::read(&text).circuit else {
         return Ok(Outcome::Refused);
     };
-    let transfer = &circuit.asks[0].transfers[0];
+    let transfer = &circuit.asks[0].transfers()[0];
     let mut random = Random::new(seed ^ 0xabcd);
     let mut draw = || circuit.symbols.iter().map(|_| rational(&mut random)).collect();
     let mut numbers: Vec<Number> = draw();

@@ -16,7 +16,8 @@ fn run(circuit: &str, arguments: &[&str]) -> (i32, String, String) {
         .spawn()
         .expect("the program starts");
     if let Some(mut input) = child.stdin.take() {
-        input.write_all(circuit.as_bytes()).expect("the program reads");
+        // A program that refuses its arguments ends before it has read anything.
+        let _ = input.write_all(circuit.as_bytes());
     }
     let output = child.wait_with_output().expect("the program ends");
     let text = |bytes: Vec<u8>| String::from_utf8(bytes).expect("UTF-8");
@@ -134,7 +135,7 @@ fn pole_splitting_with_the_textbook_formulas() {
     let formula =
         |root: &Value| root["approximation"]["expression"].as_str().unwrap_or_default().to_owned();
     assert_eq!(formula(&poles[0]), "-1/(R1*R2*Cc*g2)");
-    assert_eq!(formula(&poles[1]), "-Cc*g2/(C1*C2 + C1*Cc + C2*Cc)");
+    assert_eq!(formula(&poles[1]), "-g2/(C1 + C2*(1 + C1/Cc))");
     assert_eq!(formula(zero), "g2/Cc");
     close(&poles[0]["approximation"]["relative_error"], 0.0041, 0.02);
     assert_eq!(poles[0]["approximation"]["while_large"][0]["expression"], "R2*g2");
@@ -318,7 +319,7 @@ mod sums {
     }
 
     fn report(circuit: &Circuit) -> RootReport {
-        let transfer = &circuit.asks[0].transfers[0];
+        let transfer = &circuit.asks[0].transfers()[0];
         let derivation = derive(circuit, transfer, &Options::default()).expect("a derivation");
         analyse(circuit, transfer, &derivation).expect("roots")
     }

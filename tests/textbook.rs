@@ -138,6 +138,39 @@ fn printed_forms_need_no_more_symbols_than_by_hand() {
     assert_eq!(found, longer, "on the left what is longer now, on the right longer.txt");
 }
 
+/// `docs/textbook-table.md`; `UPDATE_EXPECT=1` writes it.
+#[test]
+fn the_table_of_forms_is_current() {
+    let waiting = listed("waiting.txt");
+    let mut table = String::from(
+        "# Textbook circuits: symbols by hand and as printed\n\n\
+         How often a symbol stands in the formula that a designer writes by hand, and in the shape \
+         `compact`. Numbers\nand `s` do not count, a power counts once. Written by \
+         `UPDATE_EXPECT=1 cargo test --test textbook`.\n\n\
+         | circuit | by hand | printed | formula by hand | formula printed |\n\
+         | --- | ---: | ---: | --- | --- |\n",
+    );
+    let (mut hand, mut printed) = (0, 0);
+    for form in forms().iter().filter(|form| !waiting.contains(&form.circuit)) {
+        let derived = derive(form).expect(&form.circuit);
+        let result = program::result(&derived, &form.result).expect(&form.circuit);
+        let compact = program::text(result, "compact").expect(&form.circuit);
+        let symbols = symbols_in(compact).expect(compact);
+        let cell = |text: &str| text.replace('|', "\\|");
+        table.push_str(&format!(
+            "| {} | {} | {symbols} | `{}` | `{}` |\n",
+            form.circuit,
+            form.symbols,
+            cell(&form.formula),
+            cell(compact)
+        ));
+        hand += form.symbols;
+        printed += symbols;
+    }
+    table.push_str(&format!("| all | {hand} | {printed} | | |\n"));
+    expect_test::expect_file!["../docs/textbook-table.md"].assert_eq(&table);
+}
+
 #[test]
 fn counts_of_symbols_fit_their_formulas() {
     for form in forms() {

@@ -227,6 +227,8 @@ impl Packing {
 
 /// A packed monomial of fixed or variable length, as the inner loops want it.
 pub(crate) trait Key: Clone + Ord + Hash {
+    /// Bytes that [`Self::byte`] can tell; 0 if the length varies.
+    const BYTES: usize;
     fn from_words(words: &[u64]) -> Self;
     /// Appends as many words as the layout has.
     fn push_words(&self, count: usize, to: &mut Vec<u64>);
@@ -234,9 +236,12 @@ pub(crate) trait Key: Clone + Ord + Hash {
     fn times(&self, other: &Self) -> Self;
     /// The quotient of two monomials whose fields have their top bits, `guards`, clear.
     fn over(&self, divisor: &Self, guards: &Self) -> Option<Self>;
+    /// The byte at a place, 0 being the last one of the last word.
+    fn byte(&self, place: usize) -> u8;
 }
 
 impl Key for u64 {
+    const BYTES: usize = 8;
     fn from_words(words: &[u64]) -> Self {
         words.first().copied().unwrap_or(0)
     }
@@ -252,9 +257,13 @@ impl Key for u64 {
         let difference = (self | guards) - divisor;
         (difference & guards == *guards).then_some(difference ^ guards)
     }
+    fn byte(&self, place: usize) -> u8 {
+        (self >> (8 * place)) as u8
+    }
 }
 
 impl Key for u128 {
+    const BYTES: usize = 16;
     fn from_words(words: &[u64]) -> Self {
         let word = |place: usize| Self::from(words.get(place).copied().unwrap_or(0));
         (word(0) << 64) | word(1)
@@ -269,12 +278,16 @@ impl Key for u128 {
         let difference = (self | guards) - divisor;
         (difference & guards == *guards).then_some(difference ^ guards)
     }
+    fn byte(&self, place: usize) -> u8 {
+        (self >> (8 * place)) as u8
+    }
 }
 
 /// Monomials of any length.
 pub(crate) type LongKey = SmallVec<[u64; 8]>;
 
 impl Key for LongKey {
+    const BYTES: usize = 0;
     fn from_words(words: &[u64]) -> Self {
         Self::from_slice(words)
     }
@@ -286,5 +299,8 @@ impl Key for LongKey {
     }
     fn over(&self, divisor: &Self, guards: &Self) -> Option<Self> {
         self.iter().zip(divisor).zip(guards).map(|((a, b), guard)| a.over(b, guard)).collect()
+    }
+    fn byte(&self, place: usize) -> u8 {
+        self.iter().rev().nth(place / 8).map_or(0, |word| word.byte(place % 8))
     }
 }

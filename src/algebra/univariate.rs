@@ -3,7 +3,7 @@
 //! What must hold: the last coefficient is not 0, the denominator is positive, and denominator and
 //! coefficients together have no common factor; so derived equality is equality of polynomials.
 //! Arithmetic is fraction-free and schoolbook; greatest common divisors are those of
-//! [`super::gcd`], modular and verified.
+//! [`gcd`](super::gcd()), modular and verified.
 
 use std::ops::{Add, Mul, Neg, Sub};
 

@@ -94,6 +94,9 @@ impl AnalysisError {
             EliminationError::NoReturnPath(a, b) => {
                 Self::NotConnected(node(a), node(b), "the driving current has no way back")
             }
+            EliminationError::Undetermined(..) if current_cutset(circuit, transfer).is_some() => {
+                singular(circuit, transfer, limits)
+            }
             EliminationError::Undetermined(a, b) => {
                 Self::NotConnected(node(a), node(b), "the voltage between them is not determined")
             }

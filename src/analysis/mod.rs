@@ -8,6 +8,7 @@ mod error;
 mod judged;
 mod notice;
 mod numbers;
+mod port;
 pub mod roots;
 
 pub use closed_form::{Closed, ClosedForm, total};
@@ -16,7 +17,7 @@ pub use notice::Notice;
 pub use numbers::NumericForm;
 
 use crate::circuit::{Circuit, Transfer};
-use crate::elimination::{Elimination, Limits, TermCounts};
+use crate::elimination::{Elimination, EliminationError, Limits, TermCounts};
 use crate::numeric::{self, Report};
 
 /// What an answer may cost.
@@ -61,8 +62,19 @@ pub fn derive(
     transfer: &Transfer,
     options: &Options,
 ) -> Result<Derivation, AnalysisError> {
-    let elimination = Elimination::new(circuit, transfer, &options.limits)
-        .map_err(|error| AnalysisError::explain(&error, circuit, transfer, &options.limits))?;
+    let elimination = match Elimination::new(circuit, transfer, &options.limits) {
+        Ok(elimination) => elimination,
+        Err(EliminationError::Singular | EliminationError::NoReturnPath(..))
+            if port::is_admittance(transfer) =>
+        {
+            // No current can be forced into the port; a voltage can still stand there.
+            let (circuit, transfer) = port::with_test_voltage(circuit, transfer);
+            return derive(&circuit, &transfer, options);
+        }
+        Err(error) => {
+            return Err(AnalysisError::explain(&error, circuit, transfer, &options.limits));
+        }
+    };
     let Closed { form, counts } = closed_form::close(&elimination, options.max_terms);
     let judged = judged::Judged { elimination: &elimination, form: &form };
     let evidence =

@@ -50,8 +50,10 @@ pub(crate) fn nominal(
             "at the nominal values a pole and a zero coincide; they are cancelled in the numeric form",
         );
     }
-    let all = |of: &Univariate| (0..=of.degree()).map(|power| of.coefficient(power)).collect();
-    let (numerator, denominator): (Vec<Number>, Vec<Number>) = (all(&n), all(&d));
+    let coefficients = |of: &Univariate| -> Vec<Number> {
+        (0..of.numerators().len()).map(|power| of.coefficient(power)).collect()
+    };
+    let (numerator, denominator) = (coefficients(&n), coefficients(&d));
     let scale = denominator.iter().find(|c| !c.is_zero()).cloned().unwrap_or_else(Number::one);
     let scaled = |of: Vec<Number>| of.into_iter().map(|c| c / &scale).collect();
     Some(NumericForm { numerator: scaled(numerator), denominator: scaled(denominator) })

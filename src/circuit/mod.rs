@@ -13,9 +13,11 @@ mod value;
 
 pub use model::{
     Band, Circuit, Class, Control, Definition, Element, ElementId, GROUND, Law, Node, NodeId,
-    Quantity, Symbol, SymbolId, SymbolRole, Tolerance,
+    Quantity, Shot, Symbol, SymbolId, SymbolRole, Tolerance,
 };
 pub use name::compare_names;
-pub use question::{Ask, Drive, Probe, Transfer};
+pub use question::{
+    Ask, Claim, Drive, Limit, LimitTo, ParameterSet, Probe, Question, Transfer, TwoPort,
+};
 pub use unit::Unit;
 pub use value::{Number, Value};

@@ -3,7 +3,7 @@
 //! Signs follow the passive sign convention (IEC 60375): an element's voltage is counted from its
 //! first node (+) to its second (−), and its current flows through it from the first to the second.
 
-use super::{Ask, Number, Unit, Value};
+use super::{Ask, Claim, Limit, Number, Unit, Value};
 
 /// A node of the circuit; 0 is the reference node.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq, PartialOrd, Ord, Hash)]
@@ -41,6 +41,27 @@ pub struct Circuit {
     /// Names that stand for an expression and are no symbols: matched elements, abbreviations
     /// made by `let`, device parameters that are tied to something. Hand-derived formulas may use them.
     pub definitions: Vec<Definition>,
+    /// Hand-derived formulas, in the order of the file.
+    pub claims: Vec<Claim>,
+    /// Limits that are taken in every result, in the order of the file.
+    pub limits: Vec<Limit>,
+    /// Bias currents of the devices whose bias is given: they add shot noise.
+    pub shots: Vec<Shot>,
+    /// The temperature in kelvin, for noise; 300 K where the file says nothing.
+    pub temperature: Option<Number>,
+}
+
+/// A junction whose bias current is known: shot noise of 2·q·I in parallel with it.
+#[derive(Clone, Debug)]
+pub struct Shot {
+    /// The device and terminal it belongs to (`Q1.collector`).
+    pub name: String,
+    /// The current flows from here.
+    pub plus: NodeId,
+    /// To here.
+    pub minus: NodeId,
+    /// The bias current in ampere.
+    pub current: Number,
 }
 
 /// A name that stands for an expression.
@@ -82,6 +103,14 @@ pub enum Class {
     Current,
     /// An ideal operational amplifier (nullator at the input, norator at the output).
     Opamp,
+    /// A nullator and a norator.
+    Nullor,
+    /// An ideal transformer.
+    Transformer,
+    /// A gyrator.
+    Gyrator,
+    /// Magnetic coupling of two inductors.
+    Mutual,
 }
 
 /// A part between two nodes, and its law.
@@ -119,6 +148,31 @@ pub enum Law {
     /// Norator between the element's own nodes, nullator between these two: an ideal
     /// op-amp has plus = its output, minus = ground, and its inputs here.
     Nullor(NodeId, NodeId),
+    /// An ideal transformer: the element's own nodes are the primary, these the secondary;
+    /// v = ratio·v₂ and i₂ = −ratio·i, each current into its first node.
+    Transformer {
+        /// Primary over secondary voltage.
+        ratio: Value,
+        /// The secondary.
+        secondary: (NodeId, NodeId),
+    },
+    /// A gyrator: the element's own nodes are port 1, these port 2; i = g·v₂ and i₂ = −g·v.
+    Gyrator {
+        /// The gyration conductance.
+        conductance: Value,
+        /// Port 2.
+        second: (NodeId, NodeId),
+    },
+    /// Coupling of two inductors (elements with [`Class::Inductor`]): s·M·i of each is added to the
+    /// voltage of the other. The element's own nodes mean nothing and are ground.
+    Mutual {
+        /// The one inductor.
+        first: ElementId,
+        /// The other.
+        second: ElementId,
+        /// The mutual inductance M.
+        inductance: Value,
+    },
 }
 
 /// One term of a dependent source.

@@ -1,6 +1,6 @@
 //! What is asked of a circuit, resolved: nodes and elements are known, the driving source is chosen.
 
-use super::{ElementId, NodeId, Unit};
+use super::{ElementId, NodeId, SymbolId, Unit, Value};
 
 /// A question of the file or of the command line.
 #[derive(Clone, Debug)]
@@ -9,13 +9,128 @@ pub struct Ask {
     pub name: String,
     /// The query as written, tidied (`V(out) / Vin`).
     pub text: String,
-    /// The transfer functions that answer it: one, or one for each independent source
-    /// when a bare `V(..)` or `I(..)` asks for the superposition.
-    pub transfers: Vec<Transfer>,
-    /// True for a bare `V(..)` or `I(..)`: the answer is the sum of transfer × source.
-    pub superposition: bool,
+    /// What is asked.
+    pub question: Question,
     /// The line of the file, from 1; 0 for the command line.
     pub line: u32,
+}
+
+/// What is asked.
+#[derive(Clone, Debug)]
+pub enum Question {
+    /// One ratio: a transfer function, an impedance, an admittance.
+    Ratio(Transfer),
+    /// A bare `V(..)` or `I(..)`: the sum over the independent sources of transfer × source, one
+    /// transfer function for each.
+    Superposition(Vec<Transfer>),
+    /// A set of two-port parameters; all independent sources are zeroed.
+    TwoPort(TwoPort),
+    /// The return ratio of a dependent source (Bode 1945), positive for negative feedback; all
+    /// independent sources are zeroed.
+    ReturnRatio(ElementId),
+    /// The one-sided noise density of the voltage from the first node to the second, in V²/Hz.
+    NoiseDensity(NodeId, NodeId),
+}
+
+impl Ask {
+    /// The transfer functions that answer a ratio or a superposition; empty for other questions.
+    pub fn transfers(&self) -> &[Transfer] {
+        match &self.question {
+            Question::Ratio(transfer) => std::slice::from_ref(transfer),
+            Question::Superposition(transfers) => transfers,
+            Question::TwoPort(_) | Question::ReturnRatio(_) | Question::NoiseDensity(..) => &[],
+        }
+    }
+
+    /// Whether the answer is a sum over the independent sources.
+    pub fn is_superposition(&self) -> bool {
+        matches!(self.question, Question::Superposition(_))
+    }
+}
+
+/// A set of two-port parameters between two ports; currents are counted into the first node of each.
+#[derive(Clone, Debug, PartialEq)]
+pub struct TwoPort {
+    /// Which set.
+    pub set: ParameterSet,
+    /// The first port.
+    pub port1: (NodeId, NodeId),
+    /// The second port.
+    pub port2: (NodeId, NodeId),
+    /// The reference resistance of the scattering sets, in ohm.
+    pub reference: Option<Value>,
+    /// Independent sources that are taken out because they lie exactly across a port.
+    pub removed: Vec<ElementId>,
+}
+
+/// The sets of two-port parameters.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub enum ParameterSet {
+    /// V = z·I.
+    Z,
+    /// I = y·V.
+    Y,
+    /// (V1, I2) = h·(I1, V2).
+    H,
+    /// (I1, V2) = g·(V1, I2).
+    G,
+    /// (V1, I1) = a·(V2, −I2).
+    Chain,
+    /// (V2, I2) = b·(V1, −I1).
+    InverseChain,
+    /// Outgoing waves for incoming ones.
+    Scattering,
+    /// Waves at port 1 for waves at port 2.
+    TransferScattering,
+}
+
+impl ParameterSet {
+    /// The letter of the entries: `z`, `y`, `h`, `g`, `a`, `b`, `s`, `t`.
+    pub fn letter(self) -> char {
+        match self {
+            Self::Z => 'z',
+            Self::Y => 'y',
+            Self::H => 'h',
+            Self::G => 'g',
+            Self::Chain => 'a',
+            Self::InverseChain => 'b',
+            Self::Scattering => 's',
+            Self::TransferScattering => 't',
+        }
+    }
+}
+
+/// A hand-derived formula for the answer of that name.
+#[derive(Clone, Debug)]
+pub struct Claim {
+    /// The name of the question, or of a two-port's entry (`P.z21`).
+    pub name: String,
+    /// The formula, resolved.
+    pub formula: Value,
+    /// The formula as written.
+    pub text: String,
+    /// The line of the file, from 1; 0 for the command line.
+    pub line: u32,
+    /// The first byte of the formula and one past its last, in the file.
+    pub span: (usize, usize),
+}
+
+/// A limit that is taken in every result, exactly.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Limit {
+    /// The symbol; `None` for `s`.
+    pub symbol: Option<SymbolId>,
+    /// Where it goes.
+    pub to: LimitTo,
+}
+
+/// Where a limit goes.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum LimitTo {
+    /// To 0.
+    Zero,
+    /// To infinity.
+    Infinity,
 }
 
 /// One exact ratio: `numerator / denominator` while `drive` is the only excitation.

@@ -18,6 +18,18 @@ impl Value {
         }
     }
 
+    /// Whether `s` stands in the value.
+    pub fn holds_s(&self) -> bool {
+        match self {
+            Self::S => true,
+            Self::Number(_) | Self::Symbol(_) => false,
+            Self::Power(inner, _) | Self::Negative(inner) => inner.holds_s(),
+            Self::Sum(parts) | Self::Product(parts) | Self::Parallel(parts) => {
+                parts.iter().any(Self::holds_s)
+            }
+        }
+    }
+
     /// Calls `visit` for every symbol in the value.
     pub fn for_each_symbol(&self, visit: &mut dyn FnMut(SymbolId)) {
         match self {
@@ -35,7 +47,11 @@ impl Law {
     /// The values in the law.
     pub fn values(&self) -> Vec<&Value> {
         match self {
-            Self::Impedance(value) | Self::Admittance(value) => vec![value],
+            Self::Impedance(value)
+            | Self::Admittance(value)
+            | Self::Transformer { ratio: value, .. }
+            | Self::Gyrator { conductance: value, .. }
+            | Self::Mutual { inductance: value, .. } => vec![value],
             Self::ControlledVoltage(controls) | Self::ControlledCurrent(controls) => {
                 controls.iter().map(|control| &control.gain).collect()
             }
@@ -46,7 +62,11 @@ impl Law {
     /// The values in the law, to be changed.
     pub fn values_mut(&mut self) -> Vec<&mut Value> {
         match self {
-            Self::Impedance(value) | Self::Admittance(value) => vec![value],
+            Self::Impedance(value)
+            | Self::Admittance(value)
+            | Self::Transformer { ratio: value, .. }
+            | Self::Gyrator { conductance: value, .. }
+            | Self::Mutual { inductance: value, .. } => vec![value],
             Self::ControlledVoltage(controls) | Self::ControlledCurrent(controls) => {
                 controls.iter_mut().map(|control| &mut control.gain).collect()
             }

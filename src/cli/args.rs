@@ -149,6 +149,10 @@ pub(crate) enum ShapeName {
     Powers,
     /// Gain, power of s, and polynomials that begin with 1
     Bode,
+    /// Irreducible factors
+    Product,
+    /// Coefficients as sums of reactive elements times what they see
+    ByElement,
     /// Named sub-expressions
     Nested,
 }

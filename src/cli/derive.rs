@@ -24,6 +24,8 @@ pub(crate) fn run(arguments: &Derive, messages: &Messages) -> Result<u8, Failure
         None => Shape::Compact,
         Some(ShapeName::Powers) => Shape::Powers,
         Some(ShapeName::Bode) => Shape::Bode,
+        Some(ShapeName::Product) => Shape::Product,
+        Some(ShapeName::ByElement) => Shape::ByElement,
         Some(ShapeName::Nested) => Shape::Nested,
     };
     let options = Options { max_terms: arguments.max_terms, ..Options::default() };
@@ -87,7 +89,7 @@ fn answers(
 }
 
 fn derive(circuit: &Circuit, ask: &Ask, options: &Options) -> Result<Vec<Derivation>, Failure> {
-    ask.transfers
+    ask.transfers()
         .iter()
         .map(|transfer| analysis::derive(circuit, transfer, options))
         .collect::<Result<_, AnalysisError>>()
@@ -145,7 +147,7 @@ impl Printer<'_> {
 
     /// A shape that needs the expansion is refused where that is too long.
     fn check_shape(&self, ask: &Ask, derivations: &[Derivation]) -> Result<(), Failure> {
-        if !matches!(self.shape, Shape::Powers | Shape::Bode) {
+        if matches!(self.shape, Shape::Compact | Shape::Nested) {
             return Ok(());
         }
         for derivation in derivations {

@@ -1,7 +1,7 @@
 //! `cofactor roots`: poles and zeros, and which elements set each.
 
 use cofactor::analysis::roots::{self, Quantity, RootReport, Unreachable};
-use cofactor::analysis::{self, Derivation, Options};
+use cofactor::analysis::{self, Derivation, Notice, Options};
 use cofactor::circuit::{Ask, Number, SymbolId, Transfer, Unit};
 use cofactor::language::{self, line_and_column};
 use cofactor::numeric::Assignment;
@@ -61,7 +61,7 @@ impl Wishes {
         if locus.is_some() && arguments.output.format != RootsFormat::Svg {
             return Err(Failure::option("`--locus` is a picture".to_owned(), "add `--format svg`"));
         }
-        let pictures: usize = loaded.asks.iter().map(|ask| ask.transfers.len()).sum();
+        let pictures: usize = loaded.asks.iter().map(|ask| ask.transfers().len()).sum();
         if arguments.output.format == RootsFormat::Svg && pictures != 1 {
             return Err(Failure::option(
                 format!("a picture shows one function, and {pictures} are asked for"),
@@ -178,8 +178,18 @@ struct Printer<'a> {
 impl Printer<'_> {
     fn take(&mut self, ask: &Ask, first: bool) -> Result<(), Failure> {
         let circuit = &self.loaded.circuit;
+        if ask.transfers().is_empty() {
+            let notice = Notice {
+                code: "not-a-ratio",
+                message: "poles and zeros are those of a ratio, such as `V(out) / Vin`".to_owned(),
+                line: ask.line,
+            };
+            self.messages.notice(&ask.name, &notice);
+            self.warnings.push(answer::warning(&notice));
+            return Ok(());
+        }
         let mut reports = Vec::new();
-        for transfer in &ask.transfers {
+        for transfer in ask.transfers() {
             let options = Options { max_terms: self.arguments.max_terms, ..Options::default() };
             let derivation = analysis::derive(circuit, transfer, &options)
                 .map_err(|error| Failure::analysis(&ask.name, &error))?;

@@ -30,8 +30,9 @@ use num_bigint::{BigInt, BigUint};
 use num_complex::Complex;
 use num_rational::BigRational;
 
-use crate::algebra::{Polynomial, Var, modular::Field};
-use crate::circuit::{Circuit, ElementId, NodeId, Transfer};
+use crate::algebra::modular::{Field, Random, primes};
+use crate::algebra::{Polynomial, Var};
+use crate::circuit::{Circuit, Drive, ElementId, NodeId, Transfer};
 use diagram::{Diagram, Link};
 use passes::expand::{self, TermSet};
 use passes::{coefficients, count, gradient, numbers};
@@ -104,17 +105,17 @@ impl Elimination {
     ) -> Result<Self, EliminationError> {
         let system = system::build(circuit, transfer)?;
         let (built, level_of) = build_diagram(&system, limits)?;
-        let (numerator, denominator) =
-            (built.roots[system.numerator], built.roots[system.denominator]);
-        if denominator.is_dead() {
-            return Err(match (numerator.is_dead(), transfer.drive) {
-                (false, crate::circuit::Drive::Port(..)) => EliminationError::Infinite,
-                _ => EliminationError::Singular,
-            });
-        }
-        if numerator.is_dead() {
+        let zeros = zeros(&system, &built);
+        let is_zero = |root: usize| zeros[root];
+        let is_port = matches!(transfer.drive, Drive::Port(..));
+        match (is_zero(system.numerator), is_zero(system.denominator)) {
+            // Nothing can flow into the port, but a voltage could stand there.
+            (false, true) if is_port => return Err(EliminationError::Infinite),
+            _ if is_zero(system.determinant) => return Err(EliminationError::Singular),
+            (_, true) => return Err(EliminationError::Infinite),
             // The denominator cancels; only that it is not 0 counts.
-            return Ok(Self::zero(system));
+            (true, false) => return Ok(Self::zero(system)),
+            (false, false) => {}
         }
         let fixed = independent::find(&system, &built);
         if fixed.is_empty() {
@@ -201,12 +202,11 @@ impl Elimination {
     /// How many terms each power of `s` has, without making them.
     pub fn count_terms(&self) -> TermCounts {
         let weights: Vec<_> = self.weights.iter().map(count::weight).collect();
-        let values = passes::values(&count::Counts, &self.diagram, &weights);
-        TermCounts {
-            numerator: passes::at(&count::Counts, &values, self.numerator),
-            denominator: passes::at(&count::Counts, &values, self.denominator),
-            exact: self.distinct,
-        }
+        let roots = [self.numerator, self.denominator];
+        let mut counts = passes::at_links(&count::Counts, &self.diagram, &weights, &roots);
+        let denominator = counts.pop().unwrap_or_default();
+        let numerator = counts.pop().unwrap_or_default();
+        TermCounts { numerator, denominator, exact: self.distinct }
     }
 
     /// Numerator and denominator as polynomials, terms collected; not yet in lowest terms.
@@ -308,6 +308,35 @@ impl Elimination {
     pub fn nested(&self) -> Nested {
         nested::of(&self.diagram, &self.weights, self.numerator, self.denominator)
     }
+}
+
+/// Which roots are 0: those that are dead, and where terms can meet those whose terms cancel. That
+/// is tested at two random points modulo a prime, with a chance of error below 10⁻³⁰.
+fn zeros(system: &System, diagram: &Diagram) -> Vec<bool> {
+    let mut cancelled = vec![false; diagram.roots.len()];
+    if let Some(field) = primes().next().filter(|_| !terms_never_meet(system)) {
+        cancelled = vec![true; diagram.roots.len()];
+        let mut random = Random::new(0x5eed_0002);
+        for _ in 0..2 {
+            let mut point: std::collections::BTreeMap<Var, u64> = std::collections::BTreeMap::new();
+            let mut weights = Vec::new();
+            for choice in &system.choices {
+                for alternative in &choice.alternatives {
+                    for variable in alternative.weight.variables() {
+                        point.entry(variable).or_insert_with(|| random.unit(&field));
+                    }
+                    let value = |variable: Var| point.get(&variable).copied().unwrap_or(0);
+                    weights.push(alternative.weight.evaluate_modulo(&field, value));
+                }
+            }
+            let ring = numbers::Remainders(field);
+            let values = passes::values(&ring, diagram, &weights);
+            for (root, cancelled) in diagram.roots.iter().zip(&mut cancelled) {
+                *cancelled &= passes::at(&ring, &values, *root) == 0;
+            }
+        }
+    }
+    diagram.roots.iter().zip(cancelled).map(|(root, zero)| root.is_dead() || zero).collect()
 }
 
 /// The diagram, and for each choice its place in the order.

@@ -14,7 +14,7 @@ use std::collections::BTreeMap;
 use super::choice::{Alternative, Choice, MultiPort, Pair};
 use super::error::EliminationError;
 use super::value::{DividesByZero, fraction_of};
-use crate::algebra::{Fraction, Polynomial};
+use crate::algebra::{Fraction, Polynomial, Var, gcd};
 use crate::circuit::{
     Circuit, Control, Drive, ElementId, GROUND, Law, NodeId, Probe, Quantity, Transfer, Value,
     compare_names,
@@ -38,6 +38,8 @@ pub(crate) struct System {
     pub(crate) numerator: usize,
     /// Likewise the denominator.
     pub(crate) denominator: usize,
+    /// Likewise the determinant of the network itself.
+    pub(crate) determinant: usize,
 }
 
 impl System {
@@ -82,6 +84,8 @@ struct Builder<'c> {
     split: BTreeMap<ElementId, u32>,
     /// The node whose voltage is the element's current.
     sense: BTreeMap<ElementId, u32>,
+    /// Couplings (first, second, M) that are not stamped yet.
+    couplings: Vec<(ElementId, ElementId, Fraction, ElementId)>,
     /// Controlled current sources that hang on the current of a one-port: (output pair, gain).
     mirrors: BTreeMap<ElementId, Vec<(Pair, Fraction, ElementId)>>,
     /// Sums of (trans)admittances by (current pair, voltage pair), first node below the second.
@@ -112,6 +116,7 @@ impl<'c> Builder<'c> {
             nodes: circuit.nodes.len() as u32,
             split: BTreeMap::new(),
             sense: BTreeMap::new(),
+            couplings: Vec::new(),
             mirrors: BTreeMap::new(),
             lumps: BTreeMap::new(),
             choices: Vec::new(),
@@ -145,7 +150,7 @@ impl<'c> Builder<'c> {
                 let Quantity::Current(of) = control.quantity else { continue };
                 let one_port =
                     matches!(self.circuit[of].law, Law::Impedance(_) | Law::Admittance(_));
-                if is_current && one_port {
+                if is_current && one_port && !self.is_coupled(of) {
                     mirrored.insert(of, ());
                 } else {
                     sensed.insert(of, ());
@@ -168,6 +173,12 @@ impl<'c> Builder<'c> {
         }
     }
 
+    fn is_coupled(&self, id: ElementId) -> bool {
+        self.circuit.elements.iter().any(|element| {
+            matches!(element.law, Law::Mutual { first, second, .. } if first == id || second == id)
+        })
+    }
+
     fn push(&mut self, choice: Choice, origin: Vec<ElementId>, forced: bool) {
         self.choices.push(choice);
         self.origins.push(origin);
@@ -186,10 +197,21 @@ impl<'c> Builder<'c> {
                     self.push(nullor(pair, nullator).choice(), vec![id], false);
                 }
                 Law::VoltageSource if self.transfer.drive != Drive::Source(id) => {
-                    // A source of 0 V between a node and itself says nothing.
-                    if pair.0 != pair.1 {
-                        self.push(short(pair), vec![id], false);
-                    }
+                    self.push(short(pair), vec![id], false);
+                }
+                Law::Transformer { ratio, secondary } => {
+                    let ratio = self.fraction(id, ratio)?;
+                    let second = self.pair(secondary.0, secondary.1);
+                    self.push(transformer(pair, second, &ratio).choice(), vec![id], false);
+                }
+                Law::Gyrator { conductance, second } => {
+                    let conductance = self.fraction(id, conductance)?;
+                    let second = self.pair(second.0, second.1);
+                    self.push(gyrator(pair, second, &conductance).choice(), vec![id], false);
+                }
+                Law::Mutual { first, second, inductance } => {
+                    let inductance = self.fraction(id, inductance)?;
+                    self.couplings.push((*first, *second, inductance, id));
                 }
                 Law::Impedance(_)
                 | Law::Admittance(_)
@@ -197,11 +219,15 @@ impl<'c> Builder<'c> {
                 | Law::CurrentSource => {}
             }
         }
+        let coupled = self.stamp_coupled()?;
         // One-ports last: the mirrors of their currents are all known now.
         for id in self.elements.clone() {
             let (Law::Impedance(value) | Law::Admittance(value)) = &self.circuit[id].law else {
                 continue;
             };
+            if coupled.contains(&id) {
+                continue;
+            }
             self.stamp_one_port(id, value)?;
         }
         for ((current, voltage), (sum, origin)) in std::mem::take(&mut self.lumps) {
@@ -226,8 +252,7 @@ impl<'c> Builder<'c> {
     }
 
     fn stamp_one_port(&mut self, id: ElementId, value: &Value) -> Result<(), EliminationError> {
-        let value =
-            fraction_of(value).map_err(|DividesByZero| EliminationError::DivisionByZero(id))?;
+        let value = self.fraction(id, value)?;
         let pair = self.own_pair(id);
         let is_impedance = matches!(self.circuit[id].law, Law::Impedance(_));
         let mirrors = self.mirrors.remove(&id);
@@ -254,6 +279,50 @@ impl<'c> Builder<'c> {
         Ok(())
     }
 
+    /// Inductors that couplings join, each group as one element; the inductors that are done.
+    fn stamp_coupled(&mut self) -> Result<Vec<ElementId>, EliminationError> {
+        let mut done = Vec::new();
+        let mut rest = std::mem::take(&mut self.couplings);
+        while let Some(&(start, ..)) = rest.first() {
+            let mut group = vec![start];
+            let mut own = Vec::new();
+            while let Some(at) = rest
+                .iter()
+                .position(|(first, second, ..)| group.contains(first) || group.contains(second))
+            {
+                let coupling = rest.remove(at);
+                for inductor in [coupling.0, coupling.1] {
+                    if !group.contains(&inductor) {
+                        group.push(inductor);
+                    }
+                }
+                own.push(coupling);
+            }
+            group.sort_by(|&a, &b| compare_names(&self.circuit[a].name, &self.circuit[b].name));
+            let mut impedances = vec![vec![Fraction::zero(); group.len()]; group.len()];
+            for (index, &inductor) in group.iter().enumerate() {
+                if let Law::Impedance(value) = &self.circuit[inductor].law {
+                    impedances[index][index] = self.fraction(inductor, value)?;
+                }
+            }
+            let s = Fraction::from(Polynomial::variable(Var::S));
+            let mut origin = group.clone();
+            for (first, second, inductance, id) in own {
+                let at = |inductor| group.iter().position(|&other| other == inductor);
+                if let (Some(a), Some(b)) = (at(first), at(second)) {
+                    let mutual = &s * &inductance;
+                    impedances[a][b] = &impedances[a][b] + &mutual;
+                    impedances[b][a] = &impedances[b][a] + &mutual;
+                }
+                origin.push(id);
+            }
+            let ports: Vec<Pair> = group.iter().map(|&inductor| self.own_pair(inductor)).collect();
+            self.push(impedance_matrix(ports, &impedances).choice(), origin, false);
+            done.extend(group);
+        }
+        Ok(done)
+    }
+
     /// Adds a (trans)admittance: current through `current`, for the voltage of `voltage`.
     fn lump(&mut self, current: Pair, voltage: Pair, value: &Fraction, id: ElementId) {
         if current.0 == current.1 || voltage.0 == voltage.1 {
@@ -268,8 +337,8 @@ impl<'c> Builder<'c> {
         origin.push(id);
     }
 
-    fn gain(&self, id: ElementId, control: &Control) -> Result<Fraction, EliminationError> {
-        fraction_of(&control.gain).map_err(|DividesByZero| EliminationError::DivisionByZero(id))
+    fn fraction(&self, id: ElementId, value: &Value) -> Result<Fraction, EliminationError> {
+        fraction_of(value).map_err(|DividesByZero| EliminationError::DivisionByZero(id))
     }
 
     /// The pair whose voltage a control is, where it is one.
@@ -287,7 +356,7 @@ impl<'c> Builder<'c> {
     ) -> Result<(), EliminationError> {
         let pair = self.own_pair(id);
         for control in controls {
-            let gain = self.gain(id, control)?;
+            let gain = self.fraction(id, &control.gain)?;
             match (self.control_pair(control.quantity), control.quantity) {
                 (Some(voltage), _) => self.lump(pair, voltage, &gain, id),
                 (None, Quantity::Current(of)) => {
@@ -307,7 +376,7 @@ impl<'c> Builder<'c> {
         let pair = self.own_pair(id);
         let mut gains: BTreeMap<Pair, Fraction> = BTreeMap::new();
         for control in controls {
-            let gain = self.gain(id, control)?;
+            let gain = self.fraction(id, &control.gain)?;
             let Some(voltage) = self.control_pair(control.quantity) else { continue };
             if voltage.0 == voltage.1 {
                 continue;
@@ -337,7 +406,7 @@ impl<'c> Builder<'c> {
         };
         let mut choice = Choice::default();
         let mut index_of = Vec::new();
-        for probe in [self.transfer.numerator, self.transfer.denominator] {
+        for probe in [self.transfer.numerator, self.transfer.denominator, Probe::Drive] {
             let alternative = match probe {
                 Probe::Drive if is_voltage => alternative(1, vec![port], vec![port]),
                 Probe::Drive => alternative(1, vec![], vec![]),
@@ -364,6 +433,7 @@ impl<'c> Builder<'c> {
             grounded: Vec::new(),
             numerator: index_of[0],
             denominator: index_of[1],
+            determinant: index_of[2],
         })
     }
 
@@ -449,23 +519,65 @@ fn mirrors_of_short(pair: Pair, mirrors: &[(Pair, Fraction, ElementId)]) -> Mult
     port
 }
 
+/// v1 = n·v2, i2 = −n·i1.
+fn transformer(primary: Pair, secondary: Pair, ratio: &Fraction) -> MultiPort {
+    let (n, d) = (ratio.numerator(), ratio.denominator());
+    MultiPort {
+        ports: vec![primary, secondary],
+        a: vec![vec![d.clone(), -n], vec![Polynomial::zero(), Polynomial::zero()]],
+        b: vec![vec![Polynomial::zero(), Polynomial::zero()], vec![n.clone(), d.clone()]],
+    }
+}
+
+/// i1 = g·v2, i2 = −g·v1.
+fn gyrator(first: Pair, second: Pair, conductance: &Fraction) -> MultiPort {
+    let (n, d) = (conductance.numerator(), conductance.denominator());
+    MultiPort {
+        ports: vec![first, second],
+        a: vec![vec![Polynomial::zero(), -n], vec![n.clone(), Polynomial::zero()]],
+        b: vec![vec![d.clone(), Polynomial::zero()], vec![Polynomial::zero(), d.clone()]],
+    }
+}
+
+/// v = Z·i, each row cleared of denominators.
+fn impedance_matrix(ports: Vec<Pair>, impedances: &[Vec<Fraction>]) -> MultiPort {
+    let k = ports.len();
+    let mut port = MultiPort { ports, a: zeros(k), b: zeros(k) };
+    for (row, entries) in impedances.iter().enumerate() {
+        let common = common_denominator(entries);
+        for (column, entry) in entries.iter().enumerate() {
+            port.b[row][column] = -&cleared(entry, &common);
+        }
+        port.a[row][row] = common;
+    }
+    port
+}
+
+/// The least common multiple of the denominators.
+fn common_denominator<'f>(fractions: impl IntoIterator<Item = &'f Fraction>) -> Polynomial {
+    fractions.into_iter().fold(Polynomial::one(), |common, fraction| {
+        let shared = gcd(&common, fraction.denominator());
+        match fraction.denominator().divide_exact(&shared) {
+            Some(rest) => &common * &rest,
+            None => common,
+        }
+    })
+}
+
+/// The fraction times a multiple of its denominator.
+fn cleared(fraction: &Fraction, common: &Polynomial) -> Polynomial {
+    let cofactor = common.divide_exact(fraction.denominator()).unwrap_or_else(Polynomial::one);
+    fraction.numerator() * &cofactor
+}
+
 /// v(output) = Σ gain·v(control).
 fn controlled_voltage(output: Pair, gains: &BTreeMap<Pair, Fraction>) -> MultiPort {
     let k = gains.len() + 1;
     let mut port = MultiPort { ports: vec![output], a: zeros(k), b: zeros(k) };
-    // Cleared of denominators: Π d_j · v − Σ n_j Π_(k≠j) d_k · v_j = 0. A common denominator is met
-    // once only.
-    let mut common = Polynomial::one();
-    for gain in gains.values() {
-        let shared = crate::algebra::gcd(&common, gain.denominator());
-        if let Some(rest) = gain.denominator().divide_exact(&shared) {
-            common = &common * &rest;
-        }
-    }
+    let common = common_denominator(gains.values());
     for (index, (&control, gain)) in gains.iter().enumerate() {
         port.ports.push(control);
-        let cofactor = common.divide_exact(gain.denominator()).unwrap_or_else(Polynomial::one);
-        port.a[0][index + 1] = -&(gain.numerator() * &cofactor);
+        port.a[0][index + 1] = -&cleared(gain, &common);
         port.b[index + 1][index + 1] = Polynomial::one();
     }
     port.a[0][0] = common;

@@ -4,11 +4,15 @@
 //! `I(..)`, or an impedance or admittance of a port. What drives the circuit is found here, so that the
 //! derivation need not know the language.
 
+use super::build::has_one_current;
 use super::diagnostic::{Diagnostic, Span};
 use super::names::{self, is_ground, nearest};
+use super::queries::empty_port;
 use super::sources::{self, Access};
 use super::syntax::{Argument, Expression, ExpressionKind, Name, Query};
-use crate::circuit::{Ask, Circuit, Drive, ElementId, GROUND, Law, NodeId, Probe, Transfer, Unit};
+use crate::circuit::{
+    Ask, Circuit, Drive, ElementId, GROUND, Law, NodeId, Probe, Question, Transfer, Unit,
+};
 use rustc_hash::FxHashMap;
 
 /// Resolves a query against a circuit; the line is left 0.
@@ -21,7 +25,14 @@ pub(crate) fn resolve(circuit: &Circuit, query: &Query) -> Result<Ask, Vec<Diagn
 
 /// The nodes that a question is about.
 pub(crate) fn nodes(ask: &Ask) -> impl Iterator<Item = NodeId> {
-    ask.transfers.iter().flat_map(|transfer| {
+    let of_question = match &ask.question {
+        Question::TwoPort(ports) => {
+            vec![ports.port1.0, ports.port1.1, ports.port2.0, ports.port2.1]
+        }
+        Question::NoiseDensity(plus, minus) => vec![*plus, *minus],
+        Question::Ratio(_) | Question::Superposition(_) | Question::ReturnRatio(_) => Vec::new(),
+    };
+    let of_transfers = ask.transfers().iter().flat_map(|transfer| {
         let mut nodes = Vec::new();
         for probe in [transfer.numerator, transfer.denominator] {
             if let Probe::Voltage(a, b) = probe {
@@ -32,7 +43,8 @@ pub(crate) fn nodes(ask: &Ask) -> impl Iterator<Item = NodeId> {
             nodes.extend([a, b]);
         }
         nodes
-    })
+    });
+    of_transfers.chain(of_question)
 }
 
 /// The error for a node that does not exist.
@@ -78,8 +90,6 @@ pub(crate) struct Resolver<'c> {
     sources: Vec<ElementId>,
 }
 
-type Found = (Vec<Transfer>, bool);
-
 impl<'c> Resolver<'c> {
     /// Indexes the names of a circuit.
     pub(crate) fn new(circuit: &'c Circuit) -> Self {
@@ -110,19 +120,19 @@ impl<'c> Resolver<'c> {
             Some(name) => Some((self.independent_source(name)?, name.span)),
             None => None,
         };
-        let (transfers, superposition) = self.transfers(&query.expression, from)?;
+        let question = self.question(&query.expression, from)?;
         let mut text = tidy(&query.expression);
         if let Some(from) = &query.from {
             text = format!("{text} from {}", from.text);
         }
-        Ok(Ask { name: query.name.text.clone(), text, transfers, superposition, line: 0 })
+        Ok(Ask { name: query.name.text.clone(), text, question, line: 0 })
     }
 
-    fn transfers(
+    fn question(
         &self,
         expression: &Expression,
         from: Option<(ElementId, Span)>,
-    ) -> Result<Found, Diagnostic> {
+    ) -> Result<Question, Diagnostic> {
         if let ExpressionKind::Call(name, arguments) = &expression.kind
             && names::QUERIES.contains(&name.text.as_str())
         {
@@ -134,14 +144,20 @@ impl<'c> Resolver<'c> {
                 )
                 .help("leave `from` out"));
             }
-            return self.port_query(name, arguments, expression.span).map(|one| (vec![one], false));
+            let span = expression.span;
+            return match name.text.as_str() {
+                "two_port" => self.two_port(arguments, span),
+                "return_ratio" => self.return_ratio(arguments, span),
+                "noise_density" => self.noise_density(arguments, span),
+                _ => self.port_query(name, arguments, span).map(Question::Ratio),
+            };
         }
         match &expression.kind {
             ExpressionKind::Product(factors) => {
                 if let [upper, lower] = factors.as_slice()
                     && let ExpressionKind::Power(lower, -1) = &lower.kind
                 {
-                    return self.ratio(upper, lower, from).map(|one| (vec![one], false));
+                    return self.ratio(upper, lower, from).map(Question::Ratio);
                 }
                 Err(no_query(expression.span))
             }
@@ -233,7 +249,7 @@ impl<'c> Resolver<'c> {
         &self,
         expression: &Expression,
         from: Option<(ElementId, Span)>,
-    ) -> Result<Found, Diagnostic> {
+    ) -> Result<Question, Diagnostic> {
         let side = self.side(expression)?;
         let sources = match from {
             Some((source, _)) => vec![source],
@@ -254,7 +270,7 @@ impl<'c> Resolver<'c> {
             removed: Vec::new(),
             unit: self.unit(side).over(self.unit(Side::Source(source))),
         };
-        Ok((sources.into_iter().map(transfer).collect(), true))
+        Ok(Question::Superposition(sources.into_iter().map(transfer).collect()))
     }
 
     fn port_query(
@@ -264,13 +280,6 @@ impl<'c> Resolver<'c> {
         span: Span,
     ) -> Result<Transfer, Diagnostic> {
         let impedance = name.text == "impedance";
-        if !impedance && name.text != "admittance" {
-            return Err(Diagnostic::error(
-                "not-yet",
-                name.span,
-                format!("`{}(…)` is not yet supported", name.text),
-            ));
-        }
         let [first, second] = arguments else {
             return Err(wrong_port(name, span));
         };
@@ -279,22 +288,9 @@ impl<'c> Resolver<'c> {
         };
         let (plus, minus) = (self.node(a)?, self.node(b)?);
         if plus == minus {
-            return Err(Diagnostic::error(
-                "empty-port",
-                span,
-                "both ends of the port are one node",
-            ));
+            return Err(empty_port(span));
         }
-        let removed = self
-            .sources
-            .iter()
-            .copied()
-            .filter(|id| {
-                let element = &self.circuit[*id];
-                (element.plus, element.minus) == (plus, minus)
-                    || (element.plus, element.minus) == (minus, plus)
-            })
-            .collect();
+        let removed = self.across(&[(plus, minus)]);
         let voltage = Probe::Voltage(plus, minus);
         let (numerator, denominator, unit) = if impedance {
             (voltage, Probe::Drive, Unit::OHM)
@@ -302,6 +298,25 @@ impl<'c> Resolver<'c> {
             (Probe::Drive, voltage, Unit::SIEMENS)
         };
         Ok(Transfer { drive: Drive::Port(plus, minus), numerator, denominator, removed, unit })
+    }
+
+    /// The independent sources that lie exactly across a port, either way round.
+    pub(crate) fn across(&self, ports: &[(NodeId, NodeId)]) -> Vec<ElementId> {
+        let lies_across = |id: &ElementId| {
+            let (plus, minus) = (self.circuit[*id].plus, self.circuit[*id].minus);
+            ports.contains(&(plus, minus)) || ports.contains(&(minus, plus))
+        };
+        self.sources.iter().copied().filter(lies_across).collect()
+    }
+
+    /// The circuit that questions are asked of.
+    pub(crate) fn circuit(&self) -> &'c Circuit {
+        self.circuit
+    }
+
+    /// The element of that name, of any kind.
+    pub(crate) fn any_element(&self, name: &str) -> Option<ElementId> {
+        self.elements.get(name).copied()
     }
 
     fn side(&self, expression: &Expression) -> Result<Side, Diagnostic> {
@@ -332,7 +347,8 @@ impl<'c> Resolver<'c> {
         }
     }
 
-    fn node(&self, name: &Name) -> Result<NodeId, Diagnostic> {
+    /// The node of that name.
+    pub(crate) fn node(&self, name: &Name) -> Result<NodeId, Diagnostic> {
         if is_ground(&name.text) {
             return Ok(GROUND);
         }
@@ -347,7 +363,7 @@ impl<'c> Resolver<'c> {
     fn element(&self, name: &Name) -> Result<ElementId, Diagnostic> {
         let known = || self.circuit.elements.iter().map(|element| element.name.as_str());
         match self.elements.get(name.text.as_str()).copied() {
-            Some(id) if matches!(self.circuit[id].law, Law::Nullor(..)) => {
+            Some(id) if !has_one_current(self.circuit[id].class) => {
                 Err(unknown_element(name, None, true))
             }
             Some(id) => Ok(id),
@@ -415,7 +431,7 @@ fn wrong_port(name: &Name, span: Span) -> Diagnostic {
 
 fn no_query(span: Span) -> Diagnostic {
     Diagnostic::error("no-query", span, "this is no query")
-        .help("a query is `V(out) / Vin`, `I(R1) / V(in)`, `V(out)`, `impedance(a, b)` or `admittance(a, b)`")
+        .help("a query is `V(out) / Vin`, `I(R1) / V(in)`, `V(out)`, `impedance(a, b)`, `admittance(a, b)`, `two_port(z, a b, c d)`, `return_ratio(X)` or `noise_density(out)`")
 }
 
 /// The query with even spaces.
@@ -423,14 +439,7 @@ fn tidy(expression: &Expression) -> String {
     match &expression.kind {
         ExpressionKind::Name(name) => name.clone(),
         ExpressionKind::Call(name, arguments) => {
-            let list: Vec<String> = arguments
-                .iter()
-                .map(|argument| {
-                    let words: Vec<&str> =
-                        argument.names.iter().map(|name| name.text.as_str()).collect();
-                    words.join(" ")
-                })
-                .collect();
+            let list: Vec<&str> = arguments.iter().map(|argument| argument.text.as_str()).collect();
             format!("{}({})", name.text, list.join(", "))
         }
         ExpressionKind::Product(factors) => match factors.as_slice() {

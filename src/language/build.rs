@@ -5,10 +5,13 @@
 //! Questions come last: they are asked of the finished circuit.
 
 use super::ask::{self, Resolver};
+use super::bias::{BiasDraft, CouplingDraft, ShotDraft};
+use super::blocks;
 use super::definitions::{Definition, Definitions, Meaning, find_call, visit_names};
-use super::diagnostic::{Diagnostic, MOST_SHOWN, Severity, Span};
+use super::diagnostic::{Diagnostic, Label, MOST_SHOWN, Severity, Span};
 use super::names::{self, is_ground, nearest};
 use super::nodes::Nodes;
+use super::queries::reference_of;
 use super::source::Source;
 use super::sources::{self, Access, Term};
 use super::syntax::{
@@ -16,13 +19,12 @@ use super::syntax::{
 };
 use super::units::UnitSolver;
 use crate::circuit::{
-    Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, NodeId, SymbolRole, Unit, Value,
+    Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, NodeId, Number, SymbolRole,
+    Unit, Value,
 };
+use num_bigint::BigInt;
 use num_traits::Signed;
 use rustc_hash::FxHashMap;
-
-/// Pairs of names that are compared in search of slips; a larger file goes without.
-const MOST_COMPARED: usize = 1_000_000;
 
 /// An element before its value is known; nodes are numbers of [`Nodes`].
 #[derive(Debug)]
@@ -42,10 +44,17 @@ pub(crate) enum DraftLaw {
     Source,
     /// A dependent source as written; empty for 0 V and 0 A.
     Controlled(Option<Expression>),
-    /// A dependent source of a device: the value of a definition times the voltage between two nodes.
-    ByVoltage(usize, usize, usize),
+    /// A dependent source of a device: the value of a definition, over that of another, times the
+    /// voltage between two nodes.
+    ByVoltage(usize, Option<usize>, usize, usize),
     /// Nullator between these nodes.
     Nullor(usize, usize),
+    /// The ratio, and the secondary.
+    Transformer(usize, usize, usize),
+    /// The conductance, and port 2.
+    Gyrator(usize, usize, usize),
+    /// Two inductors, and the mutual inductance.
+    Mutual(Name, Name, usize),
 }
 
 /// What is being built.
@@ -61,10 +70,25 @@ pub(crate) struct Builder<'s> {
     pub(crate) faults: Vec<Diagnostic>,
     /// True if a line could not be read: then unknown names prove nothing.
     pub(crate) incomplete: bool,
+    /// True while a line of a block is taken in.
+    pub(crate) in_block: bool,
     title: Option<(String, Span)>,
     band: Option<(Band, Span)>,
-    queries: Vec<(Query, Span)>,
-    claims: Vec<(Name, Expression)>,
+    pub(crate) queries: Vec<(Query, Span)>,
+    pub(crate) claims: Vec<ClaimDraft>,
+    pub(crate) limits: Vec<(Name, LimitPoint)>,
+    pub(crate) biases: Vec<BiasDraft>,
+    pub(crate) couplings: Vec<CouplingDraft>,
+    pub(crate) shots: Vec<ShotDraft>,
+    temperature: Option<(Number, Span)>,
+}
+
+/// A claim before its names are known.
+pub(crate) struct ClaimDraft {
+    pub(crate) name: Name,
+    pub(crate) expression: Expression,
+    /// Where the formula stands.
+    pub(crate) span: Span,
 }
 
 impl<'s> Builder<'s> {
@@ -77,11 +101,17 @@ impl<'s> Builder<'s> {
             devices: FxHashMap::default(),
             definitions: Definitions::default(),
             incomplete: !faults.is_empty(),
+            in_block: false,
             faults,
             title: None,
             band: None,
             queries: Vec::new(),
             claims: Vec::new(),
+            limits: Vec::new(),
+            biases: Vec::new(),
+            couplings: Vec::new(),
+            shots: Vec::new(),
+            temperature: None,
         }
     }
 
@@ -90,8 +120,16 @@ impl<'s> Builder<'s> {
         mut self,
         statements: Vec<Statement>,
     ) -> (Option<Circuit>, Vec<Diagnostic>) {
+        let statements = blocks::put_in(statements, &mut self.faults);
+        self.incomplete |= !self.faults.is_empty();
         for statement in statements {
+            let (used, before) = (statement.used, self.faults.len());
             self.statement(statement);
+            if let Some(used) = used {
+                for fault in &mut self.faults[before..] {
+                    fault.labels.push(Label { span: used, text: "used here".to_owned() });
+                }
+            }
         }
         let circuit = self.finish();
         let sound = !self.faults.iter().any(|fault| fault.severity == Severity::Error);
@@ -114,6 +152,7 @@ impl<'s> Builder<'s> {
 
     fn statement(&mut self, statement: Statement) {
         let span = statement.span;
+        self.in_block = statement.used.is_some();
         match statement.kind {
             StatementKind::Title(title) => {
                 if let Some((_, first)) = &self.title {
@@ -129,38 +168,19 @@ impl<'s> Builder<'s> {
             StatementKind::Let(name, value) => self.let_name(name, value.map(|value| *value)),
             StatementKind::Band(ends) => self.band(&ends.0, &ends.1, span),
             StatementKind::Ask(query) => self.queries.push((query, span)),
-            StatementKind::Claim(name, expression) => {
-                self.not_yet(span, "`claim`");
-                self.claims.push((name, expression));
+            StatementKind::Claim(name, expression, place) => {
+                self.claims.push(ClaimDraft { name, expression, span: place });
             }
-            StatementKind::Limit(name, point) => {
-                let to = if point == LimitPoint::Zero { "0" } else { "infinity" };
-                self.not_yet(span, &format!("`limit {} to {to}`", name.text));
-            }
-            StatementKind::Temperature(quantity) => {
-                if !quantity.value.is_positive() {
-                    self.error("temperature", quantity.span, "a temperature must be above 0 K");
+            StatementKind::Limit(name, point) => self.limits.push((name, point)),
+            StatementKind::Temperature(quantity) => self.set_temperature(*quantity),
+            StatementKind::Instance(name) => {
+                if self.is_free(&name) {
+                    self.devices.insert(name.text, name.span);
                 }
             }
-            StatementKind::BlockStart(block) => {
-                let [terminals, parameters] = [block.terminals.len(), block.parameters.len()];
-                let block = format!(
-                    "a block (`{}`, {terminals} terminals, {parameters} parameters)",
-                    block.name.text
-                );
-                self.not_yet(span, &block);
-                self.incomplete = true;
-            }
-            StatementKind::BlockEnd => self.not_yet(span, "`end` of a block"),
-            StatementKind::Use(device) => {
-                self.not_yet(span, &format!("`use {}`", device.kind.text));
-                self.incomplete = true;
-            }
+            // Blocks are put in before anything is built.
+            StatementKind::BlockStart(_) | StatementKind::BlockEnd | StatementKind::Use(_) => {}
         }
-    }
-
-    pub(crate) fn not_yet(&mut self, span: Span, what: &str) {
-        self.error("not-yet", span, format!("{what} is not yet supported"));
     }
 
     fn band(&mut self, from: &Quantity, to: &Quantity, span: Span) {
@@ -174,6 +194,24 @@ impl<'s> Builder<'s> {
             Ok(band) => self.band = Some((band, span)),
             Err(fault) => self.faults.push(fault),
         }
+    }
+
+    fn set_temperature(&mut self, quantity: Quantity) {
+        if let Some((_, first)) = &self.temperature {
+            let fault = Diagnostic::error("duplicate", quantity.span, "a second temperature")
+                .label(*first, "the first one");
+            self.faults.push(fault);
+        } else if !quantity.value.is_positive() {
+            self.error("temperature", quantity.span, "a temperature must be above 0 K");
+        } else {
+            self.temperature = Some((quantity.value, quantity.span));
+        }
+    }
+
+    /// The temperature of the file, or 300 K.
+    pub(crate) fn kelvin(&self) -> Number {
+        let usual = || Number::from(BigInt::from(300));
+        self.temperature.as_ref().map_or_else(usual, |(kelvin, _)| kelvin.clone())
     }
 
     fn let_name(&mut self, name: Name, value: Option<Content>) {
@@ -205,7 +243,7 @@ impl<'s> Builder<'s> {
         self.definitions.add(Definition {
             name: name.text,
             span: name.span,
-            role: SymbolRole::Parameter,
+            role: if self.in_block { SymbolRole::DeviceParameter } else { SymbolRole::Parameter },
             meaning,
             unit,
             uses: 0,
@@ -216,12 +254,14 @@ impl<'s> Builder<'s> {
 
     /// Reports a name that cannot be given: reserved, or with a sign or a dot in it.
     pub(crate) fn refuse_name(&mut self, name: &Name) -> bool {
-        if names::is_reserved(&name.text) {
+        // A name of a block stands behind that of its use.
+        let local = if self.in_block { names::local(&name.text) } else { &name.text };
+        if names::is_reserved(local) {
             self.error("reserved", name.span, format!("`{}` is a word of the language", name.text));
             return true;
         }
-        let good = name.text.chars().all(|c| c.is_ascii_alphanumeric() || c == '_')
-            && !name.text.starts_with(|c: char| c.is_ascii_digit());
+        let good = local.chars().all(|c| c.is_ascii_alphanumeric() || c == '_')
+            && !local.starts_with(|c: char| c.is_ascii_digit());
         if !good {
             self.faults.push(
                 Diagnostic::error("bad-name", name.span, format!("`{}` is no name", name.text))
@@ -255,6 +295,7 @@ impl<'s> Builder<'s> {
         let mut faults = std::mem::take(&mut self.faults);
         self.definitions.settle(&mut faults);
         self.faults = faults;
+        self.settle_numbers();
         if self.faults.iter().any(|fault| fault.severity == Severity::Error) {
             // What follows would only repeat what the first errors caused.
             return None;
@@ -264,11 +305,15 @@ impl<'s> Builder<'s> {
             title: self.title.take().map(|(title, _)| title),
             nodes: self.nodes.list(),
             band: self.band.take().map(|(band, _)| band),
+            temperature: self.temperature.take().map(|(kelvin, _)| kelvin),
             ..Circuit::default()
         };
         self.make_elements(&terms, &mut circuit);
+        self.list_shots(&mut circuit);
         self.number_symbols(&units, &mut circuit);
-        self.resolve_queries(&mut circuit);
+        let asked = self.resolve_queries(&mut circuit);
+        self.resolve_limits(&mut circuit);
+        self.resolve_claims(&mut circuit, &asked);
         self.warn(&circuit);
         Some(circuit)
     }
@@ -309,6 +354,7 @@ impl<'s> Builder<'s> {
     /// The error for a source's or a device's name inside an expression.
     fn source_in_expression(&self, name: &str, span: Span) -> Option<Diagnostic> {
         if let Some(draft) = self.elements.get(name).map(|index| &self.drafts[*index])
+            && (has_one_current(draft.class) || draft.class == Class::Opamp)
             && self.definitions.find(name).is_none()
         {
             let plus = self.nodes.name(draft.plus);
@@ -348,8 +394,19 @@ impl<'s> Builder<'s> {
         for term in terms.iter().flatten() {
             visit_names(&term.gain, &mut note);
         }
-        for (_, claim) in &self.claims {
-            visit_names(claim, &mut |name, span| {
+        for expression in
+            self.queries.iter().filter_map(|(query, _)| reference_of(&query.expression))
+        {
+            visit_names(expression, &mut note);
+        }
+        // Claims and numbers of a bias make no parameters, but use those that there are.
+        let numbers = self.biases.iter().flat_map(|bias| &bias.numbers);
+        let numbers = numbers.filter_map(|given| match &given.value {
+            Some(Content::Expression(expression)) => Some(expression),
+            _ => None,
+        });
+        for expression in self.claims.iter().map(|claim| &claim.expression).chain(numbers) {
+            visit_names(expression, &mut |name, span| {
                 if self.definitions.find(name).is_some() {
                     note(name, span);
                 }
@@ -409,6 +466,11 @@ impl<'s> Builder<'s> {
                 solver.demand(&term.gain, given.over(term.access.unit()), "factor");
             }
         }
+        for expression in
+            self.queries.iter().filter_map(|(query, _)| reference_of(&query.expression))
+        {
+            solver.demand(expression, Unit::OHM, "reference resistance");
+        }
         solver.guess_free();
         let units = (0..self.definitions.list.len()).map(|id| solver.unit(id)).collect();
         let faults = solver.faults;
@@ -458,11 +520,39 @@ impl<'s> Builder<'s> {
             DraftLaw::Source if draft.class == Class::Voltage => Law::VoltageSource,
             DraftLaw::Source => Law::CurrentSource,
             DraftLaw::Nullor(a, b) => Law::Nullor(self.nodes.id(*a), self.nodes.id(*b)),
-            DraftLaw::ByVoltage(id, a, b) => {
-                let gain = self.definitions.settled(*id)?.value.clone();
+            DraftLaw::ByVoltage(id, over, a, b) => {
+                let mut gain = self.definitions.settled(*id)?.value.clone();
+                if let Some(over) = over {
+                    let divisor = self.definitions.settled(*over)?.value.clone();
+                    gain = Value::Product(vec![gain, Value::Power(Box::new(divisor), -1)]);
+                }
                 let voltage =
                     crate::circuit::Quantity::Voltage(self.nodes.id(*a), self.nodes.id(*b));
                 controlled(draft.class, vec![Control { gain, quantity: voltage }])
+            }
+            DraftLaw::Transformer(id, a, b) => Law::Transformer {
+                ratio: self.definitions.settled(*id)?.value.clone(),
+                secondary: (self.nodes.id(*a), self.nodes.id(*b)),
+            },
+            DraftLaw::Gyrator(id, a, b) => Law::Gyrator {
+                conductance: self.definitions.settled(*id)?.value.clone(),
+                second: (self.nodes.id(*a), self.nodes.id(*b)),
+            },
+            DraftLaw::Mutual(first, second, id) => {
+                let inductance = self.definitions.settled(*id)?.value.clone();
+                let (a, b) = (self.inductor(first, faults), self.inductor(second, faults));
+                let (first_id, second_id) = (a?, b?);
+                if first_id == second_id {
+                    faults.push(
+                        Diagnostic::error(
+                            "inductors",
+                            second.span,
+                            format!("`{}` is coupled to itself", second.text),
+                        )
+                        .help("name two inductors"),
+                    );
+                }
+                Law::Mutual { first: first_id, second: second_id, inductance }
             }
             DraftLaw::Controlled(_) => {
                 let mut controls = Vec::with_capacity(terms.len());
@@ -493,7 +583,10 @@ impl<'s> Builder<'s> {
                 Some(crate::circuit::Quantity::Voltage(plus, minus))
             }
             Access::Current(name) => {
-                if let Some(index) = self.elements.get(&name.text) {
+                let index = self.elements.get(&name.text);
+                if let Some(index) =
+                    index.filter(|index| has_one_current(self.drafts[**index].class))
+                {
                     // Elements are made in the order of the drafts, one for each.
                     return Some(crate::circuit::Quantity::Current(ElementId(
                         u32::try_from(*index).ok()?,
@@ -508,6 +601,29 @@ impl<'s> Builder<'s> {
         }
     }
 
+    /// An inductor of a coupling.
+    fn inductor(&self, name: &Name, faults: &mut Vec<Diagnostic>) -> Option<ElementId> {
+        let Some(index) = self.elements.get(&name.text) else {
+            let known = self.drafts.iter().filter(|draft| draft.class == Class::Inductor);
+            let known = known.map(|draft| draft.name.text.as_str());
+            let near = self.suggest(&name.text, known, faults.len());
+            faults.push(ask::unknown_element(name, near, false));
+            return None;
+        };
+        if self.drafts[*index].class != Class::Inductor {
+            faults.push(
+                Diagnostic::error(
+                    "inductors",
+                    name.span,
+                    format!("`{}` is no inductor", name.text),
+                )
+                .help("a coupling takes the names of two inductors"),
+            );
+            return None;
+        }
+        u32::try_from(*index).ok().map(ElementId)
+    }
+
     fn known_node(&self, name: &Name, faults: &mut Vec<Diagnostic>) -> Option<NodeId> {
         if let Some(node) = self.nodes.find(&name.text) {
             return Some(self.nodes.id(node));
@@ -517,7 +633,8 @@ impl<'s> Builder<'s> {
         None
     }
 
-    fn resolve_queries(&mut self, circuit: &mut Circuit) {
+    /// Resolves the questions; returns the names of all, also of those that cannot be answered.
+    fn resolve_queries(&mut self, circuit: &mut Circuit) -> FxHashMap<String, Span> {
         let resolver = Resolver::new(circuit);
         let mut asks = Vec::new();
         let mut names: FxHashMap<String, Span> = FxHashMap::default();
@@ -559,103 +676,7 @@ impl<'s> Builder<'s> {
             }
         }
         circuit.asks = asks;
-    }
-
-    fn warn(&mut self, circuit: &Circuit) {
-        let mut warnings = Vec::new();
-        let declared: Vec<&str> = self
-            .definitions
-            .list
-            .iter()
-            .filter(|definition| !definition.implicit || definition.uses > 1)
-            .map(|definition| definition.name.as_str())
-            .collect();
-        let implicit =
-            self.definitions.list.iter().filter(|definition| definition.implicit).count();
-        for definition in &self.definitions.list {
-            let name = &definition.name;
-            if implicit.saturating_mul(declared.len()) < MOST_COMPARED
-                && definition.implicit
-                && definition.uses == 1
-            {
-                if let Some(near) = nearest(name, declared.iter().copied()) {
-                    warnings.push(
-                        Diagnostic::warning(
-                            "near-miss",
-                            definition.span,
-                            format!("`{name}` is used once and declared nowhere"),
-                        )
-                        .help(format!("is it `{near}`? If not, declare it: `let {name}`")),
-                    );
-                }
-            } else if definition.by_let && definition.uses == 0 {
-                warnings.push(
-                    Diagnostic::warning(
-                        "unused",
-                        definition.span,
-                        format!("`{name}` is declared and never used"),
-                    )
-                    .help("remove the line, or use the name"),
-                );
-            }
-        }
-        self.warn_open_ends(circuit, &mut warnings);
-        self.faults.append(&mut warnings);
-    }
-
-    /// An element with one end on nothing else does nothing, unless that node is asked for.
-    fn warn_open_ends(&self, circuit: &Circuit, warnings: &mut Vec<Diagnostic>) {
-        let mut touched = vec![0_u32; circuit.nodes.len()];
-        let mut touch = |node: NodeId, times: u32| touched[node.0 as usize] += times;
-        touch(GROUND, 2);
-        for element in &circuit.elements {
-            touch(element.plus, 1);
-            touch(element.minus, 1);
-            match &element.law {
-                Law::Nullor(a, b) => {
-                    touch(*a, 1);
-                    touch(*b, 1);
-                }
-                Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls) => {
-                    for control in controls {
-                        if let crate::circuit::Quantity::Voltage(a, b) = control.quantity {
-                            touch(a, 1);
-                            touch(b, 1);
-                        }
-                    }
-                }
-                _ => {}
-            }
-        }
-        for node in circuit.asks.iter().flat_map(ask::nodes) {
-            touch(node, 2);
-        }
-        for (element, draft) in circuit.elements.iter().zip(&self.drafts) {
-            // A transistor tied as a diode has such parts by right.
-            if element.name.contains('.') {
-                continue;
-            }
-            if element.plus == element.minus {
-                warnings.push(Diagnostic::warning(
-                    "both-ends",
-                    draft.name.span,
-                    format!("both ends of `{}` are on one node", element.name),
-                ));
-                continue;
-            }
-            for node in [element.plus, element.minus] {
-                if touched[node.0 as usize] == 1 {
-                    warnings.push(Diagnostic::warning(
-                        "open-end",
-                        draft.name.span,
-                        format!(
-                            "nothing else is tied to `{}` at node `{}`",
-                            element.name, circuit[node].name
-                        ),
-                    ));
-                }
-            }
-        }
+        names
     }
 }
 
@@ -708,6 +729,14 @@ pub(crate) fn make_band(from: &Quantity, to: &Quantity) -> Result<Band, Diagnost
         ));
     }
     Ok(Band { from: from.value.clone(), to: to.value.clone() })
+}
+
+/// Whether `I(…)` of such an element means something.
+pub(crate) fn has_one_current(class: Class) -> bool {
+    !matches!(
+        class,
+        Class::Opamp | Class::Nullor | Class::Transformer | Class::Gyrator | Class::Mutual
+    )
 }
 
 fn controlled(class: Class, controls: Vec<Control>) -> Law {

@@ -8,18 +8,23 @@
 //! May use: [`crate::circuit`].
 
 mod ask;
+mod bias;
+mod blocks;
 mod build;
 mod claim;
 mod codes;
 mod definitions;
 mod devices;
 mod diagnostic;
+mod expand;
 mod expression;
 mod fault;
 mod names;
 mod nodes;
 mod parse;
 mod quantity;
+mod queries;
+mod scope;
 mod source;
 mod sources;
 mod symbols;
@@ -28,13 +33,15 @@ mod syntax;
 mod tests;
 mod units;
 mod walks;
+mod warnings;
 
+pub use claim::{UnitClash, claim_units};
 pub use codes::CODES;
 pub use diagnostic::{
     Diagnostic, Label, MOST_SHOWN, Severity, Span, line_and_column, render, render_all,
 };
 
-use crate::circuit::{Ask, Band, Circuit, Number, Unit, Value};
+use crate::circuit::{Ask, Band, Circuit, Limit, Number, Unit, Value};
 use build::Builder;
 use parse::{Reader, Rule};
 use source::Source;
@@ -102,6 +109,23 @@ pub fn band(text: &str) -> Result<Band, Vec<Diagnostic>> {
 /// What cannot be read; spans are places in `text`.
 pub fn quantity(text: &str) -> Result<(Number, Option<Unit>), Vec<Diagnostic>> {
     quantity::whole(text).map_err(|fault| vec![fault])
+}
+
+/// Reads a limit of the command line: `A0 to infinity`.
+///
+/// # Errors
+/// What cannot be read or is unknown; spans are places in `text`.
+pub fn limit(circuit: &Circuit, text: &str) -> Result<Limit, Vec<Diagnostic>> {
+    let source = Source::new(text);
+    let mut faults = Vec::new();
+    let range = 0..source.text.len();
+    let read = parse::tokens(&source, &range, Rule::limit_text, &mut faults).and_then(|pair| {
+        Reader { source: &source, offset: 0, faults: &mut faults }.limit(pair.into_inner())
+    });
+    match read {
+        Some((name, point)) => claim::limit(circuit, &name, point).map_err(|fault| vec![fault]),
+        None => Err(faults),
+    }
 }
 
 /// Reads an expression over the symbols of a circuit, as a claim or a printed result holds it.

@@ -18,6 +18,8 @@ pub(crate) struct Name {
 pub(crate) struct Statement {
     pub(crate) kind: StatementKind,
     pub(crate) span: Span,
+    /// For a line of a block: where the block is used. Such a line may hold dotted names.
+    pub(crate) used: Option<Span>,
 }
 
 #[derive(Debug)]
@@ -27,7 +29,8 @@ pub(crate) enum StatementKind {
     Walk(Vec<Step>),
     Device(Device),
     Ask(Query),
-    Claim(Name, Expression),
+    /// The name, the formula, and where all of it stands.
+    Claim(Name, Expression, Span),
     Let(Name, Option<Box<Content>>),
     Limit(Name, LimitPoint),
     Band(Box<(Quantity, Quantity)>),
@@ -35,6 +38,8 @@ pub(crate) enum StatementKind {
     BlockStart(Block),
     BlockEnd,
     Use(Device),
+    /// The name of a block that has been put in.
+    Instance(Name),
 }
 
 /// Where a limit goes.
@@ -49,18 +54,19 @@ pub(crate) enum LimitPoint {
 pub(crate) struct Block {
     pub(crate) name: Name,
     pub(crate) terminals: Vec<Name>,
-    pub(crate) parameters: Vec<Name>,
+    /// With their defaults.
+    pub(crate) parameters: Vec<(Name, Option<Content>)>,
 }
 
 /// What stands between two `>`: one node, or elements joined by `||`.
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub(crate) struct Step {
     pub(crate) parts: Vec<Part>,
     pub(crate) span: Span,
 }
 
 /// `in`, `R1`, `voltage Vin`, `R1 = 10 kΩ`.
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub(crate) struct Part {
     /// One word, or a class word and a name.
     pub(crate) words: Vec<Name>,
@@ -69,14 +75,14 @@ pub(crate) struct Part {
 }
 
 /// `KIND NAME: item, item`; also `use BLOCK NAME: item, item`.
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub(crate) struct Device {
     pub(crate) kind: Name,
     pub(crate) name: Name,
     pub(crate) items: Vec<Item>,
 }
 
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub(crate) enum Item {
     /// `base b`, `primary a b`, or a bare parameter `gm`.
     Role(Vec<Name>),
@@ -136,5 +142,9 @@ pub(crate) enum ExpressionKind {
 pub(crate) struct Argument {
     /// The names, when it is nothing but names (`a`, `a b`).
     pub(crate) names: Vec<Name>,
+    /// What it is as a value, where a value may stand.
+    pub(crate) value: Option<Box<Content>>,
+    /// With even spaces.
+    pub(crate) text: String,
     pub(crate) span: Span,
 }

@@ -11,7 +11,7 @@ use num_complex::Complex;
 
 use super::{
     Assignment, Fraction, NumericError, Origin, PRIMES, PointAnswer, PrimeField, Sweep, exact,
-    frequencies, modular_value,
+    frequencies, lowered, modular_value,
     values::{Generator, images},
 };
 use crate::circuit::{Circuit, Number, Transfer};
@@ -226,7 +226,8 @@ fn floating(
 ) -> Result<FloatingEvidence, NumericError> {
     let hertz = frequencies(circuit, assignment, POINTS);
     let values = assignment.floats();
-    let mut sweep = Sweep::new(circuit, transfer, &values)?;
+    let plain = lowered(circuit);
+    let mut sweep = Sweep::new(&plain, transfer, &values)?;
     let mut result = FloatingEvidence {
         points: 0,
         from_hz: hertz.first().copied().unwrap_or(0.0),

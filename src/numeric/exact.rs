@@ -11,7 +11,7 @@ use num_traits::{One, Zero};
 use super::network::{Form, Network, System, summed};
 use super::polynomial::{Polynomial, Quotient, Quotients};
 use super::values::images;
-use super::{Field, NumericError};
+use super::{Field, NumericError, lowered};
 use crate::circuit::{Circuit, Number, Transfer};
 
 /// Bound of unknowns³ · (degree + 1)² up to which the exact solve stays within about a second.
@@ -37,7 +37,7 @@ pub fn exact_is_affordable(
     transfer: &Transfer,
     numbers: &[Number],
 ) -> Result<bool, NumericError> {
-    Ok(Matrix::new(circuit, transfer, numbers)?.is_affordable())
+    Ok(Matrix::new(&lowered(circuit), transfer, numbers)?.is_affordable())
 }
 
 /// The transfer as a rational function of s at these numbers, indexed by symbol.
@@ -51,7 +51,8 @@ pub fn exact(
     transfer: &Transfer,
     numbers: &[Number],
 ) -> Result<Fraction, NumericError> {
-    let matrix = Matrix::new(circuit, transfer, numbers)?;
+    let circuit = lowered(circuit);
+    let matrix = Matrix::new(&circuit, transfer, numbers)?;
     if !matrix.is_affordable() {
         return Err(NumericError::TooLarge);
     }

@@ -16,7 +16,7 @@ use num_traits::ToPrimitive;
 
 use super::field::size;
 use super::network::{Form, Network, System, summed};
-use super::{Assignment, Complexes, Field, NumericError, Origin, Rationals, evaluate};
+use super::{Assignment, Complexes, Field, NumericError, Origin, Rationals, evaluate, lowered};
 use crate::circuit::{Circuit, Class, Law, Number, Transfer};
 use factors::{Factors, Plan};
 
@@ -61,7 +61,8 @@ struct Solved {
 }
 
 impl<'a> Sweep<'a> {
-    /// Checks the question; `values` is indexed by symbol.
+    /// Checks the question; `values` is indexed by symbol, and the circuit has no magnetic elements
+    /// (see [`lowered`]).
     ///
     /// # Errors
     /// Those of [`super::grounded_nodes`].
@@ -257,7 +258,8 @@ pub fn response(
     frequencies: &[f64],
     values: &[f64],
 ) -> Result<Vec<C>, NumericError> {
-    let mut sweep = Sweep::new(circuit, transfer, values)?;
+    let circuit = lowered(circuit);
+    let mut sweep = Sweep::new(&circuit, transfer, values)?;
     frequencies
         .iter()
         .map(|hertz| sweep.value(C::new(0.0, std::f64::consts::TAU * hertz)))
@@ -310,7 +312,7 @@ fn corner_range(circuit: &Circuit, numbers: &[Number]) -> (f64, f64) {
             Class::Conductance | Class::Admittance => resistances.push(1.0 / value),
             Class::Capacitor => capacitances.push(value),
             Class::Inductor => inductances.push(value),
-            Class::Voltage | Class::Current | Class::Opamp => {}
+            _ => {}
         }
     }
     let ends = |values: &[f64]| {

@@ -12,6 +12,7 @@ mod crosscheck;
 mod exact;
 mod field;
 mod floating;
+mod lower;
 mod modular;
 mod network;
 mod polynomial;
@@ -27,6 +28,7 @@ pub use crosscheck::{Candidate, ExactEvidence, ExactKind, FloatingEvidence, Repo
 pub use exact::{Fraction, exact, exact_is_affordable};
 pub use field::{Complexes, Field, PrimeField, Rationals};
 pub use floating::{PointAnswer, Sweep, frequencies, response};
+pub use lower::lowered;
 pub use modular::{PRIMES, modular_value};
 pub use network::grounded_nodes;
 pub use values::{Assignment, Origin, evaluate, used_symbols};

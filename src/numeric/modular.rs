@@ -6,7 +6,7 @@
 
 use super::network::{Form, Network, System, summed};
 use super::sparse::eliminate;
-use super::{Field, NumericError, PrimeField};
+use super::{Field, NumericError, PrimeField, lowered};
 use crate::circuit::{Circuit, Transfer};
 
 /// The four largest primes below 2^61.
@@ -30,7 +30,8 @@ pub fn modular_value(
     s: u64,
     symbols: &[u64],
 ) -> Result<u64, NumericError> {
-    let network = Network::new(circuit, transfer)?;
+    let circuit = lowered(circuit);
+    let network = Network::new(&circuit, transfer)?;
     let field = PrimeField::new(prime);
     let reduced: Vec<u64> = symbols.iter().map(|value| value % field.prime()).collect();
     let system = network.assemble(&field, &reduced, &(s % field.prime()), Form::Compact)?;

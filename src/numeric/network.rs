@@ -129,7 +129,10 @@ impl<'a> Network<'a> {
             // A given current does not answer to a voltage: it joins nothing.
             let is_given = match &element.law {
                 Law::CurrentSource => true,
-                Law::ControlledCurrent(controls) => controls.is_empty(),
+                // A control from a node to itself is 0.
+                Law::ControlledCurrent(controls) => controls
+                    .iter()
+                    .all(|control| matches!(control.quantity, Quantity::Voltage(a, b) if a == b)),
                 _ => false,
             };
             if !is_given {
@@ -396,7 +399,8 @@ fn stamp<F: Field>(
         Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls) => {
             Stamp::Controls(controls.iter().map(|c| at(&c.gain)).collect::<Option<_>>()?)
         }
-        Law::VoltageSource | Law::CurrentSource | Law::Nullor(..) => Stamp::None,
+        // Magnetic elements were lowered before.
+        _ => Stamp::None,
     })
 }
 
@@ -427,7 +431,7 @@ pub(crate) fn summed<F: Field>(field: &F, row: &[(usize, F::Element)]) -> Vec<(u
 /// [`NumericError::Singular`] where such a part cannot be solved by itself,
 /// [`NumericError::Undetermined`] where a voltage between two parts is asked for.
 pub fn grounded_nodes(circuit: &Circuit, transfer: &Transfer) -> Result<Vec<NodeId>, NumericError> {
-    Ok(Network::new(circuit, transfer)?.grounded)
+    Ok(Network::new(&super::lowered(circuit), transfer)?.grounded)
 }
 
 fn check_ids(circuit: &Circuit, transfer: &Transfer) -> Result<(), NumericError> {

@@ -10,7 +10,7 @@ use num_bigint::BigInt;
 use num_traits::ToPrimitive;
 
 use super::{Field, NumericError};
-use crate::circuit::{Circuit, Law, Number, SymbolId, SymbolRole, Transfer, Value};
+use crate::circuit::{Circuit, Number, SymbolId, SymbolRole, Transfer, Value};
 
 /// The value at the given numbers; symbols are indexed by [`SymbolId`]. `None` where it divides
 /// by zero or names a symbol that has no number.
@@ -136,28 +136,13 @@ pub fn used_symbols(circuit: &Circuit, transfer: &Transfer) -> BTreeSet<SymbolId
         if transfer.removed.iter().any(|id| id.0 as usize == index) {
             continue;
         }
-        match &element.law {
-            Law::Impedance(value) | Law::Admittance(value) => collect(value, &mut used),
-            Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls) => {
-                controls.iter().for_each(|control| collect(&control.gain, &mut used));
-            }
-            Law::VoltageSource | Law::CurrentSource | Law::Nullor(..) => {}
+        for value in element.law.values() {
+            value.for_each_symbol(&mut |symbol| {
+                used.insert(symbol);
+            });
         }
     }
     used
-}
-
-fn collect(value: &Value, used: &mut BTreeSet<SymbolId>) {
-    match value {
-        Value::Symbol(id) => {
-            used.insert(*id);
-        }
-        Value::Number(_) | Value::S => {}
-        Value::Sum(parts) | Value::Product(parts) | Value::Parallel(parts) => {
-            parts.iter().for_each(|part| collect(part, used));
-        }
-        Value::Power(inner, _) | Value::Negative(inner) => collect(inner, used),
-    }
 }
 
 /// Numbers of the circuit in another field; the error names no element, as none is at fault.

@@ -61,9 +61,7 @@ fn sample(attempt: u64, count: usize, random: &mut Random) -> Vec<i64> {
     let below = |random: &mut Random, bound: u64| (random.word() % bound) as i64;
     match attempt {
         0 => vec![0; count],
-        1..4 => {
-            (0..count).map(|_| below(random, 4 * attempt as u64 + 1) - 2 * attempt as i64).collect()
-        }
+        1..4 => (0..count).map(|_| below(random, 4 * attempt + 1) - 2 * attempt as i64).collect(),
         _ => {
             let mut values = Vec::with_capacity(count);
             while values.len() < count {

@@ -3,7 +3,7 @@
 use num_bigint::BigInt;
 use proptest::prelude::*;
 
-use super::super::polynomial::tests::polynomial;
+use super::super::polynomial::tests::nonzero;
 use super::*;
 
 /// A product of sums like those of network determinants: linear in all variables but the first.
@@ -16,6 +16,7 @@ fn linear_factor(variables: u32) -> BoxedStrategy<Polynomial> {
                 (std::iter::once((Var::S, power)).chain(others), BigInt::from(coefficient))
             }))
         })
+        .prop_map(|value| if value.is_zero() { Polynomial::one() } else { value })
         .boxed()
 }
 
@@ -34,9 +35,8 @@ proptest! {
 
     #[test]
     fn planted_factors(
-        a in polynomial(3, 2, 5), b in polynomial(3, 2, 5), c in polynomial(3, 2, 5),
+        a in nonzero(3, 2, 5), b in nonzero(3, 2, 5), c in nonzero(3, 2, 5),
     ) {
-        prop_assume!(!a.is_zero() && !b.is_zero() && !c.is_zero());
         check(&(&a * &c), &(&b * &c), &c);
     }
 
@@ -44,13 +44,12 @@ proptest! {
     fn planted_linear_factors(
         a in linear_factor(6), b in linear_factor(6), c in linear_factor(6), d in linear_factor(3),
     ) {
-        prop_assume!(![&a, &b, &c, &d].into_iter().any(Polynomial::is_zero));
         check(&(&(&a * &c) * &d), &(&(&b * &c) * &d), &(&c * &d));
     }
 
     #[test]
     fn methods_agree(
-        a in polynomial(3, 2, 4), b in polynomial(3, 2, 4), c in polynomial(3, 2, 4),
+        a in nonzero(3, 2, 4), b in nonzero(3, 2, 4), c in nonzero(3, 2, 4),
     ) {
         let (a, b) = (&a * &c, &b * &c);
         prop_assert_eq!(gcd(&a, &b), subresultant_gcd(&a, &b));
@@ -58,7 +57,6 @@ proptest! {
 
     #[test]
     fn homogeneous_operands(a in linear_factor(2), b in linear_factor(2), c in linear_factor(2)) {
-        prop_assume!(![&a, &b, &c].into_iter().any(Polynomial::is_zero));
         // Replacing s by s·T and x1 by x1·U makes both operands homogeneous in each pair.
         let graded = |value: &Polynomial| {
             let (degree, linear) = (value.degree(Var(0)), value.degree(Var(1)));

@@ -3,16 +3,23 @@
 //! - A single term shifts the other operand: linear.
 //! - Where the products of terms fill most of the box of possible exponents, they are added into a
 //!   plain array indexed by mixed radix (Kronecker 1882): one addition a product.
-//! - Otherwise the rows `aᵢ·B`, each sorted already, are merged in pairs like a merge sort
+//! - Where the rows `aᵢ·B` overlap a good deal and monomials are short, the products are formed in
+//!   large blocks and put in order by a radix sort: linear in their number.
+//! - Otherwise the rows, each sorted already, are merged in pairs like a merge sort
 //!   (schoolbook, Johnson 1974): `n·m·log n` word comparisons, like terms met early; rows that
 //!   do not overlap, the common case for different variables, are only put one after the other.
 //!
 //! Coefficients are accumulated in 64 or 128 bits where a bound on their size allows it, else in
 //! big integers.
 
+use std::cmp::Ordering;
+
 use num_bigint::BigInt;
 
 use super::{Integer, Key, Layout, LongKey, Packing, Polynomial};
+
+/// Products that are sorted at once: bounds the memory beside the result.
+const BLOCK: usize = 1 << 21;
 
 /// What coefficients are accumulated in.
 pub(super) trait Accumulator: Clone + Default {
@@ -210,12 +217,31 @@ fn sparse<K: Key, A: Accumulator>(a: &Polynomial, b: &Polynomial, layout: Layout
     let columns: Vec<K> = Packing::new(&b.layout, &layout).keys(b.len(), &b.words);
     let left: Vec<_> = a.coefficients.iter().map(A::operand).collect();
     let right: Vec<_> = b.coefficients.iter().map(A::operand).collect();
-    // The stack holds merged blocks of 2^k rows with falling k, like the digits of a counter.
+    // Blocks of rows that a radix sort puts in order, or single rows.
+    let digits = digits::<K>(&rows, &columns);
+    let overlaps = (1..rows.len())
+        .filter(|&row| {
+            rows[row - 1].times(&columns[columns.len() - 1]) <= rows[row].times(&columns[0])
+        })
+        .count();
+    let levels = (usize::BITS - rows.len().leading_zeros()) as usize;
+    let sorting = !digits.is_empty()
+        && rows.len() < 2 * overlaps
+        && digits.len() < 2 * levels
+        && columns.len() >= 64;
+    let height = if sorting { (BLOCK / columns.len()).max(1) } else { 1 };
+    // The stack holds 2^k merged blocks with falling k, like the digits of a counter.
     let mut stack: Vec<(u32, Vec<(K, A)>)> = Vec::new();
-    for (row, x) in rows.iter().zip(&left) {
-        let products =
-            columns.iter().zip(&right).map(|(key, y)| (row.times(key), A::product(x, y)));
-        let mut block = (0, products.collect::<Vec<_>>());
+    for (rows, left) in rows.chunks(height).zip(left.chunks(height)) {
+        let mut products = Vec::with_capacity(rows.len() * columns.len());
+        for (row, x) in rows.iter().zip(left) {
+            let row = columns.iter().zip(&right).map(|(key, y)| (row.times(key), A::product(x, y)));
+            products.extend(row);
+        }
+        if height > 1 {
+            products = sorted(products, &digits);
+        }
+        let mut block = (0, products);
         while let Some(top) = stack.pop_if(|top| top.0 == block.0) {
             block = (block.0 + 1, merged(top.1, block.1));
         }
@@ -226,32 +252,82 @@ fn sparse<K: Key, A: Accumulator>(a: &Polynomial, b: &Polynomial, layout: Layout
     Polynomial::from_sorted(layout, terms.into_iter().map(|(key, sum)| (key, sum.finish())))
 }
 
+/// The bytes, last one first, in which sums of keys can differ.
+fn digits<K: Key>(rows: &[K], columns: &[K]) -> Vec<usize> {
+    let used = |place: &usize| rows.iter().chain(columns).any(|key| key.byte(*place) != 0);
+    // A carry within a field can reach one byte further than the operands do.
+    let places: Vec<usize> = (0..K::BYTES).filter(used).collect();
+    let mut digits: Vec<usize> = places.iter().flat_map(|&place| [place, place + 1]).collect();
+    digits.dedup();
+    digits.retain(|&place| place < K::BYTES);
+    digits
+}
+
+/// Sorts by the given bytes in descending order, last byte first, and adds like terms (radix sort,
+/// Hollerith 1889).
+fn sorted<K: Key, A: Accumulator>(mut terms: Vec<(K, A)>, digits: &[usize]) -> Vec<(K, A)> {
+    let mut other = terms.clone();
+    for &digit in digits {
+        let mut starts = [0_usize; 256];
+        for term in &terms {
+            starts[usize::from(255 - term.0.byte(digit))] += 1;
+        }
+        let mut total = 0;
+        for start in &mut starts {
+            total += std::mem::replace(start, total);
+        }
+        for (key, sum) in &mut terms {
+            let start = &mut starts[usize::from(255 - key.byte(digit))];
+            other[*start] = (key.clone(), std::mem::take(sum));
+            *start += 1;
+        }
+        std::mem::swap(&mut terms, &mut other);
+    }
+    terms.dedup_by(|next, kept| {
+        let same = next.0 == kept.0;
+        if same {
+            kept.1.add(&next.1);
+        }
+        same
+    });
+    terms.retain(|term| !term.1.is_zero());
+    terms
+}
+
 /// Merges two descending lists; like terms are added.
-fn merged<K: Key, A: Accumulator>(mut upper: Vec<(K, A)>, lower: Vec<(K, A)>) -> Vec<(K, A)> {
+fn merged<K: Key, A: Accumulator>(mut upper: Vec<(K, A)>, mut lower: Vec<(K, A)>) -> Vec<(K, A)> {
     match (upper.last(), lower.first()) {
         (Some(last), Some(first)) if last.0 <= first.0 => {}
         _ => {
-            upper.extend(lower);
+            upper.append(&mut lower);
             return upper;
         }
     }
     let mut result = Vec::with_capacity(upper.len() + lower.len());
-    let (mut left, mut right) = (upper.into_iter().peekable(), lower.into_iter().peekable());
-    while let (Some(a), Some(b)) = (left.peek(), right.peek()) {
-        match a.0.cmp(&b.0) {
-            std::cmp::Ordering::Greater => result.extend(left.next()),
-            std::cmp::Ordering::Less => result.extend(right.next()),
-            std::cmp::Ordering::Equal => {
-                if let (Some(mut a), Some(b)) = (left.next(), right.next()) {
-                    a.1.add(&b.1);
-                    if !a.1.is_zero() {
-                        result.push(a);
-                    }
+    let (mut i, mut j) = (0, 0);
+    while i < upper.len() && j < lower.len() {
+        let (left, right) = (&mut upper[i], &mut lower[j]);
+        match left.0.cmp(&right.0) {
+            Ordering::Greater => {
+                result.push((left.0.clone(), std::mem::take(&mut left.1)));
+                i += 1;
+            }
+            Ordering::Less => {
+                result.push((right.0.clone(), std::mem::take(&mut right.1)));
+                j += 1;
+            }
+            Ordering::Equal => {
+                let mut sum = std::mem::take(&mut left.1);
+                sum.add(&right.1);
+                if !sum.is_zero() {
+                    result.push((left.0.clone(), sum));
                 }
+                i += 1;
+                j += 1;
             }
         }
     }
-    result.extend(left);
-    result.extend(right);
+    result.extend(upper.drain(i..));
+    result.extend(lower.drain(j..));
     result
 }

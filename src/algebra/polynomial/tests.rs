@@ -28,6 +28,12 @@ pub(crate) fn polynomial(variables: u32, degree: u32, terms: usize) -> BoxedStra
         .boxed()
 }
 
+/// The same without 0.
+pub(crate) fn nonzero(variables: u32, degree: u32, terms: usize) -> BoxedStrategy<Polynomial> {
+    let any = polynomial(variables, degree, terms);
+    any.prop_map(|value| if value.is_zero() { Polynomial::one() } else { value }).boxed()
+}
+
 fn canonical(value: Polynomial) -> Polynomial {
     value.assert_canonical();
     value
@@ -141,4 +147,32 @@ fn powers_and_edges() {
     assert_eq!(Polynomial::zero().divide_exact(&x), Some(Polynomial::zero()));
     assert_eq!(x.divide_exact(&Polynomial::zero()), None);
     assert_eq!(Polynomial::from(i64::MIN).primitive_part(), Polynomial::one());
+}
+
+/// Operands beyond the limits of the small methods: sparse, and filling their box.
+#[test]
+fn large_operands() {
+    let sum = |numbers: &[u32]| {
+        Polynomial::sum(numbers.iter().map(|&number| Polynomial::variable(Var(number))))
+    };
+    let sparse = |shift: u32| {
+        (0..6).fold(Polynomial::one(), |all, place| {
+            let factor = sum(&[shift + place, shift + 7 * place + 3]);
+            &(&all * &factor) + &Polynomial::variable(Var(place))
+        })
+    };
+    let (a, b) = (canonical(sparse(0)), canonical(sparse(11)));
+    let product = canonical(&a * &b);
+    assert!(product.len() > 4096);
+    assert_eq!(product.divide_exact(&a).map(canonical), Some(b.clone()));
+    assert_eq!((&product + &Polynomial::one()).divide_exact(&a), None);
+    let at = |var: Var| BigRational::from(BigInt::from(var.0 % 5 + 2));
+    assert_eq!(product.evaluate(at), a.evaluate(at) * b.evaluate(at));
+
+    let dense = &sum(&[0, 1, 2]) + &Polynomial::from(3);
+    let (a, b) = (dense.pow(9), &dense.pow(12) - &Polynomial::one());
+    let product = canonical(&a * &b);
+    assert_eq!(product.divide_exact(&b).map(canonical), Some(a.clone()));
+    assert_eq!((&product - &Polynomial::one()).divide_exact(&b), None);
+    assert_eq!(product.evaluate(at), a.evaluate(at) * b.evaluate(at));
 }

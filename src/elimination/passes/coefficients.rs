@@ -95,6 +95,7 @@ pub(crate) fn of(
     let skipped = |from: usize, to: usize| -> BigInt {
         factor_at[from..to].iter().filter(|factor| !factor.is_one()).product()
     };
+    let mut uses = diagram.uses();
     let mut values: Vec<Coefficients> = vec![vec![BigInt::one()]];
     for node in 1..diagram.len() {
         let mut sum = Coefficients::new();
@@ -115,6 +116,11 @@ pub(crate) fn of(
                 for (at, value) in values[child].iter().enumerate() {
                     sum[at + power] += value * &weight;
                 }
+            }
+            // What no parent needs any more is dropped; the determinant 1 stays.
+            uses[child] -= 1;
+            if uses[child] == 0 && child != 0 {
+                values[child] = Coefficients::new();
             }
         }
         values.push(sum);

@@ -9,7 +9,7 @@
 use num_bigint::BigInt;
 use num_traits::ToPrimitive;
 
-use super::{Ring, at, values};
+use super::{Ring, at_links};
 use crate::algebra::{Polynomial, Var};
 use crate::elimination::diagram::{Diagram, Link};
 
@@ -44,8 +44,7 @@ pub(crate) fn collected(
     weights: &[Polynomial],
     roots: &[Link],
 ) -> Vec<Polynomial> {
-    let values = values(&Polynomials, diagram, weights);
-    roots.iter().map(|&root| at(&Polynomials, &values, root)).collect()
+    at_links(&Polynomials, diagram, weights, roots)
 }
 
 /// A set of symbols, and a sign in its highest bit.

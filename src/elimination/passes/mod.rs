@@ -47,6 +47,41 @@ pub(crate) fn values<R: Ring>(ring: &R, diagram: &Diagram, weights: &[R::Weight]
     values
 }
 
+/// The values of some links alone: what no parent needs any more is dropped at once, so that long
+/// values (polynomials, counts by powers of `s`) are held for a frontier of the diagram only.
+pub(crate) fn at_links<R: Ring>(
+    ring: &R,
+    diagram: &Diagram,
+    weights: &[R::Weight],
+    links: &[Link],
+) -> Vec<R::Value> {
+    let mut uses = diagram.uses();
+    let mut values: Vec<Option<R::Value>> = Vec::with_capacity(diagram.len());
+    values.push(Some(ring.one()));
+    for node in 1..diagram.len() {
+        let mut sum = ring.zero();
+        for edge in diagram.edges(node) {
+            let (child, weight) = (edge.link.node(), &weights[edge.weight as usize]);
+            if let Some(value) = &values[child] {
+                ring.add(&mut sum, weight, value, edge.link.is_negative());
+            }
+            uses[child] -= 1;
+            if uses[child] == 0 {
+                values[child] = None;
+            }
+        }
+        values.push(Some(sum));
+    }
+    links
+        .iter()
+        .map(|&link| match values.get(link.node()).filter(|_| !link.is_dead()) {
+            Some(Some(value)) if link.is_negative() => ring.negate(value),
+            Some(Some(value)) => value.clone(),
+            _ => ring.zero(),
+        })
+        .collect()
+}
+
 /// The value that a link stands for.
 pub(crate) fn at<R: Ring>(ring: &R, values: &[R::Value], link: Link) -> R::Value {
     if link.is_dead() {

@@ -48,7 +48,7 @@ pub fn result(answer: &Answer<'_>) -> DeriveResult {
     let mut ratios = answer.parts().map(|(transfer, derivation)| {
         (answer.source(transfer), ratio(answer, transfer, derivation, &names))
     });
-    let body = if answer.ask.superposition {
+    let body = if answer.ask.is_superposition() {
         JsonAnswer::Superposition {
             by_source: ratios
                 .map(|(source, ratio)| SourceRatio {

@@ -14,7 +14,7 @@ pub fn latex(answer: &Answer<'_>) -> String {
     let mut out = String::new();
     for (transfer, derivation) in answer.parts() {
         let mut left = name(&answer.ask.name);
-        if let Some(source) = answer.source(transfer).filter(|_| answer.ask.superposition) {
+        if let Some(source) = answer.source(transfer).filter(|_| answer.ask.is_superposition()) {
             let _ = write!(left, "\\big|_{{{}}}", name(source));
         }
         let written = answer.written(derivation);

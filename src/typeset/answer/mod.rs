@@ -40,7 +40,7 @@ impl<'a> Answer<'a> {
 
     /// Transfer functions and their derivations.
     fn parts(&self) -> impl Iterator<Item = (&'a Transfer, &'a Derivation)> {
-        self.ask.transfers.iter().zip(self.derivations)
+        self.ask.transfers().iter().zip(self.derivations)
     }
 
     /// The name of the source that drives a transfer function.
@@ -62,9 +62,12 @@ impl<'a> Answer<'a> {
 }
 
 /// Which letters the circuit's variables are.
-pub fn lettering(circuit: &Circuit) -> Lettering {
+pub fn lettering(circuit: &Circuit) -> Lettering<'_> {
     let pi = circuit.symbols.iter().zip(0_u32..).find(|(symbol, _)| symbol.role == SymbolRole::Pi);
-    Lettering { pi: pi.map(|(_, index)| variable_of(crate::circuit::SymbolId(index))) }
+    Lettering {
+        pi: pi.map(|(_, index)| variable_of(crate::circuit::SymbolId(index))),
+        symbols: &circuit.symbols,
+    }
 }
 
 /// What a function does at one end of the frequency axis: factor · s^power.
@@ -74,7 +77,7 @@ pub(crate) struct Asymptote {
 }
 
 /// Behaviour towards s = 0 and towards s = ∞; `None` for a nested form or the function 0.
-pub(crate) fn asymptotes(form: &ClosedForm, letters: Lettering) -> Option<[Asymptote; 2]> {
+pub(crate) fn asymptotes(form: &ClosedForm, letters: Lettering<'_>) -> Option<[Asymptote; 2]> {
     let ClosedForm::Expanded(fraction) = form else { return None };
     if fraction.is_zero() {
         return None;

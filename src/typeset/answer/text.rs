@@ -27,6 +27,9 @@ impl TextStyle {
     }
 }
 
+/// Digits of a number of terms that are printed.
+const LONGEST_COUNT: usize = 60;
+
 /// One answer: formulas, numbers, evidence.
 pub fn text(answer: &Answer<'_>, style: TextStyle) -> String {
     let names = answer.names();
@@ -44,7 +47,7 @@ pub fn text(answer: &Answer<'_>, style: TextStyle) -> String {
             facts(&mut out, answer, transfer, derivation, &names, style);
         }
     }
-    if answer.ask.superposition && !style.quiet {
+    if answer.ask.is_superposition() && !style.quiet {
         let _ = writeln!(out, "\n{}", superposition(answer));
     }
     out
@@ -53,7 +56,7 @@ pub fn text(answer: &Answer<'_>, style: TextStyle) -> String {
 /// `H`, or `H[Vin]` for a source's share in a superposition.
 fn label(answer: &Answer<'_>, transfer: &Transfer) -> String {
     match answer.source(transfer) {
-        Some(source) if answer.ask.superposition => format!("{}[{source}]", answer.ask.name),
+        Some(source) if answer.ask.is_superposition() => format!("{}[{source}]", answer.ask.name),
         _ => answer.ask.name.clone(),
     }
 }
@@ -65,7 +68,7 @@ fn heading(answer: &Answer<'_>, transfer: &Transfer, name: &str, style: TextStyl
         format!("   in {}", unit_text(transfer.unit, style))
     };
     let query = match answer.source(transfer) {
-        Some(source) if answer.ask.superposition => format!("{} / {source}", answer.ask.text),
+        Some(source) if answer.ask.is_superposition() => format!("{} / {source}", answer.ask.text),
         _ => answer.ask.text.clone(),
     };
     format!("{name}: {query}{unit}\n")
@@ -112,7 +115,7 @@ fn facts(
 ) {
     out.push('\n');
     let mut fact = |title: &str, text: String| {
-        let _ = writeln!(out, "  {title:<16}{text}");
+        let _ = writeln!(out, "  {title:<18}{text}");
     };
     if let Some(numeric) = &derivation.numeric {
         fact("with numbers", numbers(numeric, style));
@@ -123,8 +126,14 @@ fn facts(
         fact("towards infinity", asymptote(&high, transfer.unit, names, style, derivation, true));
     }
     if let ClosedForm::Nested(_) = derivation.form {
-        let count = total(&derivation.counts);
+        let count = total(&derivation.counts).to_string();
         let about = if derivation.counts.exact { "" } else { "at most " };
+        // Hundreds of digits help nobody; JSON has them all.
+        let count = if count.len() <= LONGEST_COUNT {
+            count
+        } else {
+            format!("about {}.{}e{}", &count[..1], &count[1..4], count.len() - 1)
+        };
         fact("expanded", format!("{about}{count} terms"));
     }
     fact("checked", evidence(&derivation.evidence));
@@ -231,7 +240,7 @@ fn superscript(power: usize) -> String {
 fn superposition(answer: &Answer<'_>) -> String {
     let shares: Vec<String> = answer
         .ask
-        .transfers
+        .transfers()
         .iter()
         .filter_map(|transfer| answer.source(transfer))
         .map(|source| format!("{}[{source}]*{source}", answer.ask.name))

@@ -1,49 +1,49 @@
-//! Bode's form: gain · s^k · (1 + …)/(1 + …).
+//! Gain · s^k · (1 + …)/(1 + …): corner frequencies stand where Bode's rules look for them.
 
+use super::compact::{Coefficients, product};
 use super::{Lettering, signed, with_s};
 use crate::algebra::{Fraction, Polynomial, Var};
 use crate::typeset::Formula;
 
-/// The shape `bode`: the constant that rules at low frequencies, a power of `s`, and a fraction of
-/// polynomials that begin with 1.
-pub fn bode(fraction: &Fraction, letters: Lettering) -> Formula {
+/// The shape `bode` (Bode 1945): the low-frequency behaviour as gain · s^k, then polynomials that
+/// begin with 1, all over one bar.
+pub fn bode(fraction: &Fraction, letters: Lettering<'_>) -> Formula {
     if fraction.is_zero() {
         return Formula::integer(0);
     }
     let (numerator, denominator) = signed(fraction);
+    let mut coefficients = Coefficients::new(&[&numerator, &denominator], letters);
     let (above, above_power) = lowest(&numerator);
     let (below, below_power) = lowest(&denominator);
-    let gain = ratio(&above, &below, letters);
+    let gain = coefficients.ratio(&above, &below);
     let s = Formula::power(Formula::s(), above_power as i32 - below_power as i32);
-    let numerator = from_one(&numerator, &above, above_power, letters);
-    let denominator = from_one(&denominator, &below, below_power, letters);
-    Formula::product([gain, s, Formula::quotient(numerator, denominator)])
+    let numerator = from_one(&numerator, &above, above_power, &mut coefficients);
+    let denominator = from_one(&denominator, &below, below_power, &mut coefficients);
+    product([gain, s, numerator, Formula::quotient(Formula::integer(1), denominator)])
 }
 
 /// The coefficient of the lowest power of `s`, and that power.
-fn lowest(polynomial: &Polynomial) -> (Polynomial, u32) {
+pub(super) fn lowest(polynomial: &Polynomial) -> (Polynomial, u32) {
     let power = polynomial.trailing_degree(Var::S);
     (polynomial.coefficient(Var::S, power), power)
 }
 
-/// a/b in lowest terms.
-pub(crate) fn ratio(a: &Polynomial, b: &Polynomial, letters: Lettering) -> Formula {
-    match Fraction::new(a, b) {
-        Some(fraction) => Formula::quotient(
-            letters.polynomial(fraction.numerator()),
-            letters.polynomial(fraction.denominator()),
-        ),
-        None => Formula::quotient(letters.polynomial(a), letters.polynomial(b)),
-    }
+/// 1 + s·(c₁/c₀) + s²·(c₂/c₀) + …
+pub(super) fn from_one(
+    polynomial: &Polynomial,
+    first: &Polynomial,
+    from: u32,
+    coefficients: &mut Coefficients<'_>,
+) -> Formula {
+    let parts = polynomial.coefficients(Var::S);
+    let terms = (0_u32..)
+        .zip(&parts)
+        .filter(|(power, part)| *power > from && !part.is_zero())
+        .map(|(power, part)| with_s(power - from, coefficients.ratio(part, first)));
+    Formula::sum(std::iter::once(Formula::integer(1)).chain(terms))
 }
 
-/// 1 + s·(c₁/c₀) + s²·(c₂/c₀) + …
-fn from_one(polynomial: &Polynomial, first: &Polynomial, from: u32, letters: Lettering) -> Formula {
-    let parts = polynomial.coefficients(Var::S);
-    let terms = parts
-        .iter()
-        .zip(0_u32..)
-        .filter(|(part, power)| *power > from && !part.is_zero())
-        .map(|(part, power)| with_s(power - from, ratio(part, first, letters)));
-    Formula::sum(std::iter::once(Formula::integer(1)).chain(terms))
+/// a/b in compact form.
+pub(crate) fn ratio(a: &Polynomial, b: &Polynomial, letters: Lettering<'_>) -> Formula {
+    Coefficients::new(&[a, b], letters).ratio(a, b)
 }

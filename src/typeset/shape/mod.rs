@@ -4,13 +4,19 @@
 //! of them have the same value. What they share is here: a polynomial written out, and the signs.
 
 mod bode;
+mod by_element;
+mod compact;
 mod nested;
 mod powers;
+mod product;
 
 pub use bode::bode;
 pub(crate) use bode::ratio;
+pub use by_element::by_element;
+pub use compact::compact;
 pub use nested::{Layered, nested};
 pub use powers::powers;
+pub use product::product;
 
 use num_bigint::BigInt;
 use num_rational::BigRational;
@@ -19,16 +25,24 @@ use num_traits::Signed;
 use super::{Formula, Letter};
 use crate::algebra::{Fraction, Polynomial, Var};
 use crate::analysis::ClosedForm;
+use crate::circuit::{Symbol, Unit};
 use crate::elimination::Elimination;
 
 /// Which letter a variable is.
 #[derive(Clone, Copy, Debug, Default)]
-pub struct Lettering {
+pub struct Lettering<'a> {
     /// The variable that stands for π, when there is one.
     pub pi: Option<Var>,
+    /// The symbols, for what they are by their nature; those beyond are taken for numbers.
+    pub symbols: &'a [Symbol],
 }
 
-impl Lettering {
+impl Lettering<'_> {
+    /// The unit of a symbol.
+    pub(crate) fn unit(self, symbol: u32) -> Unit {
+        self.symbols.get(symbol as usize).map_or(Unit::ONE, |symbol| symbol.unit)
+    }
+
     /// The letter of a variable: `s`, π, or the symbol one below the variable's number.
     pub fn letter(self, variable: Var) -> Letter {
         match variable.0.checked_sub(1) {
@@ -78,10 +92,19 @@ impl Lettering {
     }
 }
 
-/// Numerator and denominator with the sign that reads best: the denominator begins with a plus.
+/// Numerator and denominator with the sign that reads best: below the bar the lowest power of `s`
+/// is not negative; where it has both signs, the numerator decides.
 pub(crate) fn signed(fraction: &Fraction) -> (Polynomial, Polynomial) {
     let (n, d) = (fraction.numerator().clone(), fraction.denominator().clone());
-    if d.coefficient(Var::S, d.trailing_degree(Var::S)).is_negative() { (-n, -d) } else { (n, d) }
+    let balance = |polynomial: &Polynomial| -> i64 {
+        let lowest = polynomial.coefficient(Var::S, polynomial.trailing_degree(Var::S));
+        lowest.terms().map(|(_, coefficient)| if coefficient.is_negative() { -1 } else { 1 }).sum()
+    };
+    let sign = match balance(&d) {
+        0 => balance(&n),
+        balance => balance,
+    };
+    if sign < 0 { (-n, -d) } else { (n, d) }
 }
 
 /// s to a power, times something.
@@ -98,6 +121,10 @@ pub enum Shape {
     Powers,
     /// Gain, power of `s`, and polynomials that begin with 1.
     Bode,
+    /// Irreducible factors.
+    Product,
+    /// Coefficients as sums of reactive elements times what they see.
+    ByElement,
     /// Named sub-expressions.
     Nested,
 }
@@ -108,18 +135,20 @@ pub fn write(
     form: &ClosedForm,
     elimination: &Elimination,
     shape: Shape,
-    letters: Lettering,
+    letters: Lettering<'_>,
 ) -> Option<Layered> {
     let plain = |formula| Some(Layered { definitions: Vec::new(), formula });
     match (form, shape) {
         (ClosedForm::Expanded(fraction), Shape::Powers) => plain(powers(fraction, letters)),
         (ClosedForm::Expanded(fraction), Shape::Bode) => plain(bode(fraction, letters)),
-        (ClosedForm::Expanded(fraction), Shape::Compact) => {
-            let (powers, bode) = (powers(fraction, letters), bode(fraction, letters));
-            plain(if bode.symbols() < powers.symbols() { bode } else { powers })
-        }
+        (ClosedForm::Expanded(fraction), Shape::Product) => plain(product(fraction, letters)),
+        (ClosedForm::Expanded(fraction), Shape::ByElement) => plain(by_element(fraction, letters)),
+        (ClosedForm::Expanded(fraction), Shape::Compact) => plain(compact(fraction, letters)),
         (ClosedForm::Expanded(_), Shape::Nested) => Some(nested(&elimination.nested(), letters)),
         (ClosedForm::Nested(sums), Shape::Nested | Shape::Compact) => Some(nested(sums, letters)),
-        (ClosedForm::Nested(_), Shape::Powers | Shape::Bode) => None,
+        (ClosedForm::Nested(_), _) => None,
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -14,7 +14,7 @@ pub struct Layered {
 }
 
 /// The shape `nested`.
-pub fn nested(nested: &Nested, letters: Lettering) -> Layered {
+pub fn nested(nested: &Nested, letters: Lettering<'_>) -> Layered {
     let definitions = nested.definitions.iter().map(|sum| written(sum, letters)).collect();
     let formula = Formula::quotient(
         written(&nested.numerator, letters),
@@ -24,7 +24,7 @@ pub fn nested(nested: &Nested, letters: Lettering) -> Layered {
 }
 
 /// Sums nest only a few levels deep: the elimination names them beyond that.
-fn written(sum: &NestedSum, letters: Lettering) -> Formula {
+fn written(sum: &NestedSum, letters: Lettering<'_>) -> Formula {
     Formula::sum(sum.terms.iter().map(|(weight, factor)| {
         let factor = match factor {
             NestedFactor::One => Formula::integer(1),

@@ -210,7 +210,7 @@ pub fn result(answer: &Answer<'_>) -> RootsResult {
         Writer { circuit: answer.circuit, names: &names, letters: lettering(answer.circuit) };
     let mut functions =
         answer.parts().map(|(transfer, report)| (answer.source(transfer), writer.function(report)));
-    let body = if answer.ask.superposition {
+    let body = if answer.ask.is_superposition() {
         let share = |(source, function): (Option<&str>, Function)| Share {
             source: source.unwrap_or_default().to_owned(),
             function,
@@ -228,7 +228,7 @@ pub fn result(answer: &Answer<'_>) -> RootsResult {
 struct Writer<'a> {
     circuit: &'a Circuit,
     names: &'a SymbolTable,
-    letters: Lettering,
+    letters: Lettering<'a>,
 }
 
 impl Writer<'_> {

@@ -58,13 +58,13 @@ impl<'a> Answer<'a> {
     }
 
     fn parts(&self) -> impl Iterator<Item = (&'a Transfer, &'a Report)> {
-        self.ask.transfers.iter().zip(self.reports)
+        self.ask.transfers().iter().zip(self.reports)
     }
 
     /// The source whose share in a superposition this is.
     fn source(&self, transfer: &Transfer) -> Option<&'a str> {
         match transfer.drive {
-            Drive::Source(id) if self.ask.superposition => Some(&self.circuit[id].name),
+            Drive::Source(id) if self.ask.is_superposition() => Some(&self.circuit[id].name),
             _ => None,
         }
     }

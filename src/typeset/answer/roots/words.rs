@@ -6,7 +6,7 @@ use crate::typeset::Formula;
 use crate::typeset::shape::{Lettering, ratio, signed};
 
 /// A fraction in lowest terms as a formula.
-pub(super) fn fraction(value: &Fraction, letters: Lettering) -> Formula {
+pub(super) fn fraction(value: &Fraction, letters: Lettering<'_>) -> Formula {
     if value.is_zero() {
         return Formula::integer(0);
     }
@@ -15,7 +15,7 @@ pub(super) fn fraction(value: &Fraction, letters: Lettering) -> Formula {
 }
 
 /// 1 + s·b + s²·c: the quadratic that has a pair as roots.
-pub(super) fn quadratic([b, c]: &[Fraction; 2], letters: Lettering) -> Formula {
+pub(super) fn quadratic([b, c]: &[Fraction; 2], letters: Lettering<'_>) -> Formula {
     let s = Formula::s();
     Formula::sum([
         Formula::integer(1),
@@ -25,7 +25,7 @@ pub(super) fn quadratic([b, c]: &[Fraction; 2], letters: Lettering) -> Formula {
 }
 
 /// A formula that any program can read: the root, or the quadratic of a pair.
-pub(super) fn expression(approximation: &Approximation, letters: Lettering) -> Formula {
+pub(super) fn expression(approximation: &Approximation, letters: Lettering<'_>) -> Formula {
     match &approximation.form {
         Form::Real(value) => fraction(value, letters),
         Form::Pair(pair) => quadratic(&pair.quadratic, letters),
@@ -33,12 +33,12 @@ pub(super) fn expression(approximation: &Approximation, letters: Lettering) -> F
 }
 
 /// The two sides of `large ≫ small`.
-pub(super) fn sides(condition: &Condition, letters: Lettering) -> [Formula; 2] {
+pub(super) fn sides(condition: &Condition, letters: Lettering<'_>) -> [Formula; 2] {
     [letters.polynomial(&condition.large), letters.polynomial(&condition.small)]
 }
 
 /// A polynomial that must be positive, as its positive terms above its negative ones.
-pub(super) fn inequality(polynomial: &Polynomial, letters: Lettering) -> [Formula; 2] {
+pub(super) fn inequality(polynomial: &Polynomial, letters: Lettering<'_>) -> [Formula; 2] {
     let side = |positive: bool| {
         let terms = polynomial
             .terms()

@@ -1,0 +1,135 @@
+//! Gain, and corner or ω0 and Q of each section.
+//!
+//! Numerator and denominator are factored over the rational numbers; each factor is a section that
+//! begins with 1. First order, 1 + s·b₁: the corner is 1/b₁. Second order, 1 + s·b₁ + s²·b₂: ω0² = 1/b₂
+//! and Q² = b₂/b₁². Of a higher order that does not factor there is no such closed form, which is said.
+
+use num_rational::BigRational;
+use num_traits::{One, Signed, ToPrimitive};
+
+use super::bode::lowest;
+use super::compact::{Coefficients, factors, product};
+use super::{Lettering, with_s};
+use crate::algebra::{Fraction, Polynomial, Var};
+use crate::typeset::{Formula, Letter};
+
+/// A quantity of a section.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Quantity {
+    /// `gain`, `w0`, `Q`, `w`.
+    pub name: &'static str,
+    /// What stands before the root.
+    pub factor: Formula,
+    /// What stands under the square root, if there is one.
+    pub radicand: Option<Formula>,
+    /// The value at the nominal values of the symbols.
+    pub nominal: Option<f64>,
+}
+
+/// The gain, or one factor.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Section {
+    /// A factor of the denominator: poles, not zeros.
+    pub poles: bool,
+    /// The order; 0 for the gain.
+    pub order: u32,
+    /// How often it occurs.
+    pub multiplicity: u32,
+    /// Empty for an order above 2: no closed form.
+    pub quantities: Vec<Quantity>,
+}
+
+/// The shape `sections`: the product of the sections, and what each is.
+pub fn sections(fraction: &Fraction, letters: Lettering<'_>) -> (Formula, Vec<Section>) {
+    if fraction.is_zero() {
+        return (Formula::integer(0), Vec::new());
+    }
+    let sides = [fraction.numerator(), fraction.denominator()];
+    let mut coefficients = Coefficients::new(&sides, letters);
+    let [(above, above_power), (below, below_power)] = sides.map(lowest);
+    let gain = Fraction::new(&above, &below).unwrap_or_else(Fraction::zero);
+    let factor = coefficients.ratio(gain.numerator(), gain.denominator());
+    let nominal = nominal(&factor, letters).as_ref().and_then(ToPrimitive::to_f64);
+    let quantity = Quantity { name: "gain", factor: factor.clone(), radicand: None, nominal };
+    let mut list =
+        vec![Section { poles: false, order: 0, multiplicity: 1, quantities: vec![quantity] }];
+    let s = Formula::power(Formula::s(), above_power as i32 - below_power as i32);
+    let mut written = vec![factor, s];
+    for (side, poles) in sides.into_iter().zip([false, true]) {
+        for (factor, multiplicity) in factors(side).1 {
+            let order = factor.degree(Var::S);
+            if order == 0 || factor.len() == 1 {
+                continue;
+            }
+            let (formula, quantities) = section(&factor, &mut coefficients, letters);
+            let power = i32::try_from(multiplicity).unwrap_or(i32::MAX);
+            written.push(Formula::power(formula, if poles { -power } else { power }));
+            list.push(Section { poles, order, multiplicity, quantities });
+        }
+    }
+    (product(written), list)
+}
+
+/// The section that begins with 1, and its quantities.
+fn section(
+    factor: &Polynomial,
+    coefficients: &mut Coefficients<'_>,
+    letters: Lettering<'_>,
+) -> (Formula, Vec<Quantity>) {
+    let parts = factor.coefficients(Var::S);
+    let (first, _) = lowest(factor);
+    let mut terms = vec![Formula::integer(1)];
+    for (power, part) in (0_u32..).zip(&parts).skip(1).filter(|(_, part)| !part.is_zero()) {
+        terms.push(with_s(power, coefficients.ratio(part, &first)));
+    }
+    let mut quantity = |name, value: Option<Fraction>, root: bool| {
+        let value = value?;
+        let (outside, inside) = if root { square(&value)? } else { (value, Fraction::one()) };
+        let mut write = |f: &Fraction| coefficients.ratio(f.numerator(), f.denominator());
+        let (factor, radicand) = (write(&outside), write(&inside));
+        let number = |formula| nominal(formula, letters)?.to_f64();
+        let nominal = number(&factor).zip(number(&radicand)).map(|(a, b)| a * libm::sqrt(b));
+        let radicand = (!radicand.is_one()).then_some(radicand);
+        Some(Quantity { name, factor, radicand, nominal: nominal.filter(|value| value.is_finite()) })
+    };
+    let quantities = match parts.as_slice() {
+        [c0, c1] => vec![quantity("w", Fraction::new(c0, c1), false)],
+        [c0, c1, c2] => vec![
+            quantity("w0", Fraction::new(c0, c2), true),
+            // None where c₁ is 0: the section is on the imaginary axis.
+            quantity("Q", Fraction::new(&(c0 * c2), &c1.pow(2)), true),
+        ],
+        _ => Vec::new(),
+    };
+    (Formula::sum(terms), quantities.into_iter().flatten().collect())
+}
+
+/// A fraction as square · rest: what stands before a square root, and under it.
+fn square(fraction: &Fraction) -> Option<(Fraction, Fraction)> {
+    let mut sides = Vec::new();
+    for side in [fraction.numerator(), fraction.denominator()] {
+        let (content, factors) = factors(side);
+        let root = content.abs().sqrt();
+        let squared = &root * &root == content;
+        let (mut outside, mut inside) = if squared {
+            (Polynomial::from(root), Polynomial::one())
+        } else {
+            (Polynomial::one(), Polynomial::from(content))
+        };
+        for (factor, multiplicity) in factors {
+            outside = &outside * &factor.pow(multiplicity / 2);
+            inside = &inside * &factor.pow(multiplicity % 2);
+        }
+        sides.push((outside, inside));
+    }
+    let [(a, b), (c, d)] = sides.try_into().ok()?;
+    Some((Fraction::new(&a, &c)?, Fraction::new(&b, &d)?))
+}
+
+/// The value at the nominal values.
+fn nominal(formula: &Formula, letters: Lettering<'_>) -> Option<BigRational> {
+    formula.evaluate(|letter| match letter {
+        Letter::Symbol(index) => letters.symbols.get(index as usize)?.nominal.clone(),
+        _ => None,
+    })
+}

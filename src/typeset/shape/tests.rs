@@ -1,0 +1,198 @@
+//! Every shape has the value of its fraction, exactly, on random fractions; what they look like.
+
+use expect_test::{Expect, expect};
+use num_rational::BigRational;
+
+use super::*;
+use crate::algebra::modular::Random;
+use crate::circuit::SymbolRole;
+use crate::typeset::{Dialect, SymbolTable, plain};
+
+/// A value for each letter that is no root of what occurs here.
+fn value(letter: Letter) -> Option<BigRational> {
+    let number = |p: i64, q: i64| BigRational::new(p.into(), q.into());
+    match letter {
+        Letter::S => Some(number(7, 5)),
+        Letter::Symbol(index) => {
+            let index = i64::from(index);
+            Some(number(index * index * 3 + 11, index * 7 + 2))
+        }
+        Letter::Pi => Some(number(22, 7)),
+        Letter::Frequency | Letter::Definition(_) => None,
+    }
+}
+
+/// A sum of products: of single variables, each at most once where `linear`.
+fn polynomial(random: &mut Random, variables: u64, terms: u64, linear: bool) -> Polynomial {
+    let mut parts = Vec::new();
+    for _ in 0..=random.word() % terms {
+        let powers: Vec<(Var, u32)> = (0..=variables)
+            .filter_map(|variable| {
+                let power = (random.word() % if linear { 2 } else { 3 }) as u32;
+                (power > 0).then_some((Var(variable as u32), power))
+            })
+            .collect();
+        let coefficient = random.word() % 7;
+        parts.push((powers, BigInt::from(coefficient) - BigInt::from(2)));
+    }
+    Polynomial::from_terms(parts)
+}
+
+/// All terms with `degree` of the variables, `s` besides: homogeneous in units.
+fn homogeneous(random: &mut Random, variables: u32, degree: usize, terms: u64) -> Polynomial {
+    let mut parts = Vec::new();
+    for _ in 0..=random.word() % terms {
+        let mut chosen: Vec<u32> = (1..=variables).collect();
+        while chosen.len() > degree {
+            let place = random.word() as usize % chosen.len();
+            chosen.remove(place);
+        }
+        let s = (random.word() % 3) as u32;
+        let powers: Vec<(Var, u32)> =
+            std::iter::once((Var::S, s)).chain(chosen.into_iter().map(|v| (Var(v), 1))).collect();
+        parts.push((powers, BigInt::from(1)));
+    }
+    Polynomial::from_terms(parts)
+}
+
+fn fraction(random: &mut Random, case: u64) -> Option<Fraction> {
+    let part = |random: &mut Random| match case % 4 {
+        0 => polynomial(random, 4, 6, true),
+        1 => &polynomial(random, 3, 3, true) * &polynomial(random, 4, 3, true),
+        2 => homogeneous(random, 6, 3, 8),
+        _ => {
+            let product = &homogeneous(random, 4, 2, 3) * &homogeneous(random, 5, 2, 3);
+            &product + &homogeneous(random, 5, 4, 3)
+        }
+    };
+    let (n, d) = (part(random), part(random));
+    let fraction = Fraction::new(&n, &d)?;
+    match random.word() % 3 {
+        0 => Some(&fraction + &Fraction::new(&part(random), &part(random))?),
+        1 => Some(&fraction * &Fraction::from(polynomial(random, 3, 4, false))),
+        _ => Some(fraction),
+    }
+}
+
+/// Every second symbol is a capacitance.
+fn some_capacitors() -> Vec<Symbol> {
+    let symbol = |index: u32| Symbol {
+        name: format!("x{index}"),
+        role: SymbolRole::Parameter,
+        unit: if index % 2 == 0 { Unit::OHM } else { Unit::FARAD },
+        nominal: None,
+        tolerance: None,
+    };
+    (0..6).map(symbol).collect()
+}
+
+#[test]
+fn every_shape_has_the_value_of_the_fraction() {
+    let mut random = Random::new(20);
+    let symbols = some_capacitors();
+    let letters = Lettering { pi: None, symbols: &symbols };
+    let shapes: [(&str, fn(&Fraction, Lettering<'_>) -> Formula); 5] = [
+        ("compact", compact),
+        ("powers", powers),
+        ("bode", bode),
+        ("product", product),
+        ("by-element", by_element),
+    ];
+    for case in 0..64 {
+        let Some(fraction) = fraction(&mut random, case) else { continue };
+        let expected = fraction.evaluate(|variable| {
+            value(letters.letter(variable)).unwrap_or_else(|| BigRational::from_integer(1.into()))
+        });
+        for (name, shape) in shapes {
+            let formula = shape(&fraction, letters);
+            assert_eq!(formula.evaluate(value), expected, "{name} of {fraction:?}: {formula:?}");
+        }
+    }
+}
+
+#[test]
+fn compact_is_the_shortest_up_to_what_hides_the_powers() {
+    let mut random = Random::new(21);
+    let letters = Lettering::default();
+    for case in 0..64 {
+        let Some(fraction) = fraction(&mut random, case) else { continue };
+        let count = compact(&fraction, letters).symbols();
+        for other in [powers(&fraction, letters), product(&fraction, letters)] {
+            assert!(count <= other.symbols(), "{fraction:?}: {other:?}");
+        }
+    }
+}
+
+/// The polynomial of an expression in `names`, with `+`, `-`, `*` and no parentheses.
+fn read(text: &str, names: &[&str]) -> Polynomial {
+    let mut sum = Polynomial::zero();
+    for term in text.replace("- ", "+ -").split('+').map(str::trim) {
+        let (sign, term) = term.strip_prefix('-').map_or((1, term), |rest| (-1, rest));
+        let mut product = Polynomial::from(sign);
+        for factor in term.split('*').map(str::trim) {
+            let factor = match (factor.parse::<i64>(), factor) {
+                (Ok(number), _) => Polynomial::from(number),
+                (_, "s") => Polynomial::variable(Var::S),
+                (_, name) => {
+                    let place = names.iter().position(|known| *known == name);
+                    Polynomial::variable(Var(place.expect("a known name") as u32 + 1))
+                }
+            };
+            product = &product * &factor;
+        }
+        sum = &sum + &product;
+    }
+    sum
+}
+
+#[track_caller]
+fn check(names: &str, numerator: &str, denominator: &str, expected: Expect) {
+    let names: Vec<&str> = names.split(' ').collect();
+    let (n, d) = (read(numerator, &names), read(denominator, &names));
+    let fraction = Fraction::new(&n, &d).expect("the denominator is not 0");
+    let table = SymbolTable::new(names.iter().copied());
+    let formula = compact(&fraction, Lettering::default());
+    expected.assert_eq(&plain::text(&formula, &table, Dialect::Language));
+}
+
+#[test]
+fn compact_forms_read_as_written_by_hand() {
+    check("R1 R2", "R1*R2", "R1 + R2", expect!["R1 || R2"]);
+    check("A B C", "A*B + A*C", "A + B + C", expect!["A || (B + C)"]);
+    check("g R1 R2 R3", "-g*R1*R2", "R1*R3 + R2*R3", expect!["-g*(R1 || R2)/R3"]);
+    check("R C", "R", "1 + s*R*C", expect!["R/(1 + s*R*C)"]);
+    check("R1 R2 C", "R2", "R1 + R2 + s*R1*R2*C", expect!["1/(1 + R1/R2 + s*R1*C)"]);
+    check("R C", "1 - s*R*C", "1 + s*R*C", expect!["(1 - s*R*C)/(1 + s*R*C)"]);
+    check(
+        "R1 R2 R3 R4",
+        "R2*R3 - R1*R4",
+        "R1*R3 + R1*R4 + R2*R3 + R2*R4",
+        expect!["R2/(R1 + R2) - R4/(R3 + R4)"],
+    );
+    check(
+        "RL L1 L2 M",
+        "s*L1*RL + s*s*L1*L2 - s*s*M*M",
+        "RL + s*L2",
+        expect!["s*L1 - s^2*M^2/(RL + s*L2)"],
+    );
+    check(
+        "RE Rf gm1 gm2 RD",
+        "-gm2*RE - gm2*gm1*RD*RE - gm2*gm1*RD*Rf",
+        "1 + gm2*RE + gm2*RE*gm1*RD",
+        expect!["-((1/(RE*(1 + gm1*RD))) || gm2)*(RE + gm1*RD*(RE + Rf))"],
+    );
+    check("RL Rs n", "n*RL", "Rs + n*n*RL", expect!["n/(n^2 + Rs/RL)"]);
+    check(
+        "RD Rs gm Cgs Cgd",
+        "-RD*gm + s*RD*Cgd",
+        "1 + s*Rs*Cgs + s*Rs*Cgd + s*Rs*Cgd*gm*RD + s*RD*Cgd + s*s*Rs*RD*Cgs*Cgd",
+        expect!["-RD*(gm - s*Cgd)/((1 + s*RD*Cgd)*(1 + s*Rs*Cgs) + s*Rs*Cgd*(1 + RD*gm))"],
+    );
+    check(
+        "Ra Rb C1 C2",
+        "2 + s*Ra*C1 + s*Rb*C2",
+        "1 + s*Ra*C1 + s*Rb*C2 + s*s*Ra*Rb*C1*C2",
+        expect!["1/(1 + s*Ra*C1) + 1/(1 + s*Rb*C2)"],
+    );
+    check("R1 R2", "0*R1", "R1 + R2", expect!["0"]);
+}
