@@ -343,6 +343,7 @@ fn laws(circuit: &Circuit) -> Vec<String> {
                 Law::ControlledVoltage(controls) => format!("v = {}", control(controls)),
                 Law::ControlledCurrent(controls) => format!("i = {}", control(controls)),
                 Law::Nullor(a, b) => format!("nullor {} {}", circuit[*a].name, circuit[*b].name),
+                other => format!("{other:?}"),
             };
             let (plus, minus) = (&circuit[element.plus].name, &circuit[element.minus].name);
             format!("{}: {plus} {minus} {law}", element.name)

@@ -34,7 +34,7 @@ pub fn order(circuit: &Circuit) -> Order {
     let reactive = elements()
         .filter(|(_, element)| matches!(element.class, Class::Capacitor | Class::Inductor))
         .count();
-    let from_expressions = elements()
+    let from_expressions: usize = elements()
         .filter(|(_, element)| !matches!(element.class, Class::Capacitor | Class::Inductor))
         .flat_map(|(_, element)| element.law.values())
         .map(|value| degrees(value).0.max(degrees(value).1))
@@ -50,13 +50,14 @@ pub fn order(circuit: &Circuit) -> Order {
                 Law::Impedance(_) | Law::Admittance(_) | Law::VoltageSource | Law::CurrentSource
             ) || matches!(&element.law, Law::ControlledVoltage(terms) if terms.is_empty())
         });
+    let order = (reactive + from_expressions).saturating_sub(lost);
     Order {
         reactive,
         from_expressions,
-        order: (reactive + from_expressions).saturating_sub(lost),
+        order,
         capacitor_loops,
         inductor_cutsets,
-        exact,
+        exact: exact || order == 0,
     }
 }
 
