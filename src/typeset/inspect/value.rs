@@ -10,7 +10,7 @@ use crate::typeset::{Dialect, Formula, SymbolTable, plain};
 const DIGITS: u32 = 6;
 
 /// The value as written: sums, products with their denominators, parallel connections.
-pub fn formula(value: &Value) -> Formula {
+fn formula(value: &Value) -> Formula {
     match value {
         Value::Number(number) => Formula::number(number.clone()),
         Value::Symbol(symbol) => Formula::symbol(symbol.0),
