@@ -38,7 +38,7 @@ pub fn total(counts: &TermCounts) -> BigUint {
 ///
 /// Where terms can meet, the expansion is tried up to thirty times as many products, since
 /// what is left after they met is what counts.
-pub fn close(elimination: &Elimination, max_terms: usize) -> Closed {
+pub(crate) fn close(elimination: &Elimination, max_terms: usize) -> Closed {
     let counts = elimination.count_terms();
     if elimination.is_zero() {
         return Closed { form: ClosedForm::Expanded(Fraction::zero()), counts };

@@ -16,6 +16,8 @@ pub(crate) struct Arguments {
 pub(crate) enum Command {
     /// Closed forms, each cross-checked against a floating-point solve
     Derive(Derive),
+    /// The circuit as understood: nodes, elements, values, what the graph says, and a picture
+    Inspect(Inspect),
 }
 
 #[derive(Debug, Args)]
@@ -33,6 +35,45 @@ pub(crate) struct Derive {
     /// End after this many seconds with what was reached
     #[arg(long, value_name = "SECONDS", value_parser = seconds)]
     pub(crate) stop_after: Option<f64>,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Inspect {
+    /// The circuit file; `-` reads standard input
+    pub(crate) file: PathBuf,
+    /// How the listing is printed
+    #[arg(long, value_enum, default_value_t = ListingFormat::Text)]
+    pub(crate) format: ListingFormat,
+    /// ASCII only
+    #[arg(long)]
+    pub(crate) ascii: bool,
+    /// Colours in messages; NO_COLOR is respected
+    #[arg(long, value_enum, default_value_t = Colour::Auto)]
+    pub(crate) color: Colour,
+    /// The listing only: no warnings, no notices
+    #[arg(long)]
+    pub(crate) quiet: bool,
+}
+
+impl Inspect {
+    /// The same choices as for other commands; a picture has the messages of text.
+    pub(crate) fn output(&self) -> Output {
+        let format = match self.format {
+            ListingFormat::Json => Format::Json,
+            ListingFormat::Text | ListingFormat::Svg => Format::Text,
+        };
+        Output { format, ascii: self.ascii, color: self.color, quiet: self.quiet }
+    }
+}
+
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum ListingFormat {
+    /// For a terminal
+    Text,
+    /// For other programs
+    Json,
+    /// A picture of the graph
+    Svg,
 }
 
 #[derive(Debug, Args)]

@@ -48,12 +48,15 @@ pub(crate) fn run(arguments: &Derive, messages: &Messages) -> Result<u8, Failure
     Ok(u8::from(!printer.passed))
 }
 
+/// What happens to an answer.
+type Take<'a> = dyn FnMut(&Ask, &[Derivation]) -> Result<(), Failure> + 'a;
+
 /// Answers the questions one after the other; under a deadline in a thread that is left behind.
 fn answers(
     loaded: &Loaded,
     options: Options,
     stop_after: Option<f64>,
-    take: &mut dyn FnMut(&Ask, &[Derivation]) -> Result<(), Failure>,
+    take: &mut Take<'_>,
 ) -> Result<(), Failure> {
     let Some(seconds) = stop_after else {
         for ask in &loaded.asks {

@@ -14,6 +14,7 @@ mod args;
 mod derive;
 mod failure;
 mod input;
+mod inspect;
 mod messages;
 
 use std::io::Write;
@@ -39,6 +40,10 @@ pub(crate) fn run() -> ExitCode {
             Command::Derive(derive) => {
                 let messages = Messages::new(&derive.output);
                 finish(&messages, derive::run(&derive, &messages))
+            }
+            Command::Inspect(inspect) => {
+                let messages = Messages::new(&inspect.output());
+                finish(&messages, inspect::run(&inspect, &messages))
             }
         });
     match worker.map(std::thread::JoinHandle::join) {
