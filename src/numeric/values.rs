@@ -10,7 +10,7 @@ use num_bigint::BigInt;
 use num_traits::ToPrimitive;
 
 use super::{Field, NumericError};
-use crate::circuit::{Circuit, Law, Number, SymbolId, SymbolRole, Transfer, Value};
+use crate::circuit::{Circuit, Number, SymbolId, SymbolRole, Transfer, Value};
 
 /// The value at the given numbers; symbols are indexed by [`SymbolId`]. `None` where it divides
 /// by zero or names a symbol that has no number.
