@@ -18,6 +18,18 @@ impl Value {
         }
     }
 
+    /// Whether `s` stands in the value.
+    pub fn holds_s(&self) -> bool {
+        match self {
+            Self::S => true,
+            Self::Number(_) | Self::Symbol(_) => false,
+            Self::Power(inner, _) | Self::Negative(inner) => inner.holds_s(),
+            Self::Sum(parts) | Self::Product(parts) | Self::Parallel(parts) => {
+                parts.iter().any(Self::holds_s)
+            }
+        }
+    }
+
     /// Calls `visit` for every symbol in the value.
     pub fn for_each_symbol(&self, visit: &mut dyn FnMut(SymbolId)) {
         match self {

@@ -41,10 +41,10 @@ impl Unit {
     #[must_use]
     pub fn times(self, other: Self) -> Self {
         Self {
-            volt: self.volt + other.volt,
-            ampere: self.ampere + other.ampere,
-            second: self.second + other.second,
-            kelvin: self.kelvin + other.kelvin,
+            volt: self.volt.saturating_add(other.volt),
+            ampere: self.ampere.saturating_add(other.ampere),
+            second: self.second.saturating_add(other.second),
+            kelvin: self.kelvin.saturating_add(other.kelvin),
         }
     }
 
@@ -52,10 +52,10 @@ impl Unit {
     #[must_use]
     pub fn power(self, exponent: i32) -> Self {
         Self {
-            volt: self.volt * exponent,
-            ampere: self.ampere * exponent,
-            second: self.second * exponent,
-            kelvin: self.kelvin * exponent,
+            volt: self.volt.saturating_mul(exponent),
+            ampere: self.ampere.saturating_mul(exponent),
+            second: self.second.saturating_mul(exponent),
+            kelvin: self.kelvin.saturating_mul(exponent),
         }
     }
 

@@ -6,6 +6,7 @@
 
 use super::diagnostic::{Diagnostic, Span};
 use super::names::{self, is_ground, nearest};
+use super::queries::empty_port;
 use super::sources::{self, Access};
 use super::syntax::{Argument, Expression, ExpressionKind, Name, Query};
 use crate::circuit::{
@@ -23,7 +24,14 @@ pub(crate) fn resolve(circuit: &Circuit, query: &Query) -> Result<Ask, Vec<Diagn
 
 /// The nodes that a question is about.
 pub(crate) fn nodes(ask: &Ask) -> impl Iterator<Item = NodeId> {
-    ask.transfers().iter().flat_map(|transfer| {
+    let of_question = match &ask.question {
+        Question::TwoPort(ports) => {
+            vec![ports.port1.0, ports.port1.1, ports.port2.0, ports.port2.1]
+        }
+        Question::NoiseDensity(plus, minus) => vec![*plus, *minus],
+        Question::Ratio(_) | Question::Superposition(_) | Question::ReturnRatio(_) => Vec::new(),
+    };
+    let of_transfers = ask.transfers().iter().flat_map(|transfer| {
         let mut nodes = Vec::new();
         for probe in [transfer.numerator, transfer.denominator] {
             if let Probe::Voltage(a, b) = probe {
@@ -34,7 +42,8 @@ pub(crate) fn nodes(ask: &Ask) -> impl Iterator<Item = NodeId> {
             nodes.extend([a, b]);
         }
         nodes
-    })
+    });
+    of_transfers.chain(of_question)
 }
 
 /// The error for a node that does not exist.
@@ -134,7 +143,13 @@ impl<'c> Resolver<'c> {
                 )
                 .help("leave `from` out"));
             }
-            return self.port_query(name, arguments, expression.span).map(Question::Ratio);
+            let span = expression.span;
+            return match name.text.as_str() {
+                "two_port" => self.two_port(arguments, span),
+                "return_ratio" => self.return_ratio(arguments, span),
+                "noise_density" => self.noise_density(arguments, span),
+                _ => self.port_query(name, arguments, span).map(Question::Ratio),
+            };
         }
         match &expression.kind {
             ExpressionKind::Product(factors) => {
@@ -264,13 +279,6 @@ impl<'c> Resolver<'c> {
         span: Span,
     ) -> Result<Transfer, Diagnostic> {
         let impedance = name.text == "impedance";
-        if !impedance && name.text != "admittance" {
-            return Err(Diagnostic::error(
-                "not-yet",
-                name.span,
-                format!("`{}(…)` is not yet supported", name.text),
-            ));
-        }
         let [first, second] = arguments else {
             return Err(wrong_port(name, span));
         };
@@ -279,22 +287,9 @@ impl<'c> Resolver<'c> {
         };
         let (plus, minus) = (self.node(a)?, self.node(b)?);
         if plus == minus {
-            return Err(Diagnostic::error(
-                "empty-port",
-                span,
-                "both ends of the port are one node",
-            ));
+            return Err(empty_port(span));
         }
-        let removed = self
-            .sources
-            .iter()
-            .copied()
-            .filter(|id| {
-                let element = &self.circuit[*id];
-                (element.plus, element.minus) == (plus, minus)
-                    || (element.plus, element.minus) == (minus, plus)
-            })
-            .collect();
+        let removed = self.across(&[(plus, minus)]);
         let voltage = Probe::Voltage(plus, minus);
         let (numerator, denominator, unit) = if impedance {
             (voltage, Probe::Drive, Unit::OHM)
@@ -302,6 +297,25 @@ impl<'c> Resolver<'c> {
             (Probe::Drive, voltage, Unit::SIEMENS)
         };
         Ok(Transfer { drive: Drive::Port(plus, minus), numerator, denominator, removed, unit })
+    }
+
+    /// The independent sources that lie exactly across a port, either way round.
+    pub(crate) fn across(&self, ports: &[(NodeId, NodeId)]) -> Vec<ElementId> {
+        let lies_across = |id: &ElementId| {
+            let (plus, minus) = (self.circuit[*id].plus, self.circuit[*id].minus);
+            ports.contains(&(plus, minus)) || ports.contains(&(minus, plus))
+        };
+        self.sources.iter().copied().filter(lies_across).collect()
+    }
+
+    /// The circuit that questions are asked of.
+    pub(crate) fn circuit(&self) -> &'c Circuit {
+        self.circuit
+    }
+
+    /// The element of that name, of any kind.
+    pub(crate) fn any_element(&self, name: &str) -> Option<ElementId> {
+        self.elements.get(name).copied()
     }
 
     fn side(&self, expression: &Expression) -> Result<Side, Diagnostic> {
@@ -332,7 +346,8 @@ impl<'c> Resolver<'c> {
         }
     }
 
-    fn node(&self, name: &Name) -> Result<NodeId, Diagnostic> {
+    /// The node of that name.
+    pub(crate) fn node(&self, name: &Name) -> Result<NodeId, Diagnostic> {
         if is_ground(&name.text) {
             return Ok(GROUND);
         }
@@ -415,7 +430,7 @@ fn wrong_port(name: &Name, span: Span) -> Diagnostic {
 
 fn no_query(span: Span) -> Diagnostic {
     Diagnostic::error("no-query", span, "this is no query")
-        .help("a query is `V(out) / Vin`, `I(R1) / V(in)`, `V(out)`, `impedance(a, b)` or `admittance(a, b)`")
+        .help("a query is `V(out) / Vin`, `I(R1) / V(in)`, `V(out)`, `impedance(a, b)`, `admittance(a, b)`, `two_port(z, a b, c d)`, `return_ratio(X)` or `noise_density(out)`")
 }
 
 /// The query with even spaces.
@@ -423,14 +438,7 @@ fn tidy(expression: &Expression) -> String {
     match &expression.kind {
         ExpressionKind::Name(name) => name.clone(),
         ExpressionKind::Call(name, arguments) => {
-            let list: Vec<String> = arguments
-                .iter()
-                .map(|argument| {
-                    let words: Vec<&str> =
-                        argument.names.iter().map(|name| name.text.as_str()).collect();
-                    words.join(" ")
-                })
-                .collect();
+            let list: Vec<&str> = arguments.iter().map(|argument| argument.text.as_str()).collect();
             format!("{}({})", name.text, list.join(", "))
         }
         ExpressionKind::Product(factors) => match factors.as_slice() {

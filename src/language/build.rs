@@ -9,6 +9,7 @@ use super::definitions::{Definition, Definitions, Meaning, find_call, visit_name
 use super::diagnostic::{Diagnostic, MOST_SHOWN, Severity, Span};
 use super::names::{self, is_ground, nearest};
 use super::nodes::Nodes;
+use super::queries::reference_of;
 use super::source::Source;
 use super::sources::{self, Access, Term};
 use super::syntax::{
@@ -16,7 +17,8 @@ use super::syntax::{
 };
 use super::units::UnitSolver;
 use crate::circuit::{
-    Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, NodeId, SymbolRole, Unit, Value,
+    Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, NodeId, Number, SymbolRole,
+    Unit, Value,
 };
 use num_traits::Signed;
 use rustc_hash::FxHashMap;
@@ -63,8 +65,18 @@ pub(crate) struct Builder<'s> {
     pub(crate) incomplete: bool,
     title: Option<(String, Span)>,
     band: Option<(Band, Span)>,
-    queries: Vec<(Query, Span)>,
-    claims: Vec<(Name, Expression)>,
+    pub(crate) queries: Vec<(Query, Span)>,
+    pub(crate) claims: Vec<ClaimDraft>,
+    pub(crate) limits: Vec<(Name, LimitPoint)>,
+    temperature: Option<(Number, Span)>,
+}
+
+/// A claim before its names are known.
+pub(crate) struct ClaimDraft {
+    pub(crate) name: Name,
+    pub(crate) expression: Expression,
+    /// Where the formula stands.
+    pub(crate) span: Span,
 }
 
 impl<'s> Builder<'s> {
@@ -82,6 +94,8 @@ impl<'s> Builder<'s> {
             band: None,
             queries: Vec::new(),
             claims: Vec::new(),
+            limits: Vec::new(),
+            temperature: None,
         }
     }
 
@@ -129,19 +143,11 @@ impl<'s> Builder<'s> {
             StatementKind::Let(name, value) => self.let_name(name, value.map(|value| *value)),
             StatementKind::Band(ends) => self.band(&ends.0, &ends.1, span),
             StatementKind::Ask(query) => self.queries.push((query, span)),
-            StatementKind::Claim(name, expression) => {
-                self.not_yet(span, "`claim`");
-                self.claims.push((name, expression));
+            StatementKind::Claim(name, expression, place) => {
+                self.claims.push(ClaimDraft { name, expression, span: place });
             }
-            StatementKind::Limit(name, point) => {
-                let to = if point == LimitPoint::Zero { "0" } else { "infinity" };
-                self.not_yet(span, &format!("`limit {} to {to}`", name.text));
-            }
-            StatementKind::Temperature(quantity) => {
-                if !quantity.value.is_positive() {
-                    self.error("temperature", quantity.span, "a temperature must be above 0 K");
-                }
-            }
+            StatementKind::Limit(name, point) => self.limits.push((name, point)),
+            StatementKind::Temperature(quantity) => self.set_temperature(*quantity),
             StatementKind::BlockStart(block) => {
                 let [terminals, parameters] = [block.terminals.len(), block.parameters.len()];
                 let block = format!(
@@ -173,6 +179,18 @@ impl<'s> Builder<'s> {
         match make_band(from, to) {
             Ok(band) => self.band = Some((band, span)),
             Err(fault) => self.faults.push(fault),
+        }
+    }
+
+    fn set_temperature(&mut self, quantity: Quantity) {
+        if let Some((_, first)) = &self.temperature {
+            let fault = Diagnostic::error("duplicate", quantity.span, "a second temperature")
+                .label(*first, "the first one");
+            self.faults.push(fault);
+        } else if !quantity.value.is_positive() {
+            self.error("temperature", quantity.span, "a temperature must be above 0 K");
+        } else {
+            self.temperature = Some((quantity.value, quantity.span));
         }
     }
 
@@ -264,11 +282,14 @@ impl<'s> Builder<'s> {
             title: self.title.take().map(|(title, _)| title),
             nodes: self.nodes.list(),
             band: self.band.take().map(|(band, _)| band),
+            temperature: self.temperature.take().map(|(kelvin, _)| kelvin),
             ..Circuit::default()
         };
         self.make_elements(&terms, &mut circuit);
         self.number_symbols(&units, &mut circuit);
-        self.resolve_queries(&mut circuit);
+        let asked = self.resolve_queries(&mut circuit);
+        self.resolve_limits(&mut circuit);
+        self.resolve_claims(&mut circuit, &asked);
         self.warn(&circuit);
         Some(circuit)
     }
@@ -348,8 +369,14 @@ impl<'s> Builder<'s> {
         for term in terms.iter().flatten() {
             visit_names(&term.gain, &mut note);
         }
-        for (_, claim) in &self.claims {
-            visit_names(claim, &mut |name, span| {
+        for expression in
+            self.queries.iter().filter_map(|(query, _)| reference_of(&query.expression))
+        {
+            visit_names(expression, &mut note);
+        }
+        // A claim makes no parameters, but it uses those that there are.
+        for claim in &self.claims {
+            visit_names(&claim.expression, &mut |name, span| {
                 if self.definitions.find(name).is_some() {
                     note(name, span);
                 }
@@ -408,6 +435,11 @@ impl<'s> Builder<'s> {
             for term in terms {
                 solver.demand(&term.gain, given.over(term.access.unit()), "factor");
             }
+        }
+        for expression in
+            self.queries.iter().filter_map(|(query, _)| reference_of(&query.expression))
+        {
+            solver.demand(expression, Unit::OHM, "reference resistance");
         }
         solver.guess_free();
         let units = (0..self.definitions.list.len()).map(|id| solver.unit(id)).collect();
@@ -517,7 +549,8 @@ impl<'s> Builder<'s> {
         None
     }
 
-    fn resolve_queries(&mut self, circuit: &mut Circuit) {
+    /// Resolves the questions; returns the names of all, also of those that cannot be answered.
+    fn resolve_queries(&mut self, circuit: &mut Circuit) -> FxHashMap<String, Span> {
         let resolver = Resolver::new(circuit);
         let mut asks = Vec::new();
         let mut names: FxHashMap<String, Span> = FxHashMap::default();
@@ -559,6 +592,7 @@ impl<'s> Builder<'s> {
             }
         }
         circuit.asks = asks;
+        names
     }
 
     fn warn(&mut self, circuit: &Circuit) {

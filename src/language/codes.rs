@@ -39,6 +39,11 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "a value depends on itself",
         "leave one name without a value, or give it a number",
     ),
+    (
+        "claim-name",
+        "a claim names no single answer",
+        "name an `ask`, or an entry of a two-port set (`P.z21`)",
+    ),
     ("decimal-comma", "a comma was written as the decimal sign", "write a point"),
     (
         "device-in-value",
@@ -58,6 +63,7 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "`from` names a source that the query does not need or contradicts",
         "leave `from` out",
     ),
+    ("limit", "a limit of what is no symbol", "name a symbol, or `s`"),
     ("meg", "`meg` was written for mega", "write `M`"),
     (
         "missing-role",
@@ -100,10 +106,25 @@ pub const CODES: &[(&str, &str, &str)] = &[
     ("number-range", "a number is too large, too small or too long", "check the exponent"),
     ("open-end", "nothing else is tied to one end of an element", "check the node's name"),
     ("parenthesis", "a parenthesis is never closed", "add the missing `)`"),
+    (
+        "parameter-set",
+        "a set of two-port parameters is unknown",
+        "use z, y, h, g, chain, inverse_chain, scattering or transfer_scattering",
+    ),
     ("power", "a power is no integer, or too large", "use integer powers"),
     ("power-stars", "`**` was written for a power", "write `^`"),
     ("query-in-value", "a query stands inside an expression", "ask for it by itself"),
+    (
+        "reference",
+        "a scattering set lacks its reference resistance, or another set has one",
+        "write it last: `two_port(scattering, a b, c d, 50)`",
+    ),
     ("reserved", "a word of the language was used as a name", "choose another name"),
+    (
+        "return-ratio",
+        "a return ratio is asked of what is no dependent source, or is ideal",
+        "name a dependent source, a finite op-amp or a device's `gm`",
+    ),
     ("role", "a terminal has no node or several", "write `role node` and a comma"),
     (
         "s-in-value",

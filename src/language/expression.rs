@@ -15,6 +15,9 @@ use pest::iterators::Pair;
 /// Powers beyond this are refused: no formula needs them, and they would fill the memory.
 const LARGEST_POWER: i32 = 1000;
 
+/// The argument of `two_port` that is a reference resistance.
+const REFERENCE: usize = 3;
+
 /// Builds trees of expressions.
 pub(crate) struct ExpressionReader<'r, 'a> {
     pub(crate) reader: &'r mut Reader<'a>,
@@ -275,10 +278,17 @@ impl ExpressionReader<'_, '_> {
         let callee = inner.next()?;
         let name = Name { text: ascii_name(callee.as_str()), span: self.reader.span(&callee) };
         let mut arguments = Vec::new();
-        for argument in inner.next()?.into_inner().filter(|p| p.as_rule() == Rule::argument) {
+        let listed = inner.next()?.into_inner().filter(|p| p.as_rule() == Rule::argument);
+        for (index, argument) in listed.enumerate() {
             let span = self.reader.span(&argument);
+            let value = if name.text == "two_port" && index == REFERENCE {
+                Some(Box::new(self.reader.value_again(&argument)?))
+            } else {
+                None
+            };
+            let mut text = argument.as_str().split_whitespace().collect::<Vec<_>>().join(" ");
             let content = argument.into_inner().next()?;
-            let names = if content.as_rule() == Rule::nodes {
+            let names: Vec<Name> = if content.as_rule() == Rule::nodes {
                 content
                     .into_inner()
                     .map(|p| Name { text: ascii_name(p.as_str()), span: self.reader.span(&p) })
@@ -286,7 +296,10 @@ impl ExpressionReader<'_, '_> {
             } else {
                 Vec::new()
             };
-            arguments.push(Argument { names, span });
+            if value.is_none() && !names.is_empty() {
+                text = names.iter().map(|name| name.text.as_str()).collect::<Vec<_>>().join(" ");
+            }
+            arguments.push(Argument { names, value, text, span });
         }
         Some(Expression { kind: ExpressionKind::Call(name, arguments), span })
     }

@@ -20,6 +20,7 @@ mod names;
 mod nodes;
 mod parse;
 mod quantity;
+mod queries;
 mod source;
 mod sources;
 mod symbols;
@@ -29,12 +30,13 @@ mod tests;
 mod units;
 mod walks;
 
+pub use claim::{UnitClash, claim_units};
 pub use codes::CODES;
 pub use diagnostic::{
     Diagnostic, Label, MOST_SHOWN, Severity, Span, line_and_column, render, render_all,
 };
 
-use crate::circuit::{Ask, Band, Circuit, Value};
+use crate::circuit::{Ask, Band, Circuit, Limit, Value};
 use build::Builder;
 use parse::{Reader, Rule};
 use source::Source;
@@ -92,6 +94,23 @@ pub fn band(text: &str) -> Result<Band, Vec<Diagnostic>> {
         .and_then(|pair| Reader { source: &source, offset: 0, faults: &mut faults }.band(pair));
     match read {
         Some((from, to)) => build::make_band(&from, &to).map_err(|fault| vec![fault]),
+        None => Err(faults),
+    }
+}
+
+/// Reads a limit of the command line: `A0 to infinity`.
+///
+/// # Errors
+/// What cannot be read or is unknown; spans are places in `text`.
+pub fn limit(circuit: &Circuit, text: &str) -> Result<Limit, Vec<Diagnostic>> {
+    let source = Source::new(text);
+    let mut faults = Vec::new();
+    let range = 0..source.text.len();
+    let read = parse::tokens(&source, &range, Rule::limit_text, &mut faults).and_then(|pair| {
+        Reader { source: &source, offset: 0, faults: &mut faults }.limit(pair.into_inner())
+    });
+    match read {
+        Some((name, point)) => claim::limit(circuit, &name, point).map_err(|fault| vec![fault]),
         None => Err(faults),
     }
 }

@@ -162,6 +162,27 @@ impl Reader<'_> {
         Some((from, self.quantity(ends.next()?)?))
     }
 
+    /// The tokens of a limit: a name, and `0` or `infinity`.
+    pub(crate) fn limit<'i>(
+        &self,
+        tokens: impl Iterator<Item = Pair<'i, Rule>>,
+    ) -> Option<(Name, LimitPoint)> {
+        let mut tokens = tokens.filter(|token| token.as_rule() != Rule::to);
+        let name = self.name(&tokens.next()?);
+        let infinite = tokens.next()?.as_rule() == Rule::infinity;
+        Some((name, if infinite { LimitPoint::Infinity } else { LimitPoint::Zero }))
+    }
+
+    /// An expression or a quantity inside a call, read again as a value.
+    pub(crate) fn value_again(&mut self, pair: &Pair<'_, Rule>) -> Option<Content> {
+        let range = pair.as_span();
+        let start = self.offset + range.start();
+        let end = start + range.as_str().trim_end().len();
+        let again = tokens(self.source, &(start..end), Rule::value, self.faults)?;
+        let mut reader = Reader { source: self.source, offset: start, faults: self.faults };
+        reader.value(again, true)
+    }
+
     /// An `expression_text` token.
     pub(crate) fn whole_expression(
         &mut self,
@@ -207,7 +228,9 @@ impl Reader<'_> {
             }
             Rule::claim_line => {
                 let name = self.name(&inner.next()?);
-                Some(StatementKind::Claim(name, self.expression(inner.next()?, true)?))
+                let formula = inner.next()?;
+                let span = self.span(&formula);
+                Some(StatementKind::Claim(name, self.expression(formula, true)?, span))
             }
             Rule::let_line => {
                 let name = self.name(&inner.next()?);
@@ -218,9 +241,7 @@ impl Reader<'_> {
                 Some(StatementKind::Let(name, value))
             }
             Rule::limit_line => {
-                let name = self.name(&inner.next()?);
-                let infinite = inner.next()?.as_rule() == Rule::infinity;
-                let point = if infinite { LimitPoint::Infinity } else { LimitPoint::Zero };
+                let (name, point) = self.limit(inner)?;
                 Some(StatementKind::Limit(name, point))
             }
             Rule::band_line => {

@@ -13,6 +13,8 @@ use std::ops::Range;
 pub(crate) struct Source {
     /// The folded text.
     pub(crate) text: String,
+    /// The text as it was.
+    typed: String,
     /// (folded offset, original offset) wherever their difference changes, ascending.
     shifts: Vec<(usize, usize)>,
     /// Original offset of each physical line's first byte.
@@ -42,12 +44,17 @@ impl Source {
                 shifts.push((text.len(), offset + character.len_utf8()));
             }
         }
-        Self { text, shifts, line_starts }
+        Self { text, typed: original.to_owned(), shifts, line_starts }
     }
 
     /// The original place of a range of the folded text.
     pub(crate) fn span(&self, folded: Range<usize>) -> Span {
         Span { start: self.original(folded.start), end: self.original(folded.end) }
+    }
+
+    /// The original text of a span.
+    pub(crate) fn written(&self, span: Span) -> &str {
+        self.typed.get(span.start..span.end).unwrap_or_default()
     }
 
     fn original(&self, offset: usize) -> usize {

@@ -4,9 +4,10 @@
 //! occur are put into reference order, and the values are renumbered.
 
 use super::build::Builder;
-use super::definitions::Meaning;
+use super::definitions::{Meaning, visit_names};
 use super::names;
-use crate::circuit::{Circuit, Law, SymbolId, Unit, Value};
+use super::queries::reference_of;
+use crate::circuit::{Circuit, SymbolId, Unit, Value};
 
 impl Builder<'_> {
     /// Lists the symbols that occur, in reference order, and renumbers the values.
@@ -14,6 +15,17 @@ impl Builder<'_> {
         let mut occurs = vec![false; self.definitions.list.len()];
         for value in values(circuit) {
             mark(value, &mut occurs);
+        }
+        for expression in
+            self.queries.iter().filter_map(|(query, _)| reference_of(&query.expression))
+        {
+            visit_names(expression, &mut |name, _| {
+                let settled =
+                    self.definitions.find(name).and_then(|id| self.definitions.settled(id));
+                if let Some(settled) = settled {
+                    mark(&settled.value, &mut occurs);
+                }
+            });
         }
         let mut order: Vec<usize> = (0..occurs.len()).filter(|id| occurs[*id]).collect();
         order.sort_by_cached_key(|id| {
@@ -51,44 +63,16 @@ impl Builder<'_> {
 
 /// All values of a circuit's elements.
 fn values(circuit: &Circuit) -> impl Iterator<Item = &Value> {
-    circuit.elements.iter().flat_map(|element| -> Vec<&Value> {
-        match &element.law {
-            Law::Impedance(value) | Law::Admittance(value) => vec![value],
-            Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls) => {
-                controls.iter().map(|control| &control.gain).collect()
-            }
-            _ => Vec::new(),
-        }
-    })
+    circuit.elements.iter().flat_map(|element| element.law.values())
 }
 
 fn values_mut(circuit: &mut Circuit) -> impl Iterator<Item = &mut Value> {
-    let elements = circuit.elements.iter_mut().flat_map(|element| -> Vec<&mut Value> {
-        match &mut element.law {
-            Law::Impedance(value) | Law::Admittance(value) => vec![value],
-            Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls) => {
-                controls.iter_mut().map(|control| &mut control.gain).collect()
-            }
-            _ => Vec::new(),
-        }
-    });
+    let elements = circuit.elements.iter_mut().flat_map(|element| element.law.values_mut());
     elements.chain(circuit.definitions.iter_mut().map(|definition| &mut definition.value))
 }
 
-/// Calls `visit` for every symbol of a value.
-fn visit_symbols(value: &Value, visit: &mut impl FnMut(SymbolId)) {
-    match value {
-        Value::Number(_) | Value::S => {}
-        Value::Symbol(id) => visit(*id),
-        Value::Sum(list) | Value::Product(list) | Value::Parallel(list) => {
-            list.iter().for_each(|child| visit_symbols(child, visit));
-        }
-        Value::Power(inner, _) | Value::Negative(inner) => visit_symbols(inner, visit),
-    }
-}
-
 fn mark(value: &Value, occurs: &mut [bool]) {
-    visit_symbols(value, &mut |id| occurs[id.0 as usize] = true);
+    value.for_each_symbol(&mut |id| occurs[id.0 as usize] = true);
 }
 
 fn renumber(value: &mut Value, numbers: &[Option<SymbolId>]) {
@@ -109,6 +93,6 @@ fn renumber(value: &mut Value, numbers: &[Option<SymbolId>]) {
 /// True if all symbols of a value occur.
 fn all_occur(value: &Value, occurs: &[bool]) -> bool {
     let mut all = true;
-    visit_symbols(value, &mut |id| all &= occurs[id.0 as usize]);
+    value.for_each_symbol(&mut |id| all &= occurs[id.0 as usize]);
     all
 }

@@ -27,7 +27,8 @@ pub(crate) enum StatementKind {
     Walk(Vec<Step>),
     Device(Device),
     Ask(Query),
-    Claim(Name, Expression),
+    /// The name, the formula, and where all of it stands.
+    Claim(Name, Expression, Span),
     Let(Name, Option<Box<Content>>),
     Limit(Name, LimitPoint),
     Band(Box<(Quantity, Quantity)>),
@@ -136,5 +137,9 @@ pub(crate) enum ExpressionKind {
 pub(crate) struct Argument {
     /// The names, when it is nothing but names (`a`, `a b`).
     pub(crate) names: Vec<Name>,
+    /// What it is as a value, where a value may stand.
+    pub(crate) value: Option<Box<Content>>,
+    /// With even spaces.
+    pub(crate) text: String,
     pub(crate) span: Span,
 }
