@@ -18,8 +18,6 @@ mod notice;
 mod numbers;
 mod posed;
 mod return_ratio;
-#[cfg(test)]
-mod tests;
 mod two_port;
 
 pub use answer::{Entry, answer};

@@ -4,7 +4,7 @@ use std::sync::mpsc;
 use std::time::{Duration, Instant};
 
 use cofactor::analysis::{self, ClosedForm, Entry, Options, total};
-use cofactor::circuit::{Ask, Circuit};
+use cofactor::circuit::{Ask, Circuit, ElementId, Law};
 use cofactor::language::{Severity, line_and_column};
 use cofactor::typeset::answer::{self, Answer, TextStyle};
 use cofactor::typeset::json;
@@ -26,7 +26,11 @@ pub(crate) fn run(arguments: &Derive, messages: &Messages) -> Result<u8, Failure
         Some(ShapeName::Bode) => Shape::Bode,
         Some(ShapeName::Nested) => Shape::Nested,
     };
-    let options = Options { max_terms: arguments.max_terms, ..Options::default() };
+    let feedback = match &arguments.feedback {
+        Some(name) => Some(dependent_source(&loaded.circuit, name)?),
+        None => None,
+    };
+    let options = Options { max_terms: arguments.max_terms, feedback, ..Options::default() };
     let mut printer = Printer {
         arguments,
         messages,
@@ -44,6 +48,21 @@ pub(crate) fn run(arguments: &Derive, messages: &Messages) -> Result<u8, Failure
     printer.finish()?;
     outcome?;
     Ok(u8::from(!printer.passed))
+}
+
+/// The dependent source of that name; a device is named for its transconductance.
+fn dependent_source(circuit: &Circuit, name: &str) -> Result<ElementId, Failure> {
+    let found = circuit.element(name).or_else(|| circuit.element(&format!("{name}.gm")));
+    found
+        .filter(|&id| {
+            matches!(circuit[id].law, Law::ControlledVoltage(_) | Law::ControlledCurrent(_))
+        })
+        .ok_or_else(|| {
+            Failure::option(
+                format!("`--feedback` names `{name}`, which is no dependent source"),
+                "name a dependent source, an op-amp with a finite `gain`, or a device",
+            )
+        })
 }
 
 /// Answers the questions one after the other; under a deadline in a thread that is left behind.
@@ -106,7 +125,7 @@ struct Printer<'a> {
 impl Printer<'_> {
     /// Prints one answer, or keeps it for the end.
     fn take(&mut self, ask: &Ask, entries: &[Entry]) -> Result<(), Failure> {
-        self.check_shape(ask, entries)?;
+        self.check_shape(entries)?;
         let answer = Answer { circuit: &self.loaded.circuit, ask, entries, shape: self.shape };
         for entry in entries {
             self.passed &= entry.passed();
@@ -141,7 +160,7 @@ impl Printer<'_> {
     }
 
     /// A shape that needs the expansion is refused where that is too long.
-    fn check_shape(&self, ask: &Ask, entries: &[Entry]) -> Result<(), Failure> {
+    fn check_shape(&self, entries: &[Entry]) -> Result<(), Failure> {
         if !matches!(self.shape, Shape::Powers | Shape::Bode) {
             return Ok(());
         }

@@ -114,7 +114,7 @@ fn formula(
 fn facts(out: &mut String, entry: &Entry, names: &SymbolTable, style: TextStyle) {
     out.push('\n');
     let mut fact = |title: &str, text: String| {
-        let _ = writeln!(out, "  {title:<16}{text}");
+        let _ = writeln!(out, "  {title:<18}{text}");
     };
     if let Some(noise) = &entry.noise {
         contributions(noise, entry, names, style, &mut fact);
@@ -123,7 +123,7 @@ fn facts(out: &mut String, entry: &Entry, names: &SymbolTable, style: TextStyle)
             fact("with numbers", numbers(numeric, style));
         }
         let letters = lettering_of(&entry.symbols);
-        if let Some([low, high]) = asymptotes(&entry.form, letters) {
+        if let Some([low, high]) = asymptotes(&entry.form, letters).filter(|_| depends_on_s(entry)) {
             fact("towards dc", asymptote(&low, entry, names, style, false));
             fact("towards infinity", asymptote(&high, entry, names, style, true));
         }
@@ -137,6 +137,11 @@ fn facts(out: &mut String, entry: &Entry, names: &SymbolTable, style: TextStyle)
     for check in &entry.checks {
         fact("", check.statement.clone());
     }
+}
+
+/// Whether there is anything to say about the ends of the frequency axis.
+fn depends_on_s(entry: &Entry) -> bool {
+    entry.counts.numerator.len().max(entry.counts.denominator.len()) > 1
 }
 
 /// The shares of a noise density, and what it adds up to.
