@@ -132,8 +132,8 @@ fn joined_networks_multiply_and_add() {
         let above = renamed(&renamed(&first, "ground", "in2"), "out", "far");
         let below = renamed(&renamed(&second, "in", "in2"), "out", "out2");
         let mut series = read_with_symbols_of(
-            &format!("{above}{below}out > Rwide > out2\n"),
-            &format!("{both}out > Rwide > ground\n"),
+            &format!("{above}{below}out > Ywide > out2\n"),
+            &format!("{both}out > Ywide > ground\n"),
         );
         let node = |series: &Circuit, name: &str| series.node(name).expect("a node");
         let ends = (node(&series, "far"), node(&series, "in2"));
@@ -146,8 +146,8 @@ fn joined_networks_multiply_and_add() {
             law: Law::Transformer { ratio: Value::Number(Number::from_integer(1.into())), secondary },
             line: 0,
         });
-        // Rwide only names the nodes before the transformer is there.
-        series.elements.retain(|element| element.name != "Rwide");
+        // Ywide only names the nodes before the transformer is there.
+        series.elements.retain(|element| element.name != "Ywide");
         if let (Some(a), Some(b)) = (set(&a, "z"), set(&b, "z")) {
             assert_eq!(set(&series, "z"), Some(sum(&a, &b)), "{first}\n{second}");
         }
