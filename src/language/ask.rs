@@ -4,6 +4,7 @@
 //! `I(..)`, or an impedance or admittance of a port. What drives the circuit is found here, so that the
 //! derivation need not know the language.
 
+use super::build::has_one_current;
 use super::diagnostic::{Diagnostic, Span};
 use super::names::{self, is_ground, nearest};
 use super::queries::empty_port;
@@ -362,7 +363,7 @@ impl<'c> Resolver<'c> {
     fn element(&self, name: &Name) -> Result<ElementId, Diagnostic> {
         let known = || self.circuit.elements.iter().map(|element| element.name.as_str());
         match self.elements.get(name.text.as_str()).copied() {
-            Some(id) if matches!(self.circuit[id].law, Law::Nullor(..)) => {
+            Some(id) if !has_one_current(self.circuit[id].class) => {
                 Err(unknown_element(name, None, true))
             }
             Some(id) => Ok(id),

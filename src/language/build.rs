@@ -5,8 +5,10 @@
 //! Questions come last: they are asked of the finished circuit.
 
 use super::ask::{self, Resolver};
+use super::bias::{BiasDraft, CouplingDraft, ShotDraft};
+use super::blocks;
 use super::definitions::{Definition, Definitions, Meaning, find_call, visit_names};
-use super::diagnostic::{Diagnostic, MOST_SHOWN, Severity, Span};
+use super::diagnostic::{Diagnostic, Label, MOST_SHOWN, Severity, Span};
 use super::names::{self, is_ground, nearest};
 use super::nodes::Nodes;
 use super::queries::reference_of;
@@ -20,11 +22,9 @@ use crate::circuit::{
     Band, Circuit, Class, Control, Element, ElementId, GROUND, Law, NodeId, Number, SymbolRole,
     Unit, Value,
 };
+use num_bigint::BigInt;
 use num_traits::Signed;
 use rustc_hash::FxHashMap;
-
-/// Pairs of names that are compared in search of slips; a larger file goes without.
-const MOST_COMPARED: usize = 1_000_000;
 
 /// An element before its value is known; nodes are numbers of [`Nodes`].
 #[derive(Debug)]
@@ -34,6 +34,8 @@ pub(crate) struct Draft {
     pub(crate) plus: usize,
     pub(crate) minus: usize,
     pub(crate) law: DraftLaw,
+    /// True for the slope of a device's characteristic.
+    pub(crate) noiseless: bool,
 }
 
 #[derive(Debug)]
@@ -44,10 +46,17 @@ pub(crate) enum DraftLaw {
     Source,
     /// A dependent source as written; empty for 0 V and 0 A.
     Controlled(Option<Expression>),
-    /// A dependent source of a device: the value of a definition times the voltage between two nodes.
-    ByVoltage(usize, usize, usize),
+    /// A dependent source of a device: the value of a definition, over that of another, times the
+    /// voltage between two nodes.
+    ByVoltage(usize, Option<usize>, usize, usize),
     /// Nullator between these nodes.
     Nullor(usize, usize),
+    /// The ratio, and the secondary.
+    Transformer(usize, usize, usize),
+    /// The conductance, and port 2.
+    Gyrator(usize, usize, usize),
+    /// Two inductors, and the mutual inductance.
+    Mutual(Name, Name, usize),
 }
 
 /// What is being built.
@@ -63,11 +72,16 @@ pub(crate) struct Builder<'s> {
     pub(crate) faults: Vec<Diagnostic>,
     /// True if a line could not be read: then unknown names prove nothing.
     pub(crate) incomplete: bool,
+    /// True while a line of a block is taken in.
+    pub(crate) in_block: bool,
     title: Option<(String, Span)>,
     band: Option<(Band, Span)>,
     pub(crate) queries: Vec<(Query, Span)>,
     pub(crate) claims: Vec<ClaimDraft>,
     pub(crate) limits: Vec<(Name, LimitPoint)>,
+    pub(crate) biases: Vec<BiasDraft>,
+    pub(crate) couplings: Vec<CouplingDraft>,
+    pub(crate) shots: Vec<ShotDraft>,
     temperature: Option<(Number, Span)>,
 }
 
@@ -89,12 +103,16 @@ impl<'s> Builder<'s> {
             devices: FxHashMap::default(),
             definitions: Definitions::default(),
             incomplete: !faults.is_empty(),
+            in_block: false,
             faults,
             title: None,
             band: None,
             queries: Vec::new(),
             claims: Vec::new(),
             limits: Vec::new(),
+            biases: Vec::new(),
+            couplings: Vec::new(),
+            shots: Vec::new(),
             temperature: None,
         }
     }
@@ -104,8 +122,16 @@ impl<'s> Builder<'s> {
         mut self,
         statements: Vec<Statement>,
     ) -> (Option<Circuit>, Vec<Diagnostic>) {
+        let statements = blocks::put_in(statements, &mut self.faults);
+        self.incomplete |= !self.faults.is_empty();
         for statement in statements {
+            let (used, before) = (statement.used, self.faults.len());
             self.statement(statement);
+            if let Some(used) = used {
+                for fault in &mut self.faults[before..] {
+                    fault.labels.push(Label { span: used, text: "used here".to_owned() });
+                }
+            }
         }
         let circuit = self.finish();
         let sound = !self.faults.iter().any(|fault| fault.severity == Severity::Error);
@@ -128,6 +154,7 @@ impl<'s> Builder<'s> {
 
     fn statement(&mut self, statement: Statement) {
         let span = statement.span;
+        self.in_block = statement.used.is_some();
         match statement.kind {
             StatementKind::Title(title) => {
                 if let Some((_, first)) = &self.title {
@@ -148,25 +175,14 @@ impl<'s> Builder<'s> {
             }
             StatementKind::Limit(name, point) => self.limits.push((name, point)),
             StatementKind::Temperature(quantity) => self.set_temperature(*quantity),
-            StatementKind::BlockStart(block) => {
-                let [terminals, parameters] = [block.terminals.len(), block.parameters.len()];
-                let block = format!(
-                    "a block (`{}`, {terminals} terminals, {parameters} parameters)",
-                    block.name.text
-                );
-                self.not_yet(span, &block);
-                self.incomplete = true;
+            StatementKind::Instance(name) => {
+                if self.is_free(&name) {
+                    self.devices.insert(name.text, name.span);
+                }
             }
-            StatementKind::BlockEnd => self.not_yet(span, "`end` of a block"),
-            StatementKind::Use(device) => {
-                self.not_yet(span, &format!("`use {}`", device.kind.text));
-                self.incomplete = true;
-            }
+            // Blocks are put in before anything is built.
+            StatementKind::BlockStart(_) | StatementKind::BlockEnd | StatementKind::Use(_) => {}
         }
-    }
-
-    pub(crate) fn not_yet(&mut self, span: Span, what: &str) {
-        self.error("not-yet", span, format!("{what} is not yet supported"));
     }
 
     fn band(&mut self, from: &Quantity, to: &Quantity, span: Span) {
@@ -192,6 +208,12 @@ impl<'s> Builder<'s> {
         } else {
             self.temperature = Some((quantity.value, quantity.span));
         }
+    }
+
+    /// The temperature of the file, or 300 K.
+    pub(crate) fn kelvin(&self) -> Number {
+        let usual = || Number::from(BigInt::from(300));
+        self.temperature.as_ref().map_or_else(usual, |(kelvin, _)| kelvin.clone())
     }
 
     fn let_name(&mut self, name: Name, value: Option<Content>) {
@@ -223,7 +245,7 @@ impl<'s> Builder<'s> {
         self.definitions.add(Definition {
             name: name.text,
             span: name.span,
-            role: SymbolRole::Parameter,
+            role: if self.in_block { SymbolRole::DeviceParameter } else { SymbolRole::Parameter },
             meaning,
             unit,
             uses: 0,
@@ -234,12 +256,14 @@ impl<'s> Builder<'s> {
 
     /// Reports a name that cannot be given: reserved, or with a sign or a dot in it.
     pub(crate) fn refuse_name(&mut self, name: &Name) -> bool {
-        if names::is_reserved(&name.text) {
+        // A name of a block stands behind that of its use.
+        let local = if self.in_block { names::local(&name.text) } else { &name.text };
+        if names::is_reserved(local) {
             self.error("reserved", name.span, format!("`{}` is a word of the language", name.text));
             return true;
         }
-        let good = name.text.chars().all(|c| c.is_ascii_alphanumeric() || c == '_')
-            && !name.text.starts_with(|c: char| c.is_ascii_digit());
+        let good = local.chars().all(|c| c.is_ascii_alphanumeric() || c == '_')
+            && !local.starts_with(|c: char| c.is_ascii_digit());
         if !good {
             self.faults.push(
                 Diagnostic::error("bad-name", name.span, format!("`{}` is no name", name.text))
@@ -273,6 +297,7 @@ impl<'s> Builder<'s> {
         let mut faults = std::mem::take(&mut self.faults);
         self.definitions.settle(&mut faults);
         self.faults = faults;
+        self.settle_numbers();
         if self.faults.iter().any(|fault| fault.severity == Severity::Error) {
             // What follows would only repeat what the first errors caused.
             return None;
@@ -286,6 +311,7 @@ impl<'s> Builder<'s> {
             ..Circuit::default()
         };
         self.make_elements(&terms, &mut circuit);
+        self.list_shots(&mut circuit);
         self.number_symbols(&units, &mut circuit);
         let asked = self.resolve_queries(&mut circuit);
         self.resolve_limits(&mut circuit);
@@ -330,6 +356,7 @@ impl<'s> Builder<'s> {
     /// The error for a source's or a device's name inside an expression.
     fn source_in_expression(&self, name: &str, span: Span) -> Option<Diagnostic> {
         if let Some(draft) = self.elements.get(name).map(|index| &self.drafts[*index])
+            && (has_one_current(draft.class) || draft.class == Class::Opamp)
             && self.definitions.find(name).is_none()
         {
             let plus = self.nodes.name(draft.plus);
@@ -374,9 +401,14 @@ impl<'s> Builder<'s> {
         {
             visit_names(expression, &mut note);
         }
-        // A claim makes no parameters, but it uses those that there are.
-        for claim in &self.claims {
-            visit_names(&claim.expression, &mut |name, span| {
+        // Claims and numbers of a bias make no parameters, but use those that there are.
+        let numbers = self.biases.iter().flat_map(|bias| &bias.numbers);
+        let numbers = numbers.filter_map(|given| match &given.value {
+            Some(Content::Expression(expression)) => Some(expression),
+            _ => None,
+        });
+        for expression in self.claims.iter().map(|claim| &claim.expression).chain(numbers) {
+            visit_names(expression, &mut |name, span| {
                 if self.definitions.find(name).is_some() {
                     note(name, span);
                 }
@@ -452,6 +484,10 @@ impl<'s> Builder<'s> {
         let mut faults = Vec::new();
         for (draft, terms) in self.drafts.iter().zip(terms) {
             let Some(law) = self.law(draft, terms, &mut faults) else { continue };
+            if draft.noiseless {
+                let id = u32::try_from(circuit.elements.len()).unwrap_or(u32::MAX);
+                circuit.noiseless.push(ElementId(id));
+            }
             circuit.elements.push(Element {
                 name: draft.name.text.clone(),
                 class: draft.class,
@@ -490,11 +526,39 @@ impl<'s> Builder<'s> {
             DraftLaw::Source if draft.class == Class::Voltage => Law::VoltageSource,
             DraftLaw::Source => Law::CurrentSource,
             DraftLaw::Nullor(a, b) => Law::Nullor(self.nodes.id(*a), self.nodes.id(*b)),
-            DraftLaw::ByVoltage(id, a, b) => {
-                let gain = self.definitions.settled(*id)?.value.clone();
+            DraftLaw::ByVoltage(id, over, a, b) => {
+                let mut gain = self.definitions.settled(*id)?.value.clone();
+                if let Some(over) = over {
+                    let divisor = self.definitions.settled(*over)?.value.clone();
+                    gain = Value::Product(vec![gain, Value::Power(Box::new(divisor), -1)]);
+                }
                 let voltage =
                     crate::circuit::Quantity::Voltage(self.nodes.id(*a), self.nodes.id(*b));
                 controlled(draft.class, vec![Control { gain, quantity: voltage }])
+            }
+            DraftLaw::Transformer(id, a, b) => Law::Transformer {
+                ratio: self.definitions.settled(*id)?.value.clone(),
+                secondary: (self.nodes.id(*a), self.nodes.id(*b)),
+            },
+            DraftLaw::Gyrator(id, a, b) => Law::Gyrator {
+                conductance: self.definitions.settled(*id)?.value.clone(),
+                second: (self.nodes.id(*a), self.nodes.id(*b)),
+            },
+            DraftLaw::Mutual(first, second, id) => {
+                let inductance = self.definitions.settled(*id)?.value.clone();
+                let (a, b) = (self.inductor(first, faults), self.inductor(second, faults));
+                let (first_id, second_id) = (a?, b?);
+                if first_id == second_id {
+                    faults.push(
+                        Diagnostic::error(
+                            "inductors",
+                            second.span,
+                            format!("`{}` is coupled to itself", second.text),
+                        )
+                        .help("name two inductors"),
+                    );
+                }
+                Law::Mutual { first: first_id, second: second_id, inductance }
             }
             DraftLaw::Controlled(_) => {
                 let mut controls = Vec::with_capacity(terms.len());
@@ -525,7 +589,10 @@ impl<'s> Builder<'s> {
                 Some(crate::circuit::Quantity::Voltage(plus, minus))
             }
             Access::Current(name) => {
-                if let Some(index) = self.elements.get(&name.text) {
+                let index = self.elements.get(&name.text);
+                if let Some(index) =
+                    index.filter(|index| has_one_current(self.drafts[**index].class))
+                {
                     // Elements are made in the order of the drafts, one for each.
                     return Some(crate::circuit::Quantity::Current(ElementId(
                         u32::try_from(*index).ok()?,
@@ -538,6 +605,29 @@ impl<'s> Builder<'s> {
                 None
             }
         }
+    }
+
+    /// An inductor of a coupling.
+    fn inductor(&self, name: &Name, faults: &mut Vec<Diagnostic>) -> Option<ElementId> {
+        let Some(index) = self.elements.get(&name.text) else {
+            let known = self.drafts.iter().filter(|draft| draft.class == Class::Inductor);
+            let known = known.map(|draft| draft.name.text.as_str());
+            let near = self.suggest(&name.text, known, faults.len());
+            faults.push(ask::unknown_element(name, near, false));
+            return None;
+        };
+        if self.drafts[*index].class != Class::Inductor {
+            faults.push(
+                Diagnostic::error(
+                    "inductors",
+                    name.span,
+                    format!("`{}` is no inductor", name.text),
+                )
+                .help("a coupling takes the names of two inductors"),
+            );
+            return None;
+        }
+        u32::try_from(*index).ok().map(ElementId)
     }
 
     fn known_node(&self, name: &Name, faults: &mut Vec<Diagnostic>) -> Option<NodeId> {
@@ -594,103 +684,6 @@ impl<'s> Builder<'s> {
         circuit.asks = asks;
         names
     }
-
-    fn warn(&mut self, circuit: &Circuit) {
-        let mut warnings = Vec::new();
-        let declared: Vec<&str> = self
-            .definitions
-            .list
-            .iter()
-            .filter(|definition| !definition.implicit || definition.uses > 1)
-            .map(|definition| definition.name.as_str())
-            .collect();
-        let implicit =
-            self.definitions.list.iter().filter(|definition| definition.implicit).count();
-        for definition in &self.definitions.list {
-            let name = &definition.name;
-            if implicit.saturating_mul(declared.len()) < MOST_COMPARED
-                && definition.implicit
-                && definition.uses == 1
-            {
-                if let Some(near) = nearest(name, declared.iter().copied()) {
-                    warnings.push(
-                        Diagnostic::warning(
-                            "near-miss",
-                            definition.span,
-                            format!("`{name}` is used once and declared nowhere"),
-                        )
-                        .help(format!("is it `{near}`? If not, declare it: `let {name}`")),
-                    );
-                }
-            } else if definition.by_let && definition.uses == 0 {
-                warnings.push(
-                    Diagnostic::warning(
-                        "unused",
-                        definition.span,
-                        format!("`{name}` is declared and never used"),
-                    )
-                    .help("remove the line, or use the name"),
-                );
-            }
-        }
-        self.warn_open_ends(circuit, &mut warnings);
-        self.faults.append(&mut warnings);
-    }
-
-    /// An element with one end on nothing else does nothing, unless that node is asked for.
-    fn warn_open_ends(&self, circuit: &Circuit, warnings: &mut Vec<Diagnostic>) {
-        let mut touched = vec![0_u32; circuit.nodes.len()];
-        let mut touch = |node: NodeId, times: u32| touched[node.0 as usize] += times;
-        touch(GROUND, 2);
-        for element in &circuit.elements {
-            touch(element.plus, 1);
-            touch(element.minus, 1);
-            match &element.law {
-                Law::Nullor(a, b) => {
-                    touch(*a, 1);
-                    touch(*b, 1);
-                }
-                Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls) => {
-                    for control in controls {
-                        if let crate::circuit::Quantity::Voltage(a, b) = control.quantity {
-                            touch(a, 1);
-                            touch(b, 1);
-                        }
-                    }
-                }
-                _ => {}
-            }
-        }
-        for node in circuit.asks.iter().flat_map(ask::nodes) {
-            touch(node, 2);
-        }
-        for (element, draft) in circuit.elements.iter().zip(&self.drafts) {
-            // A transistor tied as a diode has such parts by right.
-            if element.name.contains('.') {
-                continue;
-            }
-            if element.plus == element.minus {
-                warnings.push(Diagnostic::warning(
-                    "both-ends",
-                    draft.name.span,
-                    format!("both ends of `{}` are on one node", element.name),
-                ));
-                continue;
-            }
-            for node in [element.plus, element.minus] {
-                if touched[node.0 as usize] == 1 {
-                    warnings.push(Diagnostic::warning(
-                        "open-end",
-                        draft.name.span,
-                        format!(
-                            "nothing else is tied to `{}` at node `{}`",
-                            element.name, circuit[node].name
-                        ),
-                    ));
-                }
-            }
-        }
-    }
 }
 
 /// The messages for names that other notations give a meaning.
@@ -742,6 +735,14 @@ pub(crate) fn make_band(from: &Quantity, to: &Quantity) -> Result<Band, Diagnost
         ));
     }
     Ok(Band { from: from.value.clone(), to: to.value.clone() })
+}
+
+/// Whether `I(…)` of such an element means something.
+pub(crate) fn has_one_current(class: Class) -> bool {
+    !matches!(
+        class,
+        Class::Opamp | Class::Nullor | Class::Transformer | Class::Gyrator | Class::Mutual
+    )
 }
 
 fn controlled(class: Class, controls: Vec<Control>) -> Law {

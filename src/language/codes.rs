@@ -32,6 +32,22 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "a band is empty, does not begin above 0 or has a tolerance",
         "write it like `band 10 Hz to 1 MHz`",
     ),
+    (
+        "bias",
+        "a bias is not above 0, has no number, or the kind of device takes none",
+        "write it like `at 1 mA`, with `beta = 100`, `VA = 50 V` as numbers",
+    ),
+    ("block-end", "a block has no `end`, or an `end` has no block", "close each block by `end`"),
+    (
+        "block-parameter",
+        "a block's parameter that is an element has a value already",
+        "leave out one of the two values",
+    ),
+    (
+        "block-statement",
+        "a block holds a line that belongs to the circuit",
+        "keep walks, devices, `let` and `use` in blocks, and the rest outside",
+    ),
     ("both-ends", "both ends of an element are on one node", "check the walk and the wires"),
     ("capital-k", "`K` was written for kilo", "write `k`"),
     (
@@ -44,6 +60,11 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "a claim names no single answer",
         "name an `ask`, or an entry of a two-port set (`P.z21`)",
     ),
+    (
+        "coupling",
+        "a coupling is stronger than two inductors can have, or its factor is no number",
+        "write a factor between -1 and 1, or an inductance of at most √(L1·L2)",
+    ),
     ("decimal-comma", "a comma was written as the decimal sign", "write a point"),
     (
         "device-in-value",
@@ -52,6 +73,7 @@ pub const CODES: &[(&str, &str, &str)] = &[
     ),
     ("digit-groups", "spaces stand inside a number", "write the digits together"),
     ("duplicate", "a name or a statement stands twice", "choose another name, or remove one"),
+    ("either", "two parameters say the same thing twice", "leave one of them out"),
     (
         "element-as-node",
         "an element stands where a walk has a node",
@@ -63,6 +85,7 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "`from` names a source that the query does not need or contradicts",
         "leave `from` out",
     ),
+    ("inductors", "a coupling names what is no inductor", "name two different inductors"),
     ("limit", "a limit of what is no symbol", "name a symbol, or `s`"),
     ("meg", "`meg` was written for mega", "write `M`"),
     (
@@ -81,9 +104,18 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "correct it, or declare it with `let`",
     ),
     ("needs", "a parameter needs another one", "give that one too"),
-    ("nesting", "parentheses are nested too deep", "name a part with `let`"),
+    (
+        "nesting",
+        "parentheses or blocks are nested too deep",
+        "name a part with `let`, or use fewer levels of blocks",
+    ),
     ("no-class", "an element's name does not tell its class", "write the class word before it"),
     ("no-function", "a name stands before `(` and is no query", "write `*` between them"),
+    (
+        "no-number",
+        "a coupling factor gives no number, because an inductor has none",
+        "give both inductors their values",
+    ),
     ("no-parameters", "a device has no parameter", "name those that exist"),
     (
         "no-query",
@@ -96,7 +128,6 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "a source's value is not linear in voltages and currents",
         "write a sum of factor times `V(…)` or `I(…)`",
     ),
-    ("not-yet", "this part of the language is not yet supported", "leave it out"),
     ("number", "a number is malformed", "write it like `0.5` or `1e3`"),
     (
         "number-letter",
@@ -105,12 +136,12 @@ pub const CODES: &[(&str, &str, &str)] = &[
     ),
     ("number-range", "a number is too large, too small or too long", "check the exponent"),
     ("open-end", "nothing else is tied to one end of an element", "check the node's name"),
-    ("parenthesis", "a parenthesis is never closed", "add the missing `)`"),
     (
         "parameter-set",
         "a set of two-port parameters is unknown",
         "use z, y, h, g, chain, inverse_chain, scattering or transfer_scattering",
     ),
+    ("parenthesis", "a parenthesis is never closed", "add the missing `)`"),
     ("power", "a power is no integer, or too large", "use integer powers"),
     ("power-stars", "`**` was written for a power", "write `^`"),
     ("query-in-value", "a query stands inside an expression", "ask for it by itself"),
@@ -126,6 +157,7 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "name a dependent source, a finite op-amp or a device's `gm`",
     ),
     ("role", "a terminal has no node or several", "write `role node` and a comma"),
+    ("rounded", "a number is irrational", "it is rounded to 30 digits; nothing is to be done"),
     (
         "s-in-value",
         "the value of an element other than an impedance or admittance depends on `s`",
@@ -156,7 +188,11 @@ pub const CODES: &[(&str, &str, &str)] = &[
     ("temperature", "a temperature is not above 0 K", "write it like `temperature 300 K`"),
     ("temperature-unit", "a temperature is not in kelvin", "write it like `temperature 300 K`"),
     ("tolerance", "a tolerance has neither a percent sign nor a unit", "write `± 1 %`"),
-    ("too-large", "a value grows beyond all use", "leave a name without a value"),
+    (
+        "too-large",
+        "a value or the blocks grow beyond all use",
+        "leave a name without a value, or use fewer blocks",
+    ),
     ("two-sources", "a ratio names two independent sources", "name what one of them causes"),
     (
         "unexpected-character",
@@ -169,6 +205,7 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "a parameter's unit would have an odd power",
         "check the expressions that hold it",
     ),
+    ("unknown-block", "a block is not defined", "check the name, or define it"),
     ("unknown-class", "a word before an element's name is no class", "use one of the class words"),
     (
         "unknown-element",

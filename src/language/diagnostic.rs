@@ -72,6 +72,10 @@ impl Diagnostic {
         Self::new(Severity::Warning, code, span, message.into())
     }
 
+    pub(crate) fn notice(code: &'static str, span: Span, message: impl Into<String>) -> Self {
+        Self::new(Severity::Notice, code, span, message.into())
+    }
+
     /// Adds a line of help.
     #[must_use]
     pub(crate) fn help(mut self, text: impl Into<String>) -> Self {

@@ -153,11 +153,16 @@ fn expected(positives: &[Rule]) -> String {
                 "an operator"
             }
             Rule::bars => "`||`",
-            Rule::name | Rule::kind | Rule::callee => "a name",
+            Rule::name
+            | Rule::names
+            | Rule::parameter
+            | Rule::parameters
+            | Rule::kind
+            | Rule::callee => "a name",
             Rule::node | Rule::nodes | Rule::part | Rule::step => "a node or an element",
             Rule::quantity | Rule::figure | Rule::plus_minus | Rule::tolerance => "a quantity",
             Rule::unit => "a unit",
-            Rule::value | Rule::walk_value => "a value",
+            Rule::value | Rule::walk_value | Rule::block_value => "a value",
             Rule::sum
             | Rule::walk_sum
             | Rule::term

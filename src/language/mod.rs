@@ -8,12 +8,15 @@
 //! May use: [`crate::circuit`].
 
 mod ask;
+mod bias;
+mod blocks;
 mod build;
 mod claim;
 mod codes;
 mod definitions;
 mod devices;
 mod diagnostic;
+mod expand;
 mod expression;
 mod fault;
 mod names;
@@ -21,6 +24,7 @@ mod nodes;
 mod parse;
 mod quantity;
 mod queries;
+mod scope;
 mod source;
 mod sources;
 mod symbols;
@@ -29,6 +33,7 @@ mod syntax;
 mod tests;
 mod units;
 mod walks;
+mod warnings;
 
 pub use claim::{UnitClash, claim_units};
 pub use codes::CODES;

@@ -150,8 +150,14 @@ pub(crate) fn trade_word(name: &str) -> Option<&'static str> {
     })
 }
 
+/// A name without those of the blocks around it.
+pub(crate) fn local(name: &str) -> &str {
+    name.rsplit('.').next().unwrap_or(name)
+}
+
 /// The class that a name's first letter tells, if it may.
 pub(crate) fn class_of_letter(name: &str) -> Option<Class> {
+    let name = local(name);
     if trade_word(name).is_some() {
         return None;
     }
@@ -168,7 +174,7 @@ pub(crate) fn class_of_letter(name: &str) -> Option<Class> {
 
 /// True for names like `C1`: a class's letter and a number.
 pub(crate) fn looks_like_element(name: &str) -> bool {
-    class_of_letter(name).is_some() && name[1..].starts_with(|c: char| c.is_ascii_digit())
+    class_of_letter(name).is_some() && local(name)[1..].starts_with(|c: char| c.is_ascii_digit())
 }
 
 /// The known name nearest to a typo: at most one slip, two in long names, or other capitals.

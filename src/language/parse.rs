@@ -44,7 +44,7 @@ pub(crate) fn statement(
     let pair = tokens(source, line, rule, faults)?;
     let mut reader = Reader { source, offset: line.start, faults };
     let kind = reader.statement(pair)?;
-    Some(Statement { kind, span: source.span(line.clone()) })
+    Some(Statement { kind, span: source.span(line.clone()), used: None })
 }
 
 /// Runs the grammar on a part of the folded text.
@@ -268,22 +268,34 @@ impl Reader<'_> {
             Rule::block_line => {
                 let name = self.name(&inner.next()?);
                 let mut block = Block { name, terminals: Vec::new(), parameters: Vec::new() };
-                let mut after_semicolon = false;
                 for pair in inner {
-                    if pair.as_rule() == Rule::semicolon {
-                        after_semicolon = true;
-                        continue;
+                    let rule = pair.as_rule();
+                    for part in pair.into_inner() {
+                        match (rule, part.as_rule()) {
+                            (Rule::names, Rule::name) => block.terminals.push(self.name(&part)),
+                            (Rule::parameters, Rule::parameter) => {
+                                block.parameters.push(self.parameter(part)?);
+                            }
+                            _ => {}
+                        }
                     }
-                    let names = pair.into_inner().filter(|p| p.as_rule() == Rule::name);
-                    let list =
-                        if after_semicolon { &mut block.parameters } else { &mut block.terminals };
-                    list.extend(names.map(|p| self.name(&p)));
                 }
                 Some(StatementKind::BlockStart(block))
             }
             Rule::end_line => Some(StatementKind::BlockEnd),
             _ => None,
         }
+    }
+
+    /// A parameter of a block, with its default.
+    fn parameter(&mut self, pair: Pair<'_, Rule>) -> Option<(Name, Option<Content>)> {
+        let mut inner = pair.into_inner();
+        let name = self.name(&inner.next()?);
+        let value = match inner.find(|token| token.as_rule() == Rule::block_value) {
+            Some(value) => Some(self.value(value, false)?),
+            None => None,
+        };
+        Some((name, value))
     }
 
     fn step(&mut self, pair: Pair<'_, Rule>) -> Option<Step> {

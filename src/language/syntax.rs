@@ -18,6 +18,8 @@ pub(crate) struct Name {
 pub(crate) struct Statement {
     pub(crate) kind: StatementKind,
     pub(crate) span: Span,
+    /// For a line of a block: where the block is used. Such a line may hold dotted names.
+    pub(crate) used: Option<Span>,
 }
 
 #[derive(Debug)]
@@ -36,6 +38,8 @@ pub(crate) enum StatementKind {
     BlockStart(Block),
     BlockEnd,
     Use(Device),
+    /// The name of a block that has been put in.
+    Instance(Name),
 }
 
 /// Where a limit goes.
@@ -50,18 +54,19 @@ pub(crate) enum LimitPoint {
 pub(crate) struct Block {
     pub(crate) name: Name,
     pub(crate) terminals: Vec<Name>,
-    pub(crate) parameters: Vec<Name>,
+    /// With their defaults.
+    pub(crate) parameters: Vec<(Name, Option<Content>)>,
 }
 
 /// What stands between two `>`: one node, or elements joined by `||`.
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub(crate) struct Step {
     pub(crate) parts: Vec<Part>,
     pub(crate) span: Span,
 }
 
 /// `in`, `R1`, `voltage Vin`, `R1 = 10 kΩ`.
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub(crate) struct Part {
     /// One word, or a class word and a name.
     pub(crate) words: Vec<Name>,
@@ -70,14 +75,14 @@ pub(crate) struct Part {
 }
 
 /// `KIND NAME: item, item`; also `use BLOCK NAME: item, item`.
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub(crate) struct Device {
     pub(crate) kind: Name,
     pub(crate) name: Name,
     pub(crate) items: Vec<Item>,
 }
 
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub(crate) enum Item {
     /// `base b`, `primary a b`, or a bare parameter `gm`.
     Role(Vec<Name>),

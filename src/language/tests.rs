@@ -1,6 +1,8 @@
 //! Every refusal of the language is a row here, and so is every thing that it accepts beside it.
 
+mod blocks;
 mod claims;
+mod devices;
 
 use super::{Reading, Severity, band, line_and_column, parse_expression, query, read, render};
 use crate::circuit::{Circuit, Drive, Law, Number, Probe, Quantity, SymbolRole, Unit, Value};
@@ -229,30 +231,6 @@ fn values_have_their_own_messages() {
 }
 
 #[test]
-fn devices_have_their_own_messages() {
-    let check = |line: &str, code: &str, column: u32, says: &str| {
-        refuses(&format!("a > R1 > b\n{line}"), code, (2, column), says);
-    };
-    check("opamp U1: plus a, minus b", "missing-role", 7, "output");
-    check("opamp U1: plus a, minus b, output c, rin", "needs", 38, "gain");
-    check("opamp U1: plus a, minus b, output c, rout = 50", "needs", 38, "gain");
-    check("opamp U1: plus a, minus b, output c, gian = A0", "unknown-item", 38, "`gain`");
-    check("opamp U1: plus a, plus b, output c", "duplicate", 19, "twice");
-    check("opamp U1: plus a b, minus b, output c", "role", 11, "one node");
-    check("opamp U1: plus V+, minus b, output c", "bad-node", 16, "`Vp`");
-    check("opamp R1: plus a, minus b, output c", "duplicate", 7, "element");
-    check("opamp U1 plus a, minus b, output c", "syntax", 10, "`:`");
-    check("opmap U1: plus a, minus b, output c", "unknown-kind", 1, "`opamp`");
-    check("bjt Q1: base a, collector b, emitter ground", "no-parameters", 5, "gm");
-    check("bjt Q1: base a, collector b, emitter ground, gm = 2 nF", "wrong-unit", 51, "`S`");
-    check("bjt Q1: base a, collector b, emitter ground, gm, gm", "duplicate", 50, "twice");
-    check("bjt Q1: base a, collector b, emitter ground, at 1 mA", "not-yet", 49, "at");
-    check("gyrator X1: port1 a ground, port2 b ground, conductance = g", "not-yet", 1, "gyrator");
-    check("block b1(a, b; R)", "not-yet", 1, "block");
-    check("use b1 S1: a b", "not-yet", 1, "use");
-}
-
-#[test]
 fn questions_have_their_own_messages() {
     let base = "in > voltage Vin > ground\nin > R1 > out > R2 > ground\n";
     let check = |line: &str, code: &str, column: u32, says: &str| {
@@ -285,23 +263,34 @@ fn questions_have_their_own_messages() {
 fn every_code_is_explained() {
     let sources = [
         include_str!("ask.rs"),
+        include_str!("bias.rs"),
+        include_str!("blocks.rs"),
         include_str!("build.rs"),
         include_str!("claim.rs"),
         include_str!("definitions.rs"),
+        include_str!("expand.rs"),
         include_str!("expression.rs"),
         include_str!("fault.rs"),
         include_str!("parse.rs"),
         include_str!("quantity.rs"),
         include_str!("queries.rs"),
+        include_str!("scope.rs"),
         include_str!("sources.rs"),
         include_str!("symbols.rs"),
         include_str!("units.rs"),
         include_str!("walks.rs"),
+        include_str!("warnings.rs"),
     ];
     let mut used: Vec<&str> = sources
         .iter()
         .flat_map(|source| {
-            let calls = ["Diagnostic::error(", "Diagnostic::warning(", "self.error(", "fault("];
+            let calls = [
+                "Diagnostic::error(",
+                "Diagnostic::warning(",
+                "Diagnostic::notice(",
+                "self.error(",
+                "fault(",
+            ];
             calls.into_iter().flat_map(|call| source.split(call).skip(1))
         })
         .filter_map(|rest| rest.trim_start().strip_prefix('"')?.split('"').next())
@@ -311,6 +300,22 @@ fn every_code_is_explained() {
     used.dedup();
     let explained: Vec<&str> = super::CODES.iter().map(|(code, ..)| *code).collect();
     assert_eq!(explained, used);
+}
+
+#[test]
+fn the_page_of_diagnostics_is_current() {
+    use std::fmt::Write;
+    let mut page = "# Diagnostics of the reader\n\n\
+                    Each finding bears a code, which stays the same. This page is made from the list \
+                    of codes by a test:\n`UPDATE_EXPECT=1 cargo test --lib page_of_diagnostics` writes it anew.\n\n\
+                    | code | cause | remedy |\n| --- | --- | --- |\n"
+        .to_owned();
+    for (code, cause, remedy) in super::CODES {
+        let escaped = |text: &str| text.replace('|', "\\|");
+        // Writing into a string cannot fail.
+        let _ = writeln!(page, "| `{code}` | {} | {} |", escaped(cause), escaped(remedy));
+    }
+    expect_test::expect_file!["../../docs/diagnostics.md"].assert_eq(&page);
 }
 
 /// The values of all elements, as text with the symbols' names.

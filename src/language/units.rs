@@ -8,7 +8,7 @@ use super::definitions::{Definitions, Meaning};
 use super::diagnostic::{Diagnostic, Span};
 use super::names::{class_of_letter, unit_of};
 use super::syntax::{Expression, ExpressionKind};
-use crate::circuit::{Number, SymbolRole, Unit};
+use crate::circuit::{Number, Unit};
 use num_bigint::BigInt;
 use num_traits::{One, Signed, ToPrimitive, Zero};
 use rustc_hash::FxHashMap;
@@ -148,7 +148,8 @@ impl<'d> UnitSolver<'d> {
     /// Where nothing tells the unit of a parameter, its letter does (`Rx` is in ohm).
     pub(crate) fn guess_free(&mut self) {
         for (id, definition) in self.definitions.list.iter().enumerate() {
-            if definition.role == SymbolRole::Parameter
+            if matches!(definition.meaning, Meaning::Symbol { .. })
+                && definition.unit.is_none()
                 && let Some(class) = class_of_letter(&definition.name)
                 && self.reduce(Form::unknown(id)) == Form::unknown(id)
             {

@@ -1,14 +1,17 @@
-//! Walks and devices: from what stands in a line to element drafts.
+//! Walks: from what stands between nodes to element drafts.
+//!
+//! The alternation of nodes and elements is checked here, as are the names of nodes and the classes of
+//! elements; values are only defined, not looked at.
 
 use super::build::{Builder, Draft, DraftLaw};
 use super::definitions::{Definition, Meaning, find_call};
-use super::devices::{self, Kind, PartLaw, Pin, When};
+use super::devices;
 use super::diagnostic::{Diagnostic, Span};
 use super::names::{
     self, class_of_letter, class_of_word, looks_like_element, nearest, trade_word, unit_of,
     word_of_class,
 };
-use super::syntax::{Content, Device, Item, Name, Part, Quantity, Step};
+use super::syntax::{Content, Name, Part, Quantity, Step};
 use crate::circuit::{Class, SymbolRole, Unit};
 use num_traits::Zero;
 
@@ -44,7 +47,7 @@ impl Builder<'_> {
 
     /// The node of that name; reports names that no node can bear.
     pub(crate) fn node(&mut self, name: &Name) -> Option<usize> {
-        match node_fault(name) {
+        match node_fault(name, self.in_block) {
             Some(fault) => {
                 self.faults.push(fault);
                 self.incomplete = true;
@@ -62,7 +65,7 @@ impl Builder<'_> {
         }
     }
 
-    fn clash(&mut self, name: &Name, place: Span, what: &str) {
+    pub(crate) fn clash(&mut self, name: &Name, place: Span, what: &str) {
         self.faults.push(
             Diagnostic::error(
                 "duplicate",
@@ -75,7 +78,7 @@ impl Builder<'_> {
     }
 
     /// True if a name is free for an element or a device; reports if it is not.
-    fn is_free(&mut self, name: &Name) -> bool {
+    pub(crate) fn is_free(&mut self, name: &Name) -> bool {
         if self.refuse_name(name) {
             return false;
         }
@@ -146,10 +149,10 @@ impl Builder<'_> {
             }
         };
         let Some(law) = law else { return };
-        self.push(Draft { name, class, plus, minus, law });
+        self.push(Draft { name, class, plus, minus, law, noiseless: false });
     }
 
-    fn push(&mut self, draft: Draft) {
+    pub(crate) fn push(&mut self, draft: Draft) {
         self.elements.insert(draft.name.text.clone(), self.drafts.len());
         self.drafts.push(draft);
     }
@@ -168,7 +171,7 @@ impl Builder<'_> {
     }
 
     /// Defines what an element's or a parameter's name stands for.
-    fn define(
+    pub(crate) fn define(
         &mut self,
         name: &Name,
         role: SymbolRole,
@@ -200,7 +203,7 @@ impl Builder<'_> {
         })
     }
 
-    fn check_unit(&mut self, quantity: &Quantity, unit: Unit, what: &str) {
+    pub(crate) fn check_unit(&mut self, quantity: &Quantity, unit: Unit, what: &str) {
         if let Some(found) = quantity.unit
             && found != unit
         {
@@ -214,250 +217,6 @@ impl Builder<'_> {
             );
         }
     }
-
-    pub(crate) fn device(&mut self, device: Device) {
-        let Some(kind) = devices::kind(&device.kind.text) else {
-            let word = &device.kind.text;
-            if devices::is_later(word) {
-                self.not_yet(device.kind.span, &format!("`{word}`"));
-            } else {
-                let fault = Diagnostic::error(
-                    "unknown-kind",
-                    device.kind.span,
-                    format!("`{word}` is no kind of device"),
-                );
-                self.faults.push(match nearest(word, devices::kinds()) {
-                    Some(near) => fault.help(format!("is it `{near}`?")),
-                    None => fault.help(format!(
-                        "kinds are {}",
-                        devices::kinds().collect::<Vec<_>>().join(", ")
-                    )),
-                });
-            }
-            self.incomplete = true;
-            return;
-        };
-        if !self.is_free(&device.name) {
-            return;
-        }
-        self.devices.insert(device.name.text.clone(), device.name.span);
-        let Some(read) = self.terminals(kind, device) else {
-            self.incomplete = true;
-            return;
-        };
-        self.expand(kind, read);
-    }
-
-    /// Sorts a device's items into terminals and parameters.
-    fn terminals(&mut self, kind: &'static Kind, device: Device) -> Option<Terminals> {
-        let owner = device.name;
-        let mut nodes: Vec<Option<(usize, Span)>> = vec![None; kind.roles.len()];
-        let mut parameters: Vec<(usize, Name, Option<Content>)> = Vec::new();
-        let mut sound = true;
-        for item in device.items {
-            let (name, value) = match item {
-                Item::Bias(quantity) => {
-                    self.not_yet(quantity.span, &format!("a bias of `{}` (`at`)", owner.text));
-                    sound = false;
-                    continue;
-                }
-                Item::Binding(name, value) => (name, Some(value)),
-                Item::Role(mut words) => {
-                    if words.is_empty() {
-                        continue;
-                    }
-                    let first = words.remove(0);
-                    if let Some(role) = kind.roles.iter().position(|role| *role == first.text) {
-                        sound &= self.terminal(&first, &words, &mut nodes[role]);
-                        continue;
-                    }
-                    if !words.is_empty() {
-                        self.faults.push(unknown_item(kind, &first, kind.roles.iter().copied()));
-                        sound = false;
-                        continue;
-                    }
-                    (first, None)
-                }
-            };
-            let Some(parameter) = kind.parameters.iter().position(|(own, _)| *own == name.text)
-            else {
-                let known =
-                    kind.parameters.iter().map(|(own, _)| *own).chain(kind.roles.iter().copied());
-                self.faults.push(unknown_item(kind, &name, known));
-                sound = false;
-                continue;
-            };
-            if let Some((_, first, _)) = parameters.iter().find(|(known, ..)| *known == parameter) {
-                self.faults.push(
-                    Diagnostic::error(
-                        "duplicate",
-                        name.span,
-                        format!("`{}` is given twice", name.text),
-                    )
-                    .label(first.span, "here first"),
-                );
-                sound = false;
-                continue;
-            }
-            parameters.push((parameter, name, value));
-        }
-        let missing: Vec<&str> = kind
-            .roles
-            .iter()
-            .zip(&nodes)
-            .filter(|(_, node)| node.is_none())
-            .map(|(role, _)| *role)
-            .collect();
-        if !missing.is_empty() && sound {
-            self.faults.push(
-                Diagnostic::error(
-                    "missing-role",
-                    owner.span,
-                    format!("`{}` has no node for `{}`", owner.text, missing.join("`, `")),
-                )
-                .help(format!(
-                    "a {} has the terminals {}",
-                    kind.word,
-                    kind.roles.join(", ")
-                )),
-            );
-            sound = false;
-        }
-        for (parameter, needed) in kind.needs {
-            let given = |wanted: &str| {
-                parameters.iter().find(|(index, ..)| kind.parameters[*index].0 == wanted)
-            };
-            if let (Some((_, name, _)), None) = (given(parameter), given(needed)) {
-                self.faults.push(
-                    Diagnostic::error(
-                        "needs",
-                        name.span,
-                        format!("`{parameter}` needs `{needed}`: an ideal {} has none", kind.word),
-                    )
-                    .help(format!("add `{needed} = …`")),
-                );
-                sound = false;
-            }
-        }
-        let bare = parameters.is_empty()
-            && !kind.parts.iter().any(|part| matches!(part.when, When::Missing(_)));
-        if bare && sound {
-            self.faults.push(
-                Diagnostic::error(
-                    "no-parameters",
-                    owner.span,
-                    format!("`{}` has no parameter, so it does nothing", owner.text),
-                )
-                .help(format!(
-                    "name those that exist: {}",
-                    kind.parameters.iter().map(|(name, _)| *name).collect::<Vec<_>>().join(", ")
-                )),
-            );
-            sound = false;
-        }
-        if !sound {
-            return None;
-        }
-        let nodes =
-            nodes.into_iter().map(|node| node.map(|(node, _)| node)).collect::<Option<_>>()?;
-        Some(Terminals { owner, nodes, parameters })
-    }
-
-    fn terminal(&mut self, role: &Name, words: &[Name], slot: &mut Option<(usize, Span)>) -> bool {
-        let [name] = words else {
-            self.faults.push(
-                Diagnostic::error("role", role.span, format!("`{}` takes one node", role.text))
-                    .help(format!("write `{} node`, and a comma before the next", role.text)),
-            );
-            return false;
-        };
-        if let Some((_, first)) = slot {
-            self.faults.push(
-                Diagnostic::error(
-                    "duplicate",
-                    role.span,
-                    format!("`{}` is given twice", role.text),
-                )
-                .label(*first, "here first"),
-            );
-            return false;
-        }
-        let node = self.node(name);
-        *slot = node.map(|node| (node, role.span));
-        node.is_some()
-    }
-
-    /// Makes a device's elements.
-    fn expand(&mut self, kind: &'static Kind, read: Terminals) {
-        let Terminals { owner, nodes, parameters } = read;
-        let mut definitions: Vec<Option<usize>> = vec![None; kind.parameters.len()];
-        for (parameter, name, value) in parameters {
-            let (word, unit) = kind.parameters[parameter];
-            let name = Name { text: format!("{}.{word}", owner.text), span: name.span };
-            definitions[parameter] =
-                Some(self.define(&name, SymbolRole::DeviceParameter, unit, value));
-        }
-        let given = |word: &str| {
-            let index = kind.parameters.iter().position(|(own, _)| *own == word)?;
-            definitions[index]
-        };
-        let mut inner = nodes.clone();
-        for split in kind.splits.iter().filter(|split| given(split.parameter).is_some()) {
-            let name = format!("{}.{}", owner.text, split.suffix);
-            if let Some(role) = kind.roles.iter().position(|role| *role == split.terminal) {
-                inner[role] = self.nodes.add(&name, owner.span);
-            }
-        }
-        let pin = |pin: Pin| match pin {
-            Pin::Ground => 0,
-            Pin::At(role) => {
-                kind.roles.iter().position(|own| *own == role).map_or(0, |index| inner[index])
-            }
-            Pin::Outer(role) => {
-                kind.roles.iter().position(|own| *own == role).map_or(0, |index| nodes[index])
-            }
-        };
-        for part in kind.parts {
-            let (definition, name) = match part.when {
-                When::Given(word) => (given(word), format!("{}.{word}", owner.text)),
-                When::GivenWhole(word) => (given(word), owner.text.clone()),
-                When::Missing(word) if given(word).is_none() => (None, owner.text.clone()),
-                When::Missing(_) => continue,
-            };
-            let law = match (part.law, definition) {
-                (PartLaw::Nullor(a, b), _) => DraftLaw::Nullor(pin(a), pin(b)),
-                (_, None) => continue,
-                (PartLaw::Resistor | PartLaw::Capacitor, Some(id)) => DraftLaw::Passive(id),
-                (PartLaw::CurrentBy(a, b) | PartLaw::VoltageBy(a, b), Some(id)) => {
-                    DraftLaw::ByVoltage(id, pin(a), pin(b))
-                }
-            };
-            let class = match part.law {
-                PartLaw::Resistor => Class::Resistor,
-                PartLaw::Capacitor => Class::Capacitor,
-                PartLaw::CurrentBy(..) => Class::Current,
-                PartLaw::VoltageBy(..) => Class::Voltage,
-                PartLaw::Nullor(..) => Class::Opamp,
-            };
-            let draft = Draft {
-                name: Name { text: name, span: owner.span },
-                class,
-                plus: pin(part.plus),
-                minus: pin(part.minus),
-                law,
-            };
-            self.push(draft);
-        }
-    }
-}
-
-/// A device's items, sorted.
-struct Terminals {
-    owner: Name,
-    /// By role.
-    nodes: Vec<usize>,
-    /// (index of the parameter, its name as written, its value)
-    parameters: Vec<(usize, Name, Option<Content>)>,
 }
 
 /// What is wrong with the alternation of nodes and elements.
@@ -510,8 +269,8 @@ fn wrong_order(steps: &[Step]) -> Option<Diagnostic> {
 }
 
 /// What is wrong with the name of a node.
-fn node_fault(name: &Name) -> Option<Diagnostic> {
-    let text = name.text.as_str();
+pub(crate) fn node_fault(name: &Name, in_block: bool) -> Option<Diagnostic> {
+    let text = if in_block { names::local(&name.text) } else { name.text.as_str() };
     let fault = |message: String| Diagnostic::error("bad-node", name.span, message);
     if text == "0" {
         return Some(fault("node `0` has no meaning here".to_owned()).help("write `ground`"));
@@ -590,24 +349,5 @@ fn no_class(name: &Name) -> Diagnostic {
             fault.help(format!("class letters are capitals: write `{class} {text}`"))
         }
         _ => fault.help(format!("write its class before the name, as in `resistor {text}`")),
-    }
-}
-
-fn unknown_item(kind: &Kind, name: &Name, known: impl Iterator<Item = &'static str>) -> Diagnostic {
-    let fault = Diagnostic::error(
-        "unknown-item",
-        name.span,
-        format!("`{}` is no terminal and no parameter of `{}`", name.text, kind.word),
-    );
-    match nearest(&name.text, known) {
-        Some(near) => fault.help(format!("is it `{near}`?")),
-        None => {
-            let parameters: Vec<&str> = kind.parameters.iter().map(|(name, _)| *name).collect();
-            fault.help(format!(
-                "terminals: {}; parameters: {}",
-                kind.roles.join(", "),
-                parameters.join(", ")
-            ))
-        }
     }
 }

@@ -20,7 +20,8 @@ fn two_ports_know_their_set_and_ports() {
         let Question::TwoPort(ports) = question else { panic!("{text}") };
         let found = ports.reference.as_ref().map(|value| show(&circuit, value));
         assert_eq!((ports.set, found.as_deref()), (set, reference), "{text}");
-        let name = |port: (NodeId, NodeId)| format!("{} {}", circuit[port.0].name, circuit[port.1].name);
+        let name =
+            |port: (NodeId, NodeId)| format!("{} {}", circuit[port.0].name, circuit[port.1].name);
         assert_eq!((name(ports.port1), name(ports.port2)), ("in ground".into(), "out in".into()));
         assert_eq!(ports.removed, circuit.element("Vin").into_iter().collect::<Vec<_>>());
     };
@@ -191,7 +192,7 @@ fn units_of_claims_are_findings() {
     check("claim N = R1", Err(("V²/Hz", "Ω", "R1")));
     check(
         "claim H = ((((s^1000)^1000)^1000)^1000)",
-        Err(("1", "s⁻²¹⁴⁷⁴⁸³⁶⁴⁷", "((((s^1000)^1000)^1000)^1000)")),
+        Err(("1", "s⁻²¹⁴⁷⁴⁸³⁶⁴⁸", "((((s^1000)^1000)^1000)^1000)")),
     );
 }
 
