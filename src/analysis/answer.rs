@@ -97,7 +97,14 @@ pub fn answer(
         Question::Ratio(transfer) => {
             let mut entries = vec![ratio(transfer)?];
             if let Some(around) = options.feedback {
-                entries.extend(feedback::parts(circuit, ask, transfer, &entries[0], around, options)?);
+                entries.extend(feedback::parts(
+                    circuit,
+                    ask,
+                    transfer,
+                    &entries[0],
+                    around,
+                    options,
+                )?);
             }
             Ok(entries)
         }

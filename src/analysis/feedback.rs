@@ -46,10 +46,8 @@ pub(crate) fn parts(
         let name = format!("{}.{suffix}", ask.name);
         Entry::new(circuit, name, format!("{}, {words}", ask.text), unit, derivation)
     };
-    let mut ideal =
-        entry("ideal", format!("`{name}` infinitely strong"), transfer.unit, ideal);
-    let loop_gain =
-        entry("return_ratio", format!("return_ratio({name})"), Unit::ONE, loop_gain);
+    let mut ideal = entry("ideal", format!("`{name}` infinitely strong"), transfer.unit, ideal);
+    let loop_gain = entry("return_ratio", format!("return_ratio({name})"), Unit::ONE, loop_gain);
     let feed = entry("feed_through", format!("`{name}` silenced"), transfer.unit, silent);
     ideal.checks.push(proven(whole, &ideal, &loop_gain, &feed));
     Ok(vec![ideal, loop_gain, feed])
@@ -101,10 +99,8 @@ fn proven(whole: &Entry, ideal: &Entry, loop_gain: &Entry, feed: &Entry) -> Chec
     let holds = parts.into_iter().collect::<Option<Vec<_>>>().is_some_and(|parts| equal(&parts));
     let is = if holds { "is" } else { "is NOT" };
     let points = POINTS_PER_PRIME * MODULI;
-    let statement = format!(
-        "{} {is} {formula}, at {points} random points modulo {MODULI} primes",
-        whole.name
-    );
+    let statement =
+        format!("{} {is} {formula}, at {points} random points modulo {MODULI} primes", whole.name);
     Check { statement, passed: holds }
 }
 

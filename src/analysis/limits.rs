@@ -30,9 +30,9 @@ pub(crate) fn take(circuit: &Circuit, whole: &Elimination) -> Result<Elimination
     let mut limited = whole.clone();
     for limit in &circuit.limits {
         let variable = limit.symbol.map_or(Var::S, variable_of);
-        limited = limited.at_limit(variable, limit.to).map_err(|_| {
-            AnalysisError::InfiniteLimit { limit: limit_text(circuit, limit) }
-        })?;
+        limited = limited
+            .at_limit(variable, limit.to)
+            .map_err(|_| AnalysisError::InfiniteLimit { limit: limit_text(circuit, limit) })?;
     }
     Ok(limited)
 }
@@ -70,8 +70,7 @@ pub(crate) fn judge(
     for &prime in &PRIMES[..MODULI] {
         for _ in 0..POINTS_PER_PRIME {
             let s = random.word() % prime;
-            let symbols: Vec<u64> =
-                circuit.symbols.iter().map(|_| random.word() % prime).collect();
+            let symbols: Vec<u64> = circuit.symbols.iter().map(|_| random.word() % prime).collect();
             let witness = limit_value(circuit, transfer, &circuit.limits, prime, s, &symbols)
                 .map_err(AnalysisError::Witness)?;
             let witness = match witness {
@@ -116,8 +115,7 @@ pub(crate) fn judge(
 /// The circuit with a nominal value for every symbol that goes to a limit: it is in no formula any
 /// more, so that any number does.
 pub(crate) fn without_limited(circuit: &Circuit) -> Cow<'_, Circuit> {
-    let limited: Vec<SymbolId> =
-        circuit.limits.iter().filter_map(|limit| limit.symbol).collect();
+    let limited: Vec<SymbolId> = circuit.limits.iter().filter_map(|limit| limit.symbol).collect();
     if limited.iter().all(|&symbol| circuit[symbol].nominal.is_some()) {
         return Cow::Borrowed(circuit);
     }

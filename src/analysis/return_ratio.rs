@@ -7,7 +7,9 @@
 
 use super::AnalysisError;
 use super::posed::{Posed, TestBench};
-use crate::circuit::{Circuit, Control, Drive, ElementId, GROUND, Law, Probe, Transfer, Unit, Value};
+use crate::circuit::{
+    Circuit, Control, Drive, ElementId, GROUND, Law, Probe, Transfer, Unit, Value,
+};
 
 /// The return ratio of a dependent source as a transfer function.
 ///
@@ -17,9 +19,8 @@ pub(crate) fn pose(circuit: &Circuit, id: ElementId) -> Result<Posed<'static>, A
     let (independent, controls) = controls(circuit, id)?;
     let mut bench = TestBench::new(circuit);
     bench.circuit_mut().elements[id.0 as usize].law = independent;
-    let negative = |control: &Control| {
-        (Value::Negative(Box::new(control.gain.clone())), control.quantity)
-    };
+    let negative =
+        |control: &Control| (Value::Negative(Box::new(control.gain.clone())), control.quantity);
     let returned = bench.sum(controls.iter().map(negative).collect());
     Ok(bench.pose(Transfer {
         drive: Drive::Source(id),

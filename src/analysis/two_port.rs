@@ -36,7 +36,8 @@ pub(crate) fn answer(
 ) -> Result<Vec<Entry>, AnalysisError> {
     let entry = |(row, column): (usize, usize)| {
         let posed = pose(circuit, ports, (row, column));
-        let derivation = posed.derive(options).map_err(|error| absent(circuit, ports, error, options))?;
+        let derivation =
+            posed.derive(options).map_err(|error| absent(circuit, ports, error, options))?;
         let name = format!("{}.{}{row}{column}", ask.name, ports.set.letter());
         let unit = posed.transfer.unit;
         Ok(Entry::new(circuit, name, ask.text.clone(), unit, derivation))
@@ -123,9 +124,7 @@ fn reason(set: ParameterSet) -> &'static str {
         ParameterSet::Scattering => {
             "with both ports terminated in the reference resistance there is no unique solution"
         }
-        ParameterSet::TransferScattering => {
-            "the waves at port 2 do not determine those at port 1"
-        }
+        ParameterSet::TransferScattering => "the waves at port 2 do not determine those at port 1",
     }
 }
 
@@ -147,9 +146,7 @@ pub(crate) fn pose(
         ParameterSet::G => hybrid(&mut bench, there, turned),
         ParameterSet::Chain => chain(&mut bench, here, (row, column)),
         ParameterSet::InverseChain => chain(&mut bench, there, (row, column)),
-        ParameterSet::Scattering => {
-            scattering(&mut bench, here, (row, column), &reference(ports))
-        }
+        ParameterSet::Scattering => scattering(&mut bench, here, (row, column), &reference(ports)),
         ParameterSet::TransferScattering => {
             transfer_scattering(&mut bench, here, (row, column), &reference(ports))
         }
@@ -185,11 +182,7 @@ fn impedance(ports: [Port; 2], (row, column): (usize, usize)) -> Question {
 }
 
 /// One port driven by a voltage, the other shorted by an ammeter.
-fn admittance(
-    bench: &mut TestBench,
-    ports: [Port; 2],
-    (row, column): (usize, usize),
-) -> Question {
+fn admittance(bench: &mut TestBench, ports: [Port; 2], (row, column): (usize, usize)) -> Question {
     let driven = ports[column - 1];
     let source = bench.source(outside(driven));
     let other = bench.ammeter(outside(ports[2 - column]));

@@ -106,8 +106,7 @@ fn answers(
 }
 
 fn derive(circuit: &Circuit, ask: &Ask, options: &Options) -> Result<Vec<Entry>, Failure> {
-    analysis::answer(circuit, ask, options)
-        .map_err(|error| Failure::analysis(&ask.name, &error))
+    analysis::answer(circuit, ask, options).map_err(|error| Failure::analysis(&ask.name, &error))
 }
 
 struct Printer<'a> {

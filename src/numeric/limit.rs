@@ -150,12 +150,7 @@ impl Point<'_> {
 
 /// φ_k(x) with φ_0 = f and φ_{k+1}(x) = (x − x_k)/(φ_k(x) − b_k); none where the fraction so far
 /// gives the value already.
-fn inverse_difference(
-    field: &PrimeField,
-    nodes: &[(u64, u64)],
-    x: u64,
-    value: u64,
-) -> Option<u64> {
+fn inverse_difference(field: &PrimeField, nodes: &[(u64, u64)], x: u64, value: u64) -> Option<u64> {
     nodes.iter().try_fold(value, |phi, (at, b)| {
         let inverse = field.inverse(&field.subtract(&phi, b))?;
         Some(field.multiply(&field.subtract(&x, at), &inverse))

@@ -13,7 +13,7 @@ fn amplifier(seed: u64) -> String {
     let mut text = draw.network(&["R", "C", "G"], &NODES, 2);
     let (a, b) = draw.pair(&NODES);
     let (c, d) = draw.pair(&NODES);
-    let sum = if seed % 3 == 0 { " + k2*V(in, x)" } else { "" };
+    let sum = if seed.is_multiple_of(3) { " + k2*V(in, x)" } else { "" };
     let class = ["current", "voltage"][(seed % 2) as usize];
     text.push_str(&format!("{a} > {class} X = k*V({c}, {d}){sum} > {b}\n"));
     text
@@ -32,9 +32,7 @@ fn impedances_follow_from_two_return_ratios() {
         let text = amplifier(seed);
         let open = read(&text);
         let shorted = read(&format!("{text}in > voltage Vs = 0 V > ground\n"));
-        let silent = read(
-            &text.replace("k*V", "0*k*V").replace("k2*V", "0*k2*V"),
-        );
+        let silent = read(&text.replace("k*V", "0*k*V").replace("k2*V", "0*k2*V"));
         let one = |circuit, query: &str| -> Result<Fraction, AnalysisError> {
             answer(circuit, query).map(|entries| form(&entries[0]))
         };
@@ -76,8 +74,7 @@ fn long_parts_are_compared_modulo_primes() {
         "in > voltage Vin > ground\nin > R1 > m > R2 || C2 > out\nm > C1 > ground\n\
          opamp U1: plus ground, minus m, output out, gain = A0, rin, rout\nout > RL > ground\n",
     );
-    let options =
-        Options { max_terms: 3, feedback: circuit.element("U1"), ..Options::default() };
+    let options = Options { max_terms: 3, feedback: circuit.element("U1"), ..Options::default() };
     let entries = answer_with(&circuit, "G = V(out) / Vin", &options).expect("an answer");
     let statement = &entries[1].checks.last().expect("a check").statement;
     assert!(statement.ends_with("at 8 random points modulo 2 primes"), "{statement}");
@@ -110,11 +107,7 @@ fn return_ratios_by_hand() {
         "g1*(R1 + R2) + g2*R2",
     );
     // A current that controls a voltage.
-    check(
-        "a > voltage X = rm*I(R1) > ground\na > R1 > ground\n",
-        "return_ratio(X)",
-        "-rm/R1",
-    );
+    check("a > voltage X = rm*I(R1) > ground\na > R1 > ground\n", "return_ratio(X)", "-rm/R1");
 }
 
 #[test]

@@ -78,8 +78,7 @@ fn one_capacitor_has_the_mean_square_of_its_temperature() {
     // k_B·T/C at the capacitor of any network of resistors (equipartition).
     for seed in 20..28 {
         let mut draw = Draw::new(seed);
-        let text =
-            draw.network(&["R", "G"], &["ground", "a", "b", "c"], 2) + "a > C99 > ground\n";
+        let text = draw.network(&["R", "G"], &["ground", "a", "b", "c"], 2) + "a > C99 > ground\n";
         let entry = noise(&read(&text), "noise_density(a)");
         let total = entry.noise.as_ref().and_then(|noise| noise.total.as_ref());
         let square = &total.expect("a total").square;
@@ -118,10 +117,7 @@ fn shares_add_up_and_models_are_silent() {
     let noise = entry.noise.as_ref().expect("a noise density");
     let names: Vec<&str> = noise.contributors.iter().map(|share| share.element.as_str()).collect();
     assert_eq!(names, ["R1", "Q1.rb", "RC"]);
-    let sum = noise
-        .contributors
-        .iter()
-        .fold(Fraction::zero(), |sum, share| &sum + &share.density);
+    let sum = noise.contributors.iter().fold(Fraction::zero(), |sum, share| &sum + &share.density);
     assert_eq!(sum, form(&entry));
 }
 
@@ -145,8 +141,24 @@ fn bias_currents_add_shot_noise() {
 }
 
 #[test]
+fn devices_at_a_bias_are_noisy_by_their_currents() {
+    // Base and collector of a transistor at 1 mA with β = 100 have shot noise of 2q·10 µA and 2q·1 mA.
+    let circuit = read(
+        "in > voltage Vin > ground\nbjt Q1: base in, collector c, emitter ground, at 1 mA, beta = 100\n\
+         c > RC = 1 k > ground\n",
+    );
+    let entry = noise(&circuit, "noise_density(c)");
+    // The base is driven by a voltage, so only the collector's current and RC reach the output.
+    assert_eq!(form(&entry), over(&entry, "4*k_B*T_0*RC + 2*q_e*RC^2/1000"));
+    let noise = entry.noise.as_ref().expect("a noise density");
+    assert_eq!(noise.contributors.len(), circuit.shots.len() + 1);
+}
+
+#[test]
 fn nominal_totals_and_bands_agree() {
-    let circuit = read("in > voltage Vin > ground\nin > R1 = 10 k > a > C1 = 1 nF > ground\nband 1 mHz to 1 GHz\n");
+    let circuit = read(
+        "in > voltage Vin > ground\nin > R1 = 10 k > a > C1 = 1 nF > ground\nband 1 mHz to 1 GHz\n",
+    );
     let entry = noise(&circuit, "noise_density(a)");
     let noise = entry.noise.expect("a noise density");
     let total = noise.total.and_then(|total| total.rms).expect("a value");

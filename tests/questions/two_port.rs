@@ -118,7 +118,9 @@ fn joined_networks_multiply_and_add() {
             text.replace(&format!("{from} >"), &format!("{to} >"))
                 .replace(&format!("> {from}\n"), &format!("> {to}\n"))
         };
-        let cascade = named(&(renamed(&first, "out", "m") + &renamed(&renamed(&second, "x", "x2"), "in", "m")));
+        let cascade = named(
+            &(renamed(&first, "out", "m") + &renamed(&renamed(&second, "x", "x2"), "in", "m")),
+        );
         for word in ["chain", "transfer_scattering"] {
             if let (Some(a), Some(b)) = (set(&a, word), set(&b, word)) {
                 assert_eq!(set(&cascade, word), Some(product(&a, &b)), "{word}\n{first}\n{second}");
@@ -143,7 +145,10 @@ fn joined_networks_multiply_and_add() {
             class: Class::Transformer,
             plus: ends.0,
             minus: ends.1,
-            law: Law::Transformer { ratio: Value::Number(Number::from_integer(1.into())), secondary },
+            law: Law::Transformer {
+                ratio: Value::Number(Number::from_integer(1.into())),
+                secondary,
+            },
             line: 0,
         });
         // Ywide only names the nodes before the transformer is there.
@@ -159,9 +164,8 @@ fn read_with_symbols_of(text: &str, all: &str) -> Circuit {
     let (mut circuit, whole) = (read(text), read(all));
     let own = circuit.symbols.clone();
     for value in circuit.elements.iter_mut().flat_map(|element| element.law.values_mut()) {
-        *value = value.replaced(&|symbol| {
-            whole.symbol(&own[symbol.0 as usize].name).map(Value::Symbol)
-        });
+        *value =
+            value.replaced(&|symbol| whole.symbol(&own[symbol.0 as usize].name).map(Value::Symbol));
     }
     circuit.symbols = whole.symbols;
     circuit

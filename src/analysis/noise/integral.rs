@@ -73,7 +73,9 @@ pub(crate) fn mean_square(numerator: &Polynomial, denominator: &Polynomial) -> O
         })
     };
     let hurwitz: Vec<Vec<Polynomial>> = (0..order)
-        .map(|k| (0..order).map(|i| if i <= 2 * k { at(&d, 2 * k - i) } else { zero.clone() }).collect())
+        .map(|k| {
+            (0..order).map(|i| if i <= 2 * k { at(&d, 2 * k - i) } else { zero.clone() }).collect()
+        })
         .collect();
     let mut replaced = hurwitz.clone();
     for (k, row) in replaced.iter_mut().enumerate() {
@@ -83,7 +85,7 @@ pub(crate) fn mean_square(numerator: &Polynomial, denominator: &Polynomial) -> O
     }
     // 2·Σ (−1)^i·a_i·d_{2k−i} = (N·N(−s))_{2k}, and half of the integral lies above 0.
     let above = determinant(&replaced);
-    let above = if order % 2 == 0 { -&above } else { above };
+    let above = if order.is_multiple_of(2) { -&above } else { above };
     let below = &(&determinant(&hurwitz) * &d[order]) * &Polynomial::from(4);
     Fraction::new(&above, &below)
 }
@@ -115,9 +117,8 @@ fn is_stable(denominator: &Polynomial, values: &[Number]) -> bool {
         numbers.pop();
     }
     numbers.reverse();
-    let every_other = |from: usize| -> Vec<Number> {
-        numbers.iter().skip(from).step_by(2).cloned().collect()
-    };
+    let every_other =
+        |from: usize| -> Vec<Number> { numbers.iter().skip(from).step_by(2).cloned().collect() };
     let (mut upper, mut lower) = (every_other(0), every_other(1));
     let Some(sign) = upper.first().cloned() else { return false };
     for _ in 1..numbers.len() {

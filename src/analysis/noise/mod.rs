@@ -67,8 +67,7 @@ pub(crate) fn answer(
     let constants = Constants::new(circuit);
     let sources = sources::find(circuit, &constants, (plus, minus), options)?;
     check_length(&sources, options)?;
-    let squared: Vec<Fraction> =
-        sources.iter().map(|source| constants.density(source)).collect();
+    let squared: Vec<Fraction> = sources.iter().map(|source| constants.density(source)).collect();
     let sum = total_density(&sources, &constants);
     if sum.numerator().len() + sum.denominator().len() > options.max_terms {
         return Err(too_long(options));
@@ -92,9 +91,8 @@ pub(crate) fn answer(
     let assignment = nominal(&limited, &sources);
     let values = assignment.as_ref().map(|numbers| constants.values(numbers));
     let total = integral::total(&sources, values.as_deref(), &mut notices);
-    let band = assignment
-        .as_ref()
-        .and_then(|_| band::in_band(circuit, &sources, values.as_deref()?));
+    let band =
+        assignment.as_ref().and_then(|_| band::in_band(circuit, &sources, values.as_deref()?));
     let contributors = sources
         .iter()
         .zip(squared)

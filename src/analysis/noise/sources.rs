@@ -5,14 +5,11 @@ use super::super::posed::{Posed, TestBench};
 use super::super::{AnalysisError, ClosedForm, Derivation, Options};
 use crate::algebra::{Fraction, Polynomial, Var};
 use crate::circuit::{
-    Circuit, Class, Drive, Element, GROUND, Law, NodeId, Number, Probe, Quantity, Symbol, SymbolId,
-    SymbolRole, Transfer, Unit, Value,
+    Circuit, Class, Drive, Element, ElementId, GROUND, Law, NodeId, Number, Probe, Quantity,
+    Symbol, SymbolId, SymbolRole, Transfer, Unit, Value,
 };
 use crate::elimination::{fraction_of, variable_of};
 use crate::numeric::exact_pi;
-
-/// Parameters of devices that are models of what a device does and not resistances in it.
-const MODELS: [&str; 8] = ["rpi", "ro", "rmu", "rp", "rd", "rin", "rout", "gmb"];
 
 /// A noisy element: its share of the density is weight·|transfer|².
 #[derive(Clone, Debug)]
@@ -105,10 +102,8 @@ impl Constants {
     /// The share of one source.
     pub(crate) fn density(&self, source: &Source) -> Fraction {
         let Some(transfer) = source.transfer() else { return Fraction::zero() };
-        let squares = Fraction::new(
-            &self.square(transfer.numerator()),
-            &self.square(transfer.denominator()),
-        );
+        let squares =
+            Fraction::new(&self.square(transfer.numerator()), &self.square(transfer.denominator()));
         &source.weight * &squares.unwrap_or_else(Fraction::zero)
     }
 
@@ -139,8 +134,11 @@ pub(crate) fn find(
     options: &Options,
 ) -> Result<Vec<Source>, AnalysisError> {
     let mut sources = Vec::new();
-    for element in &circuit.elements {
-        let Some(resistance) = noisy_resistance(circuit, element) else { continue };
+    for (element, id) in circuit.elements.iter().zip((0_u32..).map(ElementId)) {
+        if circuit.noiseless.contains(&id) {
+            continue;
+        }
+        let Some(resistance) = noisy_resistance(element) else { continue };
         let Some(conductance) = resistance.recip() else { continue };
         let current = &constants.thermal() * &conductance;
         let source = match limited(circuit, &current) {
@@ -182,8 +180,8 @@ fn source(
 }
 
 /// The resistance of an element that makes thermal noise.
-fn noisy_resistance(circuit: &Circuit, element: &Element) -> Option<Fraction> {
-    if element.plus == element.minus || is_model(circuit, element) {
+fn noisy_resistance(element: &Element) -> Option<Fraction> {
+    if element.plus == element.minus {
         return None;
     }
     let resistance = match (element.class, &element.law) {
@@ -191,21 +189,9 @@ fn noisy_resistance(circuit: &Circuit, element: &Element) -> Option<Fraction> {
         (Class::Conductance, Law::Admittance(value)) => fraction_of(value).ok()?.recip()?,
         _ => return None,
     };
-    let is_real = !resistance.numerator().contains(Var::S)
-        && !resistance.denominator().contains(Var::S);
+    let is_real =
+        !resistance.numerator().contains(Var::S) && !resistance.denominator().contains(Var::S);
     is_real.then_some(resistance)
-}
-
-/// Whether the element came out of a device and only models what that does.
-fn is_model(circuit: &Circuit, element: &Element) -> bool {
-    let Some((_, parameter)) = element.name.rsplit_once('.') else { return false };
-    let is_own = |symbol: SymbolId| matches!(circuit[symbol].role, SymbolRole::Element(_));
-    let own_element = element
-        .law
-        .values()
-        .iter()
-        .any(|value| matches!(value, Value::Symbol(symbol) if is_own(*symbol)));
-    MODELS.contains(&parameter) && !own_element
 }
 
 fn limited(circuit: &Circuit, fraction: &Fraction) -> Option<Fraction> {
@@ -235,11 +221,7 @@ fn beside(circuit: &Circuit, ends: (NodeId, NodeId), voltage: (NodeId, NodeId)) 
 }
 
 /// A voltage in series with the element: the same as its current beside it, divided by its value.
-fn in_series<'c>(
-    circuit: &Circuit,
-    element: &Element,
-    voltage: (NodeId, NodeId),
-) -> Posed<'c> {
+fn in_series<'c>(circuit: &Circuit, element: &Element, voltage: (NodeId, NodeId)) -> Posed<'c> {
     let mut bench = TestBench::new(circuit);
     let gain = match &element.law {
         Law::Admittance(value) => value.clone(),

@@ -58,8 +58,7 @@ pub(crate) fn compare(
             floating.points = floating.points.max(evidence.points);
             floating.worst_relative_error =
                 floating.worst_relative_error.max(evidence.worst_relative_error);
-            floating.largest_condition =
-                floating.largest_condition.max(evidence.largest_condition);
+            floating.largest_condition = floating.largest_condition.max(evidence.largest_condition);
             if floating.passed && !evidence.passed {
                 floating.passed = false;
                 floating.failure = evidence.failure;
@@ -98,7 +97,8 @@ fn at_frequencies(
     let above = coefficients(density.numerator());
     let below = coefficients(density.denominator());
     let floats = assignment.floats();
-    let circuits: Vec<Circuit> = sources.iter().map(|source| lowered(&source.circuit).into_owned()).collect();
+    let circuits: Vec<Circuit> =
+        sources.iter().map(|source| lowered(&source.circuit).into_owned()).collect();
     let mut sweeps = Vec::new();
     for (source, circuit) in sources.iter().zip(&circuits) {
         let weight = source.weight.evaluate(|variable| value_of(&values, variable));

@@ -2,8 +2,8 @@
 
 use std::fmt::Write;
 
-use super::{Answer, lettering_of, names, plain, written};
 use super::json::LATEX_WIDTH;
+use super::{Answer, lettering_of, names, plain, written};
 use crate::typeset::latex::Latex;
 use crate::typeset::shape::Shape;
 use crate::typeset::{Letter, Style, SymbolTable};
@@ -14,7 +14,7 @@ pub fn latex(answer: &Answer<'_>) -> String {
     for entry in answer.entries {
         let names = names(entry);
         let writer = Latex { names: &names, width: LATEX_WIDTH };
-        let mut left = name(&entry.name);
+        let mut left = left_side(&entry.name);
         if let Some(source) = &entry.source {
             let _ = write!(left, "\\big|_{{{}}}", name(source));
         }
@@ -34,6 +34,16 @@ pub fn latex(answer: &Answer<'_>) -> String {
         }
     }
     out
+}
+
+/// The name of a result; the parts of a ratio around a source as the asymptotic gain formula has them.
+fn left_side(text: &str) -> String {
+    match text.rsplit_once('.') {
+        Some((whole, "ideal")) => format!("{{{}}}_{{\\infty}}", name(whole)),
+        Some((whole, "return_ratio")) => format!("T_{{{}}}", name(whole)),
+        Some((whole, "feed_through")) => format!("{{{}}}_{{0}}", name(whole)),
+        _ => name(text),
+    }
 }
 
 /// The name of a result or a source, set like a symbol.

@@ -123,7 +123,8 @@ fn facts(out: &mut String, entry: &Entry, names: &SymbolTable, style: TextStyle)
             fact("with numbers", numbers(numeric, style));
         }
         let letters = lettering_of(&entry.symbols);
-        if let Some([low, high]) = asymptotes(&entry.form, letters).filter(|_| depends_on_s(entry)) {
+        if let Some([low, high]) = asymptotes(&entry.form, letters).filter(|_| depends_on_s(entry))
+        {
             fact("towards dc", asymptote(&low, entry, names, style, false));
             fact("towards infinity", asymptote(&high, entry, names, style, true));
         }
@@ -207,7 +208,8 @@ fn asymptote(
             match (ends(&numeric.numerator), ends(&numeric.denominator)) {
                 (Some(n), Some(d)) if !d.is_zero() => {
                     let medium = medium(style);
-                    let value = number::quantity(&(n / d), &plain_unit(entry.unit, style), 4, medium);
+                    let value =
+                        number::quantity(&(n / d), &plain_unit(entry.unit, style), 4, medium);
                     if value == text { text } else { format!("{text} = {value}") }
                 }
                 _ => text,
