@@ -70,3 +70,47 @@ fn limits() {
 fn superposition() {
     check("level-adder", "level-adder.circuit", &[]);
 }
+
+#[test]
+fn faults_of_the_options() {
+    let told = |more: &[&str]| {
+        let output = Command::new(env!("CARGO_BIN_EXE_cofactor"))
+            .arg("derive")
+            .arg(golden("float-switch.circuit"))
+            .args(["--format", "json"])
+            .args(more)
+            .output()
+            .expect("the program starts");
+        let error: serde_json::Value = serde_json::from_slice(&output.stderr).expect("JSON");
+        let code = error["error"]["code"].as_str().unwrap_or_default().to_owned();
+        (output.status.code(), code)
+    };
+    let check = |more: &[&str], exit: i32, code: &str| {
+        assert_eq!(told(more), (Some(exit), code.to_owned()), "{more:?}");
+    };
+    check(
+        &[
+            "impedance(in, m)",
+            "--limit",
+            "R1 to infinity",
+            "--limit",
+            "R2 to infinity",
+            "--limit",
+            "s to 0",
+        ],
+        3,
+        "infinite-limit",
+    );
+    check(&["--limit", "A0 to the moon"], 2, "syntax");
+    check(&["--feedback", "R1"], 2, "option");
+    check(&["two_port(chain, in ground, in ground)"], 3, "no-unique-solution");
+    check(&["noise_density(out)", "--max-terms", "2"], 4, "terms");
+}
+
+#[test]
+fn kept_symbols_and_limits_go_together() {
+    // A0 has no number to put in before it has gone to its limit.
+    let more = ["--limit", "A0 to infinity", "--keep", "R2"];
+    let text = printed("float-switch-number-free.circuit", "json", &more);
+    assert!(text.contains("\"expression\": \"-R2/10000\""), "{text}");
+}

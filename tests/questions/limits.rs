@@ -154,6 +154,21 @@ fn limits_are_taken_of_nested_forms() {
 }
 
 #[test]
+fn nested_limits_have_the_same_numbers() {
+    let text = "in > voltage Vin > ground\nin > R1 = 4.7 k > x > R2 = 3.3 k > y > C2 = 4.7 n > ground\n\
+                x > C1 = 10 n > out\nopamp U1: plus y, minus out, output out, gain = A0/(1 + s/wp), rin, rout\n\
+                let wp = 62.8\nlimit U1.rin to infinity\nlimit A0 to infinity\nlimit U1.rout to 0\n";
+    let circuit = read(text);
+    let numeric = |max_terms| {
+        let options = Options { max_terms, ..Options::default() };
+        let mut entries = answer_with(&circuit, "V(out) / Vin", &options).expect("an answer");
+        entries.remove(0).numeric
+    };
+    assert!(numeric(1).is_some());
+    assert_eq!(numeric(1), numeric(1000));
+}
+
+#[test]
 fn an_ideal_amplifier_is_the_limit_of_a_finite_one() {
     let nodes = ["ground", "in", "out", "m", "x"];
     let mut compared = 0;

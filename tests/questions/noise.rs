@@ -122,6 +122,12 @@ fn shares_add_up_and_models_are_silent() {
 }
 
 #[test]
+fn without_noisy_elements_there_is_no_noise() {
+    let entry = noise(&read("a > C1 > ground\na > L1 > ground\n"), "noise_density(a)");
+    assert!(form(&entry).is_zero());
+}
+
+#[test]
 fn bias_currents_add_shot_noise() {
     let mut circuit = read("a > R1 = 1 k > ground\nband 1 Hz to 101 Hz\n");
     let node = circuit.node("a").expect("a node");
