@@ -112,7 +112,7 @@ fn a_bias_gives_numbers_and_shot_noise() {
 #[test]
 fn slopes_are_noiseless_and_bodies_are_not() {
     let circuit = circuit(
-        "block x(a)\na > R1 > ground\nend\nuse x S: b\n\
+        "block x(a)\na > R1 > ground\nend\nuse x S: a b\n\
          bjt Q1: base b, collector c, emitter e, gm, rb, rpi, ro, rmu\n\
          opamp U1: plus b, minus c, output d, gain = A0, rin, rout\n\
          triode V1: grid b, plate c, cathode e, mu, rp\ndiode D1: anode b, cathode c, rd\nc > R2 > e",
