@@ -2,7 +2,7 @@
 //! for them, and what a reader should know besides.
 //!
 //! [`answer()`] gives every question its named results. Whatever is asked comes down to transfer
-//! functions, some of them of the circuit with test elements added ([`posed`]); each is derived by
+//! functions, some of them of the circuit with test elements added (`posed`); each is derived by
 //! [`derive()`] and judged by the witnesses.
 //!
 //! May use: [`crate::circuit`], [`crate::algebra`], [`crate::elimination`], [`crate::numeric`].

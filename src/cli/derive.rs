@@ -65,12 +65,15 @@ fn dependent_source(circuit: &Circuit, name: &str) -> Result<ElementId, Failure>
         })
 }
 
+/// What is done with the results of a question.
+type Take<'a> = dyn FnMut(&Ask, &[Entry]) -> Result<(), Failure> + 'a;
+
 /// Answers the questions one after the other; under a deadline in a thread that is left behind.
 fn answers(
     loaded: &Loaded,
     options: Options,
     stop_after: Option<f64>,
-    take: &mut dyn FnMut(&Ask, &[Entry]) -> Result<(), Failure>,
+    take: &mut Take<'_>,
 ) -> Result<(), Failure> {
     let Some(seconds) = stop_after else {
         for ask in &loaded.asks {
