@@ -257,8 +257,8 @@ fn compare(
         if expanded { &[Shape::Compact, Shape::Powers, Shape::Bode] } else { &[] };
     for &shape in shapes {
         let letters = lettering(circuit);
-        let written =
-            shaped(&derivation.form, &derivation.elimination, shape, letters).ok_or("no form")?;
+        let written = shaped(&derivation.form, Some(&derivation.elimination), shape, letters)
+            .ok_or("no form")?;
         for dialect in [Dialect::Expression, Dialect::Language] {
             let printed = plain::text(&written.formula, &names, dialect);
             let value = language::parse_expression(circuit, &printed)

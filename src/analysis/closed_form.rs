@@ -58,7 +58,8 @@ pub(crate) fn close(elimination: &Elimination, max_terms: usize) -> Closed {
     Closed { form: ClosedForm::Nested(elimination.nested()), counts: without_s(counts) }
 }
 
-fn counted(fraction: &Fraction) -> TermCounts {
+/// Terms of a fraction by powers of its first variable.
+pub(crate) fn counted(fraction: &Fraction) -> TermCounts {
     let by_power = |polynomial: &Polynomial| {
         polynomial.coefficients(Var::S).iter().map(|part| BigUint::from(part.len())).collect()
     };

@@ -29,6 +29,9 @@ pub(crate) struct Derive {
     /// How formulas are written; by default the shortest that one would write by hand
     #[arg(long, value_enum)]
     pub(crate) shape: Option<ShapeName>,
+    /// Split every ratio around this dependent source: ideal gain, return ratio, feed-through
+    #[arg(long, value_name = "SOURCE")]
+    pub(crate) feedback: Option<String>,
     /// Expand up to this many terms; longer formulas are nested
     #[arg(long, value_name = "N", default_value_t = 20_000)]
     pub(crate) max_terms: usize,
@@ -86,6 +89,9 @@ pub(crate) struct Input {
     /// Only these stay symbols, the rest take their numbers, exactly
     #[arg(long, value_name = "SYMBOLS", value_delimiter = ',')]
     pub(crate) keep: Option<Vec<String>>,
+    /// A limit that is taken in every result, exactly, after those of the file: "A0 to infinity"
+    #[arg(long = "limit", value_name = "LIMIT")]
+    pub(crate) limits: Vec<String>,
     /// Where numbers are compared: "10 Hz to 1 MHz"
     #[arg(long, value_name = "BAND")]
     pub(crate) band: Option<String>,

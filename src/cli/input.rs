@@ -34,6 +34,14 @@ pub(crate) fn load(input: &Input, messages: &Messages) -> Result<Loaded, Failure
             diagnostics,
         })?);
     }
+    for limit in &input.limits {
+        let read = language::limit(&circuit, limit).map_err(|diagnostics| Failure::Text {
+            name: "--limit".to_owned(),
+            text: limit.clone(),
+            diagnostics,
+        })?;
+        circuit.limits.push(read);
+    }
     let asks = questions(&circuit, input)?;
     if let Some(keep) = &input.keep {
         circuit = keep_symbols(&circuit, keep)?;
@@ -107,6 +115,8 @@ fn keep_symbols(circuit: &Circuit, keep: &[String]) -> Result<Circuit, Failure> 
             }
         }
     }
+    // What goes to a limit has to be a symbol until then.
+    kept.extend(circuit.limits.iter().filter_map(|limit| limit.symbol));
     circuit.with_numbers(|symbol| !kept.contains(&symbol)).map_err(|missing| {
         Failure::option(
             format!("`{}` has no nominal value to put in", circuit[missing].name),

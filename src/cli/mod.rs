@@ -7,7 +7,7 @@
 //! | 0 | done |
 //! | 1 | a witness disagrees |
 //! | 2 | the command line or the file is wrong |
-//! | 3 | the circuit has no unique solution |
+//! | 3 | the circuit has no unique solution; the answer, a limit or a set of parameters does not exist |
 //! | 4 | a work bound was reached; what was found before was printed |
 
 mod args;
