@@ -38,7 +38,7 @@ pub fn total(counts: &TermCounts) -> BigUint {
 ///
 /// Where terms can meet, the expansion is tried up to thirty times as many products, since
 /// what is left after they met is what counts.
-pub fn close(elimination: &Elimination, max_terms: usize) -> Closed {
+pub(crate) fn close(elimination: &Elimination, max_terms: usize) -> Closed {
     let counts = elimination.count_terms();
     if elimination.is_zero() {
         return Closed { form: ClosedForm::Expanded(Fraction::zero()), counts };
@@ -58,7 +58,8 @@ pub fn close(elimination: &Elimination, max_terms: usize) -> Closed {
     Closed { form: ClosedForm::Nested(elimination.nested()), counts: without_s(counts) }
 }
 
-fn counted(fraction: &Fraction) -> TermCounts {
+/// Terms of a fraction by powers of its first variable.
+pub(crate) fn counted(fraction: &Fraction) -> TermCounts {
     let by_power = |polynomial: &Polynomial| {
         polynomial.coefficients(Var::S).iter().map(|part| BigUint::from(part.len())).collect()
     };

@@ -37,6 +37,38 @@ pub enum AnalysisError {
         /// The bound.
         allowed: usize,
     },
+    /// A limit does not exist.
+    #[error("the limit `{limit}` is infinite")]
+    InfiniteLimit {
+        /// As it is written.
+        limit: String,
+    },
+    /// The circuit has no such two-port parameters.
+    #[error("the {set} parameters of this circuit do not exist: {reason}")]
+    NoParameters {
+        /// The set.
+        set: &'static str,
+        /// What stands against them.
+        reason: &'static str,
+        /// The sets that exist.
+        others: Vec<&'static str>,
+    },
+    /// An element that has no return ratio, or a ratio that does not depend on it.
+    #[error("`{element}` {reason}")]
+    NoLoop {
+        /// The element.
+        element: String,
+        /// Why there is no loop around it.
+        reason: &'static str,
+    },
+    /// The expanded formula would be too long, and it has no nested form.
+    #[error("{what} would have more terms than the {allowed} that `--max-terms` allows")]
+    TooLong {
+        /// Which formula.
+        what: &'static str,
+        /// The bound.
+        allowed: usize,
+    },
     /// A witness could not be asked.
     #[error("the cross-check could not be made: {0}")]
     Witness(NumericError),
@@ -51,6 +83,10 @@ impl AnalysisError {
             Self::NotConnected(..) => "not-connected",
             Self::DivisionByZero(_) => "division-by-zero",
             Self::TooLarge { .. } => "too-large",
+            Self::InfiniteLimit { .. } => "infinite-limit",
+            Self::NoParameters { .. } => "no-parameters",
+            Self::NoLoop { .. } => "no-loop",
+            Self::TooLong { .. } => "terms",
             Self::Witness(_) => "no-witness",
         }
     }
@@ -66,17 +102,34 @@ impl AnalysisError {
             Self::TooLarge { .. } => {
                 Some("cut the circuit in parts, or put numbers in with `--keep`".to_owned())
             }
+            Self::InfiniteLimit { .. } => {
+                Some("ask for the reciprocal, whose limit is 0, or leave the limit out".to_owned())
+            }
+            Self::NoParameters { others, .. } => {
+                Some(format!("these exist: {}", others.join(", ")))
+            }
+            Self::NoLoop { .. } => {
+                Some("name a dependent source that lies in a feedback loop".to_owned())
+            }
+            Self::TooLong { .. } => {
+                Some("allow more terms, or put numbers in with `--keep`".to_owned())
+            }
             Self::DivisionByZero(_) | Self::Witness(_) => None,
         }
     }
 
-    /// The process exit code: 3 no unique solution, 4 a work bound, 1 a failed witness.
+    /// The process exit code: 3 no unique or no finite answer, 4 a work bound, 1 a failed witness.
     pub fn exit_code(&self) -> u8 {
         match self {
-            Self::TooLarge { .. } => 4,
+            Self::TooLarge { .. } | Self::TooLong { .. } => 4,
             Self::Witness(_) => 1,
             Self::DivisionByZero(_) => 2,
-            Self::Singular { .. } | Self::Infinite { .. } | Self::NotConnected(..) => 3,
+            Self::Singular { .. }
+            | Self::Infinite { .. }
+            | Self::NotConnected(..)
+            | Self::InfiniteLimit { .. }
+            | Self::NoParameters { .. }
+            | Self::NoLoop { .. } => 3,
         }
     }
 

@@ -2,7 +2,6 @@
 
 use num_bigint::BigInt;
 use num_complex::Complex;
-use num_traits::ToPrimitive;
 
 use super::closed_form::ClosedForm;
 use crate::algebra::modular::{Field, primes};
@@ -96,9 +95,4 @@ fn sum_modulo(
         };
         field.add(total, field.mul(weight.evaluate_modulo(field, value), factor))
     })
-}
-
-/// The nearest double of an exact number, also where its parts leave the range.
-pub(crate) fn to_f64(number: &Number) -> f64 {
-    number.to_f64().unwrap_or(f64::NAN)
 }

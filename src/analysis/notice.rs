@@ -1,5 +1,6 @@
 //! What a reader should know about an answer besides the formula.
 
+use super::limits::limit_text;
 use crate::circuit::graph::charge_groups;
 use crate::circuit::{Circuit, Drive, ElementId, NodeId, Transfer};
 use crate::elimination::Elimination;
@@ -15,9 +16,11 @@ pub struct Notice {
     pub line: u32,
 }
 
-/// Everything that the elimination and the graph say about an answer.
+/// Everything that the elimination and the graph say about an answer; only the first `own` elements
+/// are named, those behind them are test elements.
 pub(crate) fn collect(
     circuit: &Circuit,
+    own: usize,
     transfer: &Transfer,
     elimination: &Elimination,
 ) -> Vec<Notice> {
@@ -39,7 +42,10 @@ pub(crate) fn collect(
     if elimination.is_zero() {
         say(
             "zero-answer",
-            format!("{} does not reach what is asked: the answer is 0", drive(circuit, transfer)),
+            format!(
+                "{} does not reach what is asked: the answer is 0",
+                drive(circuit, own, transfer)
+            ),
         );
         return notices;
     }
@@ -63,7 +69,7 @@ pub(crate) fn collect(
         .independent_elements()
         .iter()
         .copied()
-        .filter(|id| transfer.drive != Drive::Source(*id))
+        .filter(|id| transfer.drive != Drive::Source(*id) && (id.0 as usize) < own)
         .collect();
     if !idle.is_empty() {
         let names = listed(idle.iter().map(|&id| element(id)));
@@ -73,8 +79,20 @@ pub(crate) fn collect(
     notices
 }
 
-fn drive(circuit: &Circuit, transfer: &Transfer) -> String {
+/// The limits leave nothing.
+pub(crate) fn vanished(circuit: &Circuit) -> Notice {
+    let limits = circuit.limits.iter().map(|limit| limit_text(circuit, limit));
+    let limits: Vec<String> = limits.collect();
+    Notice {
+        code: "zero-limit",
+        message: format!("the answer goes to 0 with {}", limits.join(", ")),
+        line: 0,
+    }
+}
+
+fn drive(circuit: &Circuit, own: usize, transfer: &Transfer) -> String {
     match transfer.drive {
+        Drive::Source(id) if id.0 as usize >= own => "the port's voltage".to_owned(),
         Drive::Source(id) => format!("`{}`", circuit[id].name),
         Drive::Port(..) => "the port's current".to_owned(),
     }

@@ -2,7 +2,21 @@
 //! capacitors touch.
 //!
 //! All of it is connectivity (Kirchhoff 1847), found with disjoint sets and a breadth-first search;
-//! no value is looked at.
+//! no value is looked at. [`facts`] puts together what a listing tells about a whole circuit.
+
+mod branches;
+mod complexity;
+mod facts;
+mod planarity;
+mod reduction;
+mod search;
+
+pub use branches::{Branch, branches};
+pub use complexity::{Order, order};
+pub use facts::{Facts, facts};
+pub use planarity::is_planar;
+pub use reduction::is_series_parallel;
+pub use search::{Articulation, articulation};
 
 use super::{Circuit, Class, Drive, ElementId, GROUND, Law, NodeId, Transfer};
 

@@ -47,6 +47,9 @@ pub struct Circuit {
     pub limits: Vec<Limit>,
     /// Bias currents of the devices whose bias is given: they add shot noise.
     pub shots: Vec<Shot>,
+    /// Resistances of devices that stand for the slope of a characteristic (`Q1.rpi`, `U1.rout`),
+    /// ascending: they make no thermal noise.
+    pub noiseless: Vec<ElementId>,
     /// The temperature in kelvin, for noise; 300 K where the file says nothing.
     pub temperature: Option<Number>,
 }

@@ -18,6 +18,8 @@ pub(crate) enum Command {
     Derive(Derive),
     /// Poles and zeros, and which elements set each
     Roots(Roots),
+    /// The circuit as understood: nodes, elements, values, what the graph says, and a picture
+    Inspect(Inspect),
 }
 
 #[derive(Debug, Args)]
@@ -29,12 +31,54 @@ pub(crate) struct Derive {
     /// How formulas are written; by default the shortest that one would write by hand
     #[arg(long, value_enum)]
     pub(crate) shape: Option<ShapeName>,
+    /// Split every ratio around this dependent source: ideal gain, return ratio, feed-through
+    #[arg(long, value_name = "SOURCE")]
+    pub(crate) feedback: Option<String>,
     /// Expand up to this many terms; longer formulas are nested
     #[arg(long, value_name = "N", default_value_t = 20_000)]
     pub(crate) max_terms: usize,
     /// End after this many seconds with what was reached
     #[arg(long, value_name = "SECONDS", value_parser = seconds)]
     pub(crate) stop_after: Option<f64>,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Inspect {
+    /// The circuit file; `-` reads standard input
+    pub(crate) file: PathBuf,
+    /// How the listing is printed
+    #[arg(long, value_enum, default_value_t = ListingFormat::Text)]
+    pub(crate) format: ListingFormat,
+    /// ASCII only
+    #[arg(long)]
+    pub(crate) ascii: bool,
+    /// Colours in messages; NO_COLOR is respected
+    #[arg(long, value_enum, default_value_t = Colour::Auto)]
+    pub(crate) color: Colour,
+    /// The listing only: no warnings, no notices
+    #[arg(long)]
+    pub(crate) quiet: bool,
+}
+
+impl Inspect {
+    /// The same choices as for other commands; a picture has the messages of text.
+    pub(crate) fn output(&self) -> Output {
+        let format = match self.format {
+            ListingFormat::Json => Format::Json,
+            ListingFormat::Text | ListingFormat::Svg => Format::Text,
+        };
+        Output { format, ascii: self.ascii, color: self.color, quiet: self.quiet }
+    }
+}
+
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum ListingFormat {
+    /// For a terminal
+    Text,
+    /// For other programs
+    Json,
+    /// A picture of the graph
+    Svg,
 }
 
 #[derive(Debug, Args)]
@@ -80,6 +124,17 @@ pub(crate) struct RootsOutput {
     pub(crate) quiet: bool,
 }
 
+impl RootsOutput {
+    /// The same choices as for other commands; a picture has the messages of text.
+    pub(crate) fn output(&self) -> Output {
+        let format = match self.format {
+            RootsFormat::Json => Format::Json,
+            RootsFormat::Text | RootsFormat::Latex | RootsFormat::Svg => Format::Text,
+        };
+        Output { format, ascii: self.ascii, color: self.color, quiet: self.quiet }
+    }
+}
+
 #[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
 pub(crate) enum RootsFormat {
     /// For a terminal
@@ -102,6 +157,9 @@ pub(crate) struct Input {
     /// Only these stay symbols, the rest take their numbers, exactly
     #[arg(long, value_name = "SYMBOLS", value_delimiter = ',')]
     pub(crate) keep: Option<Vec<String>>,
+    /// A limit that is taken in every result, exactly, after those of the file: "A0 to infinity"
+    #[arg(long = "limit", value_name = "LIMIT")]
+    pub(crate) limits: Vec<String>,
     /// Where numbers are compared: "10 Hz to 1 MHz"
     #[arg(long, value_name = "BAND")]
     pub(crate) band: Option<String>,

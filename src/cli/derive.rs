@@ -3,8 +3,8 @@
 use std::sync::mpsc;
 use std::time::{Duration, Instant};
 
-use cofactor::analysis::{self, AnalysisError, ClosedForm, Derivation, Options, total};
-use cofactor::circuit::{Ask, Circuit};
+use cofactor::analysis::{self, ClosedForm, Entry, Options, total};
+use cofactor::circuit::{Ask, Circuit, ElementId, Law};
 use cofactor::language::{Severity, line_and_column};
 use cofactor::typeset::answer::{self, Answer, TextStyle};
 use cofactor::typeset::json;
@@ -28,7 +28,11 @@ pub(crate) fn run(arguments: &Derive, messages: &Messages) -> Result<u8, Failure
         Some(ShapeName::ByElement) => Shape::ByElement,
         Some(ShapeName::Nested) => Shape::Nested,
     };
-    let options = Options { max_terms: arguments.max_terms, ..Options::default() };
+    let feedback = match &arguments.feedback {
+        Some(name) => Some(dependent_source(&loaded.circuit, name)?),
+        None => None,
+    };
+    let options = Options { max_terms: arguments.max_terms, feedback, ..Options::default() };
     let mut printer = Printer {
         arguments,
         messages,
@@ -39,8 +43,8 @@ pub(crate) fn run(arguments: &Derive, messages: &Messages) -> Result<u8, Failure
         passed: true,
         printed: 0,
     };
-    let outcome = answers(&loaded, options, arguments.stop_after, &mut |ask, derivations| {
-        printer.take(ask, derivations)
+    let outcome = answers(&loaded, options, arguments.stop_after, &mut |ask, entries| {
+        printer.take(ask, entries)
     });
     // What was reached is printed, whatever came afterwards.
     printer.finish()?;
@@ -48,12 +52,30 @@ pub(crate) fn run(arguments: &Derive, messages: &Messages) -> Result<u8, Failure
     Ok(u8::from(!printer.passed))
 }
 
+/// The dependent source of that name; a device is named for its transconductance.
+fn dependent_source(circuit: &Circuit, name: &str) -> Result<ElementId, Failure> {
+    let found = circuit.element(name).or_else(|| circuit.element(&format!("{name}.gm")));
+    found
+        .filter(|&id| {
+            matches!(circuit[id].law, Law::ControlledVoltage(_) | Law::ControlledCurrent(_))
+        })
+        .ok_or_else(|| {
+            Failure::option(
+                format!("`--feedback` names `{name}`, which is no dependent source"),
+                "name a dependent source, an op-amp with a finite `gain`, or a device",
+            )
+        })
+}
+
+/// What is done with the results of a question.
+type Take<'a> = dyn FnMut(&Ask, &[Entry]) -> Result<(), Failure> + 'a;
+
 /// Answers the questions one after the other; under a deadline in a thread that is left behind.
 fn answers(
     loaded: &Loaded,
     options: Options,
     stop_after: Option<f64>,
-    take: &mut dyn FnMut(&Ask, &[Derivation]) -> Result<(), Failure>,
+    take: &mut Take<'_>,
 ) -> Result<(), Failure> {
     let Some(seconds) = stop_after else {
         for ask in &loaded.asks {
@@ -75,7 +97,7 @@ fn answers(
     for ask in &loaded.asks {
         let left = deadline.saturating_duration_since(Instant::now());
         match receiver.recv_timeout(left) {
-            Ok(derivations) => take(ask, &derivations?)?,
+            Ok(entries) => take(ask, &entries?)?,
             Err(_) => {
                 return Err(Failure::bound(
                     "time",
@@ -88,12 +110,8 @@ fn answers(
     Ok(())
 }
 
-fn derive(circuit: &Circuit, ask: &Ask, options: &Options) -> Result<Vec<Derivation>, Failure> {
-    ask.transfers()
-        .iter()
-        .map(|transfer| analysis::derive(circuit, transfer, options))
-        .collect::<Result<_, AnalysisError>>()
-        .map_err(|error| Failure::analysis(&ask.name, &error))
+fn derive(circuit: &Circuit, ask: &Ask, options: &Options) -> Result<Vec<Entry>, Failure> {
+    analysis::answer(circuit, ask, options).map_err(|error| Failure::analysis(&ask.name, &error))
 }
 
 struct Printer<'a> {
@@ -110,19 +128,19 @@ struct Printer<'a> {
 
 impl Printer<'_> {
     /// Prints one answer, or keeps it for the end.
-    fn take(&mut self, ask: &Ask, derivations: &[Derivation]) -> Result<(), Failure> {
-        self.check_shape(ask, derivations)?;
-        let answer = Answer { circuit: &self.loaded.circuit, ask, derivations, shape: self.shape };
-        for derivation in derivations {
-            self.passed &= derivation.evidence.passed();
-            for notice in &derivation.notices {
-                self.messages.notice(&ask.name, notice);
+    fn take(&mut self, ask: &Ask, entries: &[Entry]) -> Result<(), Failure> {
+        self.check_shape(entries)?;
+        let answer = Answer { circuit: &self.loaded.circuit, ask, entries, shape: self.shape };
+        for entry in entries {
+            self.passed &= entry.passed();
+            for notice in &entry.notices {
+                self.messages.notice(&entry.name, notice);
                 self.warnings.push(answer::warning(notice));
             }
         }
         let output = &self.arguments.output;
         match output.format {
-            Format::Json => self.results.push(answer::result(&answer)),
+            Format::Json => self.results.extend(answer::results(&answer)),
             Format::Text => {
                 let characters = if output.ascii { Characters::Ascii } else { Characters::Unicode };
                 let screen = Screen { width: width(Format::Text), characters };
@@ -146,20 +164,20 @@ impl Printer<'_> {
     }
 
     /// A shape that needs the expansion is refused where that is too long.
-    fn check_shape(&self, ask: &Ask, derivations: &[Derivation]) -> Result<(), Failure> {
+    fn check_shape(&self, entries: &[Entry]) -> Result<(), Failure> {
         if matches!(self.shape, Shape::Compact | Shape::Nested) {
             return Ok(());
         }
-        for derivation in derivations {
-            if let ClosedForm::Nested(_) = derivation.form {
-                let about = if derivation.counts.exact { "" } else { "up to " };
+        for entry in entries {
+            if let ClosedForm::Nested(_) = entry.form {
+                let about = if entry.counts.exact { "" } else { "up to " };
                 return Err(Failure::bound(
                     "terms",
                     format!(
                         "{}: this shape needs the expansion, which has {about}{} terms, more than \
                          the {} that `--max-terms` allows",
-                        ask.name,
-                        total(&derivation.counts),
+                        entry.name,
+                        total(&entry.counts),
                         self.arguments.max_terms
                     ),
                     "use the nested shape, allow more terms, or put numbers in with `--keep`",

@@ -26,15 +26,7 @@ pub(crate) struct Loaded {
 
 /// Reads the file and applies the options.
 pub(crate) fn load(input: &Input, messages: &Messages) -> Result<Loaded, Failure> {
-    let name = input.file.display().to_string();
-    let text = read_text(&input.file).map_err(|error| Failure::input(&name, &error))?;
-    let Reading { circuit, diagnostics } = language::read(&text);
-    messages.remarks(&name, &text, &diagnostics);
-    let (errors, remarks): (Vec<_>, Vec<_>) =
-        diagnostics.into_iter().partition(|diagnostic| diagnostic.severity == Severity::Error);
-    let Some(mut circuit) = circuit else {
-        return Err(Failure::Text { name, text, diagnostics: errors });
-    };
+    let Loaded { mut circuit, remarks, text, .. } = load_file(&input.file, messages)?;
     if let Some(band) = &input.band {
         circuit.band = Some(language::band(band).map_err(|diagnostics| Failure::Text {
             name: "--band".to_owned(),
@@ -42,11 +34,33 @@ pub(crate) fn load(input: &Input, messages: &Messages) -> Result<Loaded, Failure
             diagnostics,
         })?);
     }
+    for limit in &input.limits {
+        let read = language::limit(&circuit, limit).map_err(|diagnostics| Failure::Text {
+            name: "--limit".to_owned(),
+            text: limit.clone(),
+            diagnostics,
+        })?;
+        circuit.limits.push(read);
+    }
     let asks = questions(&circuit, input)?;
     if let Some(keep) = &input.keep {
         circuit = keep_symbols(&circuit, keep)?;
     }
     Ok(Loaded { circuit, asks, remarks, text })
+}
+
+/// Reads the file; the questions are its own, if it has any.
+pub(crate) fn load_file(file: &Path, messages: &Messages) -> Result<Loaded, Failure> {
+    let name = file.display().to_string();
+    let text = read_text(file).map_err(|error| Failure::input(&name, &error))?;
+    let Reading { circuit, diagnostics } = language::read(&text);
+    messages.remarks(&name, &text, &diagnostics);
+    let (errors, remarks): (Vec<_>, Vec<_>) =
+        diagnostics.into_iter().partition(|diagnostic| diagnostic.severity == Severity::Error);
+    match circuit {
+        Some(circuit) => Ok(Loaded { asks: circuit.asks.clone(), circuit, remarks, text }),
+        None => Err(Failure::Text { name, text, diagnostics: errors }),
+    }
 }
 
 fn read_text(path: &Path) -> std::io::Result<String> {
@@ -101,6 +115,8 @@ fn keep_symbols(circuit: &Circuit, keep: &[String]) -> Result<Circuit, Failure> 
             }
         }
     }
+    // What goes to a limit has to be a symbol until then.
+    kept.extend(circuit.limits.iter().filter_map(|limit| limit.symbol));
     circuit.with_numbers(|symbol| !kept.contains(&symbol)).map_err(|missing| {
         Failure::option(
             format!("`{}` has no nominal value to put in", circuit[missing].name),

@@ -18,16 +18,12 @@ pub(crate) struct Messages {
 
 impl Messages {
     pub(crate) fn new(output: &Output) -> Self {
-        Self::with(output.format == Format::Json, output.quiet, output.color)
-    }
-
-    pub(crate) fn with(json: bool, quiet: bool, colour: Colour) -> Self {
-        match colour {
+        match output.color {
             Colour::Auto => {}
             Colour::Always => ColorChoice::Always.write_global(),
             Colour::Never => ColorChoice::Never.write_global(),
         }
-        Self { json, quiet }
+        Self { json: output.format == Format::Json, quiet: output.quiet }
     }
 
     fn line(text: &str) {

@@ -7,13 +7,14 @@
 //! | 0 | done |
 //! | 1 | a witness disagrees |
 //! | 2 | the command line or the file is wrong |
-//! | 3 | the circuit has no unique solution |
+//! | 3 | the circuit has no unique solution; the answer, a limit or a set of parameters does not exist |
 //! | 4 | a work bound was reached; what was found before was printed |
 
 mod args;
 mod derive;
 mod failure;
 mod input;
+mod inspect;
 mod messages;
 mod roots;
 
@@ -42,10 +43,12 @@ pub(crate) fn run() -> ExitCode {
                 finish(&messages, derive::run(&derive, &messages))
             }
             Command::Roots(roots) => {
-                let output = &roots.output;
-                let json = output.format == args::RootsFormat::Json;
-                let messages = Messages::with(json, output.quiet, output.color);
+                let messages = Messages::new(&roots.output.output());
                 finish(&messages, roots::run(&roots, &messages))
+            }
+            Command::Inspect(inspect) => {
+                let messages = Messages::new(&inspect.output());
+                finish(&messages, inspect::run(&inspect, &messages))
             }
         });
     match worker.map(std::thread::JoinHandle::join) {

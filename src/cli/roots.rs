@@ -1,10 +1,9 @@
 //! `cofactor roots`: poles and zeros, and which elements set each.
 
-use cofactor::analysis::roots::{self, Quantity, RootReport, Unreachable};
-use cofactor::analysis::{self, Derivation, Notice, Options};
-use cofactor::circuit::{Ask, Number, SymbolId, Transfer, Unit};
+use cofactor::analysis::roots::{self, Nominal, Quantity, RootReport, RootsError, Unreachable};
+use cofactor::analysis::{self, Entry, Notice, Options};
+use cofactor::circuit::{Ask, Number, Question, SymbolId, Unit};
 use cofactor::language::{self, line_and_column};
-use cofactor::numeric::Assignment;
 use cofactor::typeset::answer::roots::{self as typeset, Answer, Moved, Report};
 use cofactor::typeset::answer::{self, TextStyle};
 use cofactor::typeset::json;
@@ -61,7 +60,7 @@ impl Wishes {
         if locus.is_some() && arguments.output.format != RootsFormat::Svg {
             return Err(Failure::option("`--locus` is a picture".to_owned(), "add `--format svg`"));
         }
-        let pictures: usize = loaded.asks.iter().map(|ask| ask.transfers().len()).sum();
+        let pictures = loaded.asks.len();
         if arguments.output.format == RootsFormat::Svg && pictures != 1 {
             return Err(Failure::option(
                 format!("a picture shows one function, and {pictures} are asked for"),
@@ -178,40 +177,48 @@ struct Printer<'a> {
 impl Printer<'_> {
     fn take(&mut self, ask: &Ask, first: bool) -> Result<(), Failure> {
         let circuit = &self.loaded.circuit;
-        if ask.transfers().is_empty() {
+        if matches!(ask.question, Question::NoiseDensity(..)) {
             let notice = Notice {
-                code: "not-a-ratio",
-                message: "poles and zeros are those of a ratio, such as `V(out) / Vin`".to_owned(),
+                code: "no-roots",
+                message:
+                    "a noise density has no poles and zeros of its own: it is a square of sizes"
+                        .to_owned(),
                 line: ask.line,
             };
-            self.messages.notice(&ask.name, &notice);
-            self.warnings.push(answer::warning(&notice));
+            self.say(&ask.name, &notice);
             return Ok(());
         }
+        let options = Options { max_terms: self.arguments.max_terms, ..Options::default() };
+        let entries = analysis::answer(circuit, ask, &options)
+            .map_err(|error| Failure::analysis(&ask.name, &error))?;
+        if self.arguments.output.format == RootsFormat::Svg && entries.len() != 1 {
+            return Err(Failure::option(
+                format!(
+                    "{}: a picture shows one function, and this has {}",
+                    ask.name,
+                    entries.len()
+                ),
+                "ask for one of them by its name",
+            ));
+        }
         let mut reports = Vec::new();
-        for transfer in ask.transfers() {
-            let options = Options { max_terms: self.arguments.max_terms, ..Options::default() };
-            let derivation = analysis::derive(circuit, transfer, &options)
-                .map_err(|error| Failure::analysis(&ask.name, &error))?;
-            let roots = roots::analyse(circuit, transfer, &derivation)
-                .map_err(|error| Failure::roots(&ask.name, &error))?;
-            self.passed &= derivation.evidence.passed();
-            for notice in derivation.notices.iter().chain(&roots.notices) {
-                self.messages.notice(&ask.name, notice);
-                let warning = answer::warning(notice);
-                if !self.warnings.contains(&warning) {
-                    self.warnings.push(warning);
-                }
+        for entry in &entries {
+            let failed = |error: RootsError| Failure::roots(&entry.name, &error);
+            let nominal = Nominal::new(circuit, entry).map_err(failed)?;
+            let roots = roots::analyse(circuit, entry, &nominal).map_err(failed)?;
+            self.passed &= entry.passed();
+            for notice in entry.notices.iter().chain(&roots.notices) {
+                self.say(&entry.name, notice);
             }
             if self.arguments.output.format == RootsFormat::Svg {
-                return self.picture(ask, transfer, &derivation, roots);
+                return self.picture(entry, &nominal, &roots);
             }
-            reports.push(self.report(ask, transfer, &derivation, roots)?);
+            reports.push(self.report(entry, &nominal, roots)?);
         }
         let answer = Answer { circuit, ask, reports: &reports };
         match self.arguments.output.format {
             RootsFormat::Json => {
-                self.results.push(typeset::result(&answer));
+                self.results.extend(typeset::results(&answer));
                 Ok(())
             }
             RootsFormat::Latex => write_results(&typeset::latex(&answer)),
@@ -219,23 +226,27 @@ impl Printer<'_> {
         }
     }
 
+    fn say(&mut self, name: &str, notice: &Notice) {
+        self.messages.notice(name, notice);
+        let warning = answer::warning(notice);
+        if !self.warnings.contains(&warning) {
+            self.warnings.push(warning);
+        }
+    }
+
     /// The roots, and what the options ask for besides.
-    fn report(
+    fn report<'e>(
         &self,
-        ask: &Ask,
-        transfer: &Transfer,
-        derivation: &Derivation,
+        entry: &'e Entry,
+        nominal: &Nominal<'_>,
         roots: RootReport,
-    ) -> Result<Report, Failure> {
-        let circuit = &self.loaded.circuit;
-        let assignment = Assignment::for_transfer(circuit, transfer, 0);
+    ) -> Result<Report<'e>, Failure> {
         let moved = match &self.wishes.target {
             None => None,
             Some((target, symbol)) => {
                 let quantity = target.quantity(&roots);
-                let nominal = roots::Nominal { derivation, assignment: &assignment };
                 let solution = roots::solve(nominal, quantity, *symbol, &target.value)
-                    .map_err(|error| self.unreachable(ask, target, *symbol, &error))?;
+                    .map_err(|error| self.unreachable(entry, target, *symbol, &error))?;
                 let value = num_traits::ToPrimitive::to_f64(&target.value).unwrap_or(f64::NAN);
                 Some(Moved { quantity, target: value, symbol: *symbol, solution })
             }
@@ -244,16 +255,15 @@ impl Printer<'_> {
             let places =
                 |list: &[roots::RootFacts]| list.iter().map(|facts| facts.root).collect::<Vec<_>>();
             let (poles, zeros) = (places(&roots.poles), places(&roots.zeros));
-            let seed = self.arguments.seed;
-            let nominal = roots::Nominal { derivation, assignment: &assignment };
-            roots::monte_carlo(circuit, nominal, &poles, &zeros, trials as usize, seed)
+            let draws = (trials as usize, self.arguments.seed);
+            roots::monte_carlo(&self.loaded.circuit, nominal, &poles, &zeros, draws)
         });
-        Ok(Report { roots, chance, moved })
+        Ok(Report { entry, roots, chance, moved })
     }
 
     fn unreachable(
         &self,
-        ask: &Ask,
+        entry: &Entry,
         target: &Target,
         symbol: SymbolId,
         error: &Unreachable,
@@ -265,7 +275,7 @@ impl Printer<'_> {
         };
         match error {
             Unreachable::NoSuchQuantity => Failure::option(
-                format!("{}: there is no such thing to move: `{}`", ask.name, target.text),
+                format!("{}: there is no such thing to move: `{}`", entry.name, target.text),
                 MOVE_HELP,
             ),
             Unreachable::NoSuchSymbol => Failure::option(
@@ -276,7 +286,7 @@ impl Printer<'_> {
                 format!(
                     "{}: `{name}` alone cannot do `{}`: within a factor of a million it reaches {} \
                      to {}",
-                    ask.name,
+                    entry.name,
                     target.text,
                     number(*least),
                     number(*largest)
@@ -288,27 +298,21 @@ impl Printer<'_> {
 
     fn picture(
         &self,
-        ask: &Ask,
-        transfer: &Transfer,
-        derivation: &Derivation,
-        roots: RootReport,
+        entry: &Entry,
+        nominal: &Nominal<'_>,
+        roots: &RootReport,
     ) -> Result<(), Failure> {
         let circuit = &self.loaded.circuit;
-        let assignment = Assignment::for_transfer(circuit, transfer, 0);
         let locus = match self.wishes.locus {
             None => None,
-            Some(symbol) => {
-                let nominal = roots::Nominal { derivation, assignment: &assignment };
-                Some(roots::locus(nominal, symbol).ok_or_else(|| {
-                    Failure::option(
-                        format!("`--locus {}`: it has no positive value", circuit[symbol].name),
-                        "give it a value in the file",
-                    )
-                })?)
-            }
+            Some(symbol) => Some(roots::locus(nominal, symbol).ok_or_else(|| {
+                Failure::option(
+                    format!("`--locus {}`: it has no positive value", circuit[symbol].name),
+                    "give it a value in the file",
+                )
+            })?),
         };
-        let answer = Answer { circuit, ask, reports: &[] };
-        write_results(&typeset::map(&answer, transfer, &roots, locus.as_ref()))
+        write_results(&typeset::map(circuit, entry, roots, locus.as_ref()))
     }
 
     fn text(&self, answer: &Answer<'_>, first: bool) -> Result<(), Failure> {

@@ -219,7 +219,7 @@ fn explore(plan: &Plan<'_>) -> Result<Vec<RawLevel>, TooLarge> {
 }
 
 /// Makes reduced nodes, each only once.
-struct Reducer {
+pub(crate) struct Reducer {
     starts: Vec<u32>,
     edges: Vec<Edge>,
     choice_of: Vec<u32>,
@@ -227,7 +227,7 @@ struct Reducer {
 }
 
 impl Reducer {
-    fn new() -> Self {
+    pub(crate) fn new() -> Self {
         let Diagram { starts, edges, choice_of, .. } = Diagram::one();
         Self { starts, edges, choice_of, unique: FxHashMap::default() }
     }
@@ -240,7 +240,7 @@ impl Reducer {
         links: &[Link],
         next: &[Link],
     ) -> Link {
-        let mut edges: Vec<Edge> = links
+        let edges: Vec<Edge> = links
             .iter()
             .enumerate()
             .map(|(alternative, &link)| Edge {
@@ -249,10 +249,21 @@ impl Reducer {
             })
             .filter(|edge| !edge.link.is_dead())
             .collect();
+        let is_unit = |weight| unit.is_some_and(|unit| weight == first_weight + unit as u32);
+        self.reduced(choice, edges, is_unit)
+    }
+
+    /// The node with these edges, none of them dead; one alone of weight 1 is bypassed.
+    pub(crate) fn reduced(
+        &mut self,
+        choice: u32,
+        mut edges: Vec<Edge>,
+        is_unit: impl Fn(u32) -> bool,
+    ) -> Link {
         let Some(&first) = edges.first() else {
             return Link::DEAD;
         };
-        if edges.len() == 1 && unit.is_some_and(|unit| first.weight == first_weight + unit as u32) {
+        if edges.len() == 1 && is_unit(first.weight) {
             return first.link;
         }
         let negative = first.link.is_negative();
@@ -273,7 +284,8 @@ impl Reducer {
         Link::to(id as usize).signed(negative)
     }
 
-    fn finish(self, roots: Vec<Link>) -> Diagram {
+    /// The diagram of everything that these roots lead to.
+    pub(crate) fn finish(self, roots: Vec<Link>) -> Diagram {
         let whole =
             Diagram { starts: self.starts, edges: self.edges, choice_of: self.choice_of, roots };
         whole.reachable()

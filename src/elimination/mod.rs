@@ -10,6 +10,7 @@
 //! Seshu 1965, Chen 1976), decision diagrams (Bryant 1986, Minato 1993), frontier search (Sekine,
 //! Imai & Tani 1995; Knuth, TAOCP 4A, 7.1.4).
 
+mod at_limit;
 mod choice;
 mod diagram;
 mod error;
@@ -38,6 +39,7 @@ use passes::expand::{self, TermSet};
 use passes::{coefficients, count, gradient, numbers};
 use system::System;
 
+pub use at_limit::InfiniteLimit;
 pub use error::EliminationError;
 pub use nested::{Nested, NestedFactor, NestedSum};
 pub use passes::gradient::Gradient;
@@ -153,13 +155,7 @@ impl Elimination {
             .iter()
             .flat_map(|choice| choice.alternatives.iter().map(|a| a.weight.clone()))
             .collect();
-        let mut symbols: Vec<Var> = weights
-            .iter()
-            .flat_map(Polynomial::variables)
-            .filter(|&variable| variable != Var::S)
-            .collect();
-        symbols.sort_unstable();
-        symbols.dedup();
+        let symbols = symbols_of(&weights);
         Self {
             numerator: diagram.roots[system.numerator],
             denominator: diagram.roots[system.denominator],
@@ -174,9 +170,19 @@ impl Elimination {
         }
     }
 
+    /// The symbols that the answer depends on, ascending, as variables.
+    pub fn variables(&self) -> &[Var] {
+        &self.symbols
+    }
+
     /// Whether the answer is exactly 0: the drive does not reach what is asked.
     pub fn is_zero(&self) -> bool {
         self.numerator.is_dead()
+    }
+
+    /// The last variable of the weights; none where they are numbers or hold only `s`.
+    pub(crate) fn last_variable(&self) -> Option<Var> {
+        self.symbols.last().copied()
     }
 
     /// Whether every term of an expansion is different from every other, so that counts are exact.
@@ -337,6 +343,18 @@ fn zeros(system: &System, diagram: &Diagram) -> Vec<bool> {
         }
     }
     diagram.roots.iter().zip(cancelled).map(|(root, zero)| root.is_dead() || zero).collect()
+}
+
+/// The symbols in these weights, ascending.
+fn symbols_of(weights: &[Polynomial]) -> Vec<Var> {
+    let mut symbols: Vec<Var> = weights
+        .iter()
+        .flat_map(Polynomial::variables)
+        .filter(|&variable| variable != Var::S)
+        .collect();
+    symbols.sort_unstable();
+    symbols.dedup();
+    symbols
 }
 
 /// The diagram, and for each choice its place in the order.

@@ -93,7 +93,8 @@ impl Builder<'_> {
             factor,
         });
         let law = DraftLaw::Mutual(first, second, definition);
-        self.push(Draft { name: owner, class: Class::Mutual, plus: 0, minus: 0, law });
+        let class = Class::Mutual;
+        self.push(Draft { name: owner, class, plus: 0, minus: 0, law, noiseless: false });
     }
 
     /// Finds the numbers that follow from others, once all definitions are settled.

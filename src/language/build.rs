@@ -34,6 +34,8 @@ pub(crate) struct Draft {
     pub(crate) plus: usize,
     pub(crate) minus: usize,
     pub(crate) law: DraftLaw,
+    /// True for the slope of a device's characteristic.
+    pub(crate) noiseless: bool,
 }
 
 #[derive(Debug)]
@@ -482,6 +484,10 @@ impl<'s> Builder<'s> {
         let mut faults = Vec::new();
         for (draft, terms) in self.drafts.iter().zip(terms) {
             let Some(law) = self.law(draft, terms, &mut faults) else { continue };
+            if draft.noiseless {
+                let id = u32::try_from(circuit.elements.len()).unwrap_or(u32::MAX);
+                circuit.noiseless.push(ElementId(id));
+            }
             circuit.elements.push(Element {
                 name: draft.name.text.clone(),
                 class: draft.class,

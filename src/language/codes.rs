@@ -104,7 +104,11 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "correct it, or declare it with `let`",
     ),
     ("needs", "a parameter needs another one", "give that one too"),
-    ("nesting", "parentheses are nested too deep", "name a part with `let`"),
+    (
+        "nesting",
+        "parentheses or blocks are nested too deep",
+        "name a part with `let`, or use fewer levels of blocks",
+    ),
     ("no-class", "an element's name does not tell its class", "write the class word before it"),
     ("no-function", "a name stands before `(` and is no query", "write `*` between them"),
     (
@@ -189,7 +193,11 @@ pub const CODES: &[(&str, &str, &str)] = &[
     ("temperature", "a temperature is not above 0 K", "write it like `temperature 300 K`"),
     ("temperature-unit", "a temperature is not in kelvin", "write it like `temperature 300 K`"),
     ("tolerance", "a tolerance has neither a percent sign nor a unit", "write `± 1 %`"),
-    ("too-large", "a value grows beyond all use", "leave a name without a value"),
+    (
+        "too-large",
+        "a value or the blocks grow beyond all use",
+        "leave a name without a value, or use fewer blocks",
+    ),
     ("two-sources", "a ratio names two independent sources", "name what one of them causes"),
     (
         "unexpected-character",

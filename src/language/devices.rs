@@ -106,8 +106,10 @@ pub(crate) enum When {
 /// The law of a part; its value is the parameter in [`When`].
 #[derive(Clone, Copy, Debug)]
 pub(crate) enum PartLaw {
-    /// v = R·i.
+    /// v = R·i, a body that makes thermal noise.
     Resistor,
+    /// v = r·i, the slope of a characteristic.
+    Slope,
     /// i = s·C·v.
     Capacitor,
     /// i = g·v between these pins.
@@ -177,8 +179,8 @@ const fn part(when: When, law: PartLaw, plus: Pin, minus: Pin) -> Part {
     Part { when, law, plus, minus }
 }
 
-const fn resistor(parameter: &'static str, plus: &'static str, minus: &'static str) -> Part {
-    part(Given(parameter), PartLaw::Resistor, At(plus), At(minus))
+const fn slope(parameter: &'static str, plus: &'static str, minus: &'static str) -> Part {
+    part(Given(parameter), PartLaw::Slope, At(plus), At(minus))
 }
 
 const fn capacitor(parameter: &'static str, plus: &'static str, minus: &'static str) -> Part {
@@ -235,8 +237,8 @@ pub(crate) const KINDS: [Kind; 10] = [
                 At("output"),
                 Ground,
             ),
-            resistor("rin", "plus", "minus"),
-            part(Given("rout"), PartLaw::Resistor, At("output"), Outer("output")),
+            slope("rin", "plus", "minus"),
+            part(Given("rout"), PartLaw::Slope, At("output"), Outer("output")),
         ],
         ..EMPTY
     },
@@ -307,10 +309,10 @@ pub(crate) const KINDS: [Kind; 10] = [
                 At("collector"),
                 At("emitter"),
             ),
-            resistor("rpi", "base", "emitter"),
-            resistor("ro", "collector", "emitter"),
+            slope("rpi", "base", "emitter"),
+            slope("ro", "collector", "emitter"),
             part(Given("rb"), PartLaw::Resistor, Outer("base"), At("base")),
-            resistor("rmu", "base", "collector"),
+            slope("rmu", "base", "collector"),
             capacitor("Cpi", "base", "emitter"),
             capacitor("Cmu", "base", "collector"),
         ],
@@ -364,7 +366,7 @@ pub(crate) const KINDS: [Kind; 10] = [
                 At("drain"),
                 At("source"),
             ),
-            resistor("ro", "drain", "source"),
+            slope("ro", "drain", "source"),
             capacitor("Cgs", "gate", "source"),
             capacitor("Cgd", "gate", "drain"),
             capacitor("Cdb", "drain", "bulk"),
@@ -388,7 +390,7 @@ pub(crate) const KINDS: [Kind; 10] = [
                 At("drain"),
                 At("source"),
             ),
-            resistor("ro", "drain", "source"),
+            slope("ro", "drain", "source"),
             capacitor("Cgs", "gate", "source"),
             capacitor("Cgd", "gate", "drain"),
         ],
@@ -424,7 +426,7 @@ pub(crate) const KINDS: [Kind; 10] = [
                 At("plate"),
                 At("cathode"),
             ),
-            resistor("rp", "plate", "cathode"),
+            slope("rp", "plate", "cathode"),
             capacitor("Cgk", "grid", "cathode"),
             capacitor("Cgp", "grid", "plate"),
             capacitor("Cpk", "plate", "cathode"),
@@ -435,7 +437,7 @@ pub(crate) const KINDS: [Kind; 10] = [
         word: "diode",
         roles: &[node("anode"), node("cathode")],
         parameters: &[("rd", Unit::OHM), ("Cd", Unit::FARAD)],
-        parts: &[resistor("rd", "anode", "cathode"), capacitor("Cd", "anode", "cathode")],
+        parts: &[slope("rd", "anode", "cathode"), capacitor("Cd", "anode", "cathode")],
         nominals: &[Nominal {
             parameter: "rd",
             factor: None,

@@ -334,7 +334,9 @@ impl Builder<'_> {
             let (law, class) = match (part.law, definition) {
                 (PartLaw::Nullor(class, a, b), _) => (DraftLaw::Nullor(pin(a), pin(b)), class),
                 (_, None) => continue,
-                (PartLaw::Resistor, Some(id)) => (DraftLaw::Passive(id), Class::Resistor),
+                (PartLaw::Resistor | PartLaw::Slope, Some(id)) => {
+                    (DraftLaw::Passive(id), Class::Resistor)
+                }
                 (PartLaw::Capacitor, Some(id)) => (DraftLaw::Passive(id), Class::Capacitor),
                 (PartLaw::CurrentBy(a, b), Some(id)) => {
                     (DraftLaw::ByVoltage(id, None, pin(a), pin(b)), Class::Current)
@@ -354,7 +356,8 @@ impl Builder<'_> {
             };
             let (plus, minus) = (pin(part.plus), pin(part.minus));
             let name = Name { text: name, span: owner.span };
-            self.push(Draft { name, class, plus, minus, law });
+            let noiseless = matches!(part.law, PartLaw::Slope);
+            self.push(Draft { name, class, plus, minus, law, noiseless });
         }
         if let Some(bias) = bias {
             let place =

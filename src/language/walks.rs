@@ -149,7 +149,7 @@ impl Builder<'_> {
             }
         };
         let Some(law) = law else { return };
-        self.push(Draft { name, class, plus, minus, law });
+        self.push(Draft { name, class, plus, minus, law, noiseless: false });
     }
 
     pub(crate) fn push(&mut self, draft: Draft) {

@@ -12,6 +12,7 @@ mod crosscheck;
 mod exact;
 mod field;
 mod floating;
+mod limit;
 mod lower;
 mod modular;
 mod network;
@@ -28,9 +29,11 @@ pub use crosscheck::{Candidate, ExactEvidence, ExactKind, FloatingEvidence, Repo
 pub use exact::{Fraction, exact, exact_is_affordable};
 pub use field::{Complexes, Field, PrimeField, Rationals};
 pub use floating::{PointAnswer, Sweep, frequencies, response};
+pub use limit::{LimitValue, limit_value};
 pub use lower::lowered;
 pub use modular::{PRIMES, modular_value};
 pub use network::grounded_nodes;
+pub(crate) use values::pi as exact_pi;
 pub use values::{Assignment, Origin, evaluate, used_symbols};
 
 /// Why a witness has no answer.

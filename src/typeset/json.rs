@@ -99,6 +99,82 @@ pub struct Ratio {
     pub numeric: Option<Numeric>,
     /// The comparison with a floating-point solution of the network.
     pub crosscheck: Crosscheck,
+    /// The limits that were taken, in their order.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub limits: Vec<String>,
+    /// What else was tried: a limit against the network, the parts of a feedback circuit.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub checks: Vec<Check>,
+    /// Contributions and totals of a noise density, as fields of the result.
+    #[serde(flatten)]
+    pub noise: Option<Noise>,
+}
+
+/// Something that was tried besides the cross-check.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize)]
+pub struct Check {
+    /// What holds when it passed, for people.
+    pub statement: String,
+    /// Whether it holds.
+    pub passed: bool,
+}
+
+/// What a noise density consists of, and what it adds up to. Its expressions are in the frequency
+/// `f` in hertz, in `pi`, in the constants and in the symbols.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct Noise {
+    /// Every noisy element, in the order of the circuit.
+    pub contributors: Vec<Contributor>,
+    /// The mean square from 0 to infinity; null where it is infinite or of an order above 4.
+    pub total: Option<TotalNoise>,
+    /// The noise in the band; null without a band or without nominal values.
+    pub in_band: Option<BandNoise>,
+    /// The constants of nature in the expressions.
+    pub constants: Vec<Constant>,
+}
+
+/// The share of one element in a noise density.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize)]
+pub struct Contributor {
+    /// The element, or a device's terminal for shot noise.
+    pub element: String,
+    /// Its share, in V²/Hz; `0` where it does not reach the voltage.
+    pub expression: String,
+}
+
+/// A mean square over all frequencies.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct TotalNoise {
+    /// The mean square in plain ASCII; it holds where the circuit is stable.
+    pub expression: String,
+    /// Of the expression: `V²`.
+    pub unit: String,
+    /// The root of its nominal value, in volt; null without nominal values.
+    pub rms: Option<f64>,
+}
+
+/// The noise between two frequencies.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct BandNoise {
+    /// The lower end, in hertz.
+    pub from_hz: f64,
+    /// The upper end, in hertz.
+    pub to_hz: f64,
+    /// The root of the mean square, in volt.
+    pub rms: f64,
+    /// A bound of its relative error.
+    pub relative_error: f64,
+}
+
+/// A constant of nature, or the temperature.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize)]
+pub struct Constant {
+    /// As in `expression`s: `k_B`, `T_0`, `q_e`.
+    pub name: String,
+    /// The exact value.
+    pub value: String,
+    /// The SI unit's symbol.
+    pub unit: String,
 }
 
 /// A named sub-expression.
@@ -238,6 +314,9 @@ mod tests {
                 worst_relative_error: 2.1e-15,
                 passed: true,
             },
+            limits: Vec::new(),
+            checks: Vec::new(),
+            noise: None,
         }
     }
 

@@ -19,9 +19,11 @@
 //! May use: [`crate::circuit`], [`crate::algebra`], [`crate::elimination`], [`crate::analysis`].
 
 pub mod answer;
+pub mod drawing;
 mod evaluate;
 mod formula;
 mod greek;
+pub mod inspect;
 pub mod json;
 pub mod latex;
 mod latex_name;

@@ -67,6 +67,8 @@ impl SymbolName {
 pub struct SymbolTable {
     names: Vec<SymbolName>,
     definition_stem: String,
+    /// Whether the first variable is `f` and not `s`.
+    of_frequency: bool,
 }
 
 impl Default for SymbolTable {
@@ -116,7 +118,13 @@ impl SymbolTable {
         }) {
             definition_stem.push('e');
         }
-        Self { names, definition_stem }
+        Self { names, definition_stem, of_frequency: false }
+    }
+
+    /// The same names for functions of the frequency: the variable that is `s` elsewhere is `f`.
+    #[must_use]
+    pub fn of_frequency(self) -> Self {
+        Self { of_frequency: true, ..self }
     }
 
     /// The name of a symbol.
@@ -129,6 +137,7 @@ impl SymbolTable {
     #[must_use]
     pub fn letter(&self, letter: Letter, style: Style) -> Cow<'_, str> {
         match letter {
+            Letter::S if self.of_frequency => "f".into(),
             Letter::S => "s".into(),
             Letter::Frequency => "f".into(),
             Letter::Pi => match style {

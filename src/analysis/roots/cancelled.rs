@@ -5,10 +5,9 @@ use num_complex::Complex;
 use super::RootsError;
 use super::find::{Root, find};
 use super::sensitivity::{self, Sensitivity, Side};
-use crate::algebra::{Univariate, Var};
-use crate::analysis::Derivation;
-use crate::circuit::{Number, SymbolId};
-use crate::elimination::symbol_of;
+use super::values::Nominal;
+use crate::analysis::Notice;
+use crate::circuit::SymbolId;
 
 /// A pole and a zero in one place.
 #[derive(Clone, Debug, PartialEq)]
@@ -19,25 +18,25 @@ pub struct Cancelled {
     pub separating: Vec<SymbolId>,
 }
 
-/// The pairs that the numeric form has lost; pairs that coincide for all values are none.
+/// The pairs that have cancelled with the numbers put in; pairs that coincide for all values are none.
 pub(super) fn find_cancelled(
-    derivation: &Derivation,
-    numbers: &[Number],
-    symbols: &[f64],
+    nominal: &Nominal<'_>,
+    notices: &[Notice],
 ) -> Result<Vec<Cancelled>, RootsError> {
-    if !derivation.notices.iter().any(|notice| notice.code == "cancelled-at-nominal") {
+    // The coefficients of a nested form may have a factor in common for all values: look only where
+    // the numbers are known to have cancelled something.
+    let noticed = notices.iter().any(|notice| notice.code == "cancelled-at-nominal");
+    if !noticed && nominal.parts().is_none() {
         return Ok(Vec::new());
     }
-    let value = |variable: Var| {
-        symbol_of(variable)
-            .and_then(|symbol| numbers.get(symbol.0 as usize).cloned())
-            .unwrap_or_else(|| Number::from_integer(0.into()))
-    };
-    let [numerator, denominator] = derivation.elimination.coefficients(value);
-    let common = Univariate::from_integers(numerator).gcd(&Univariate::from_integers(denominator));
+    let [numerator, denominator] = nominal.coefficients(&[]);
+    if numerator.is_zero() {
+        return Ok(Vec::new());
+    }
+    let common = numerator.gcd(&denominator);
     let mut cancelled = Vec::new();
     for root in find(&common)? {
-        let of = |side| sensitivity::of_root(&derivation.elimination, symbols, root.value, side);
+        let of = |side| sensitivity::of_root(nominal, root.value, side);
         let separating = match (of(Side::Zeros), of(Side::Poles)) {
             (Some(zero), Some(pole)) => different(&zero, &pole),
             _ => Vec::new(),

@@ -10,8 +10,8 @@ use num_traits::{ToPrimitive, Zero};
 
 use super::find::find;
 use super::sensitivity::{self, Sensitivity};
+use super::values::Nominal;
 use crate::algebra::Univariate;
-use crate::elimination::Elimination;
 
 /// The gain at zero frequency, where it is finite and not 0.
 #[derive(Clone, Debug, PartialEq)]
@@ -36,8 +36,7 @@ pub struct BandEdge {
 pub(super) fn dc_gain(
     numerator: &Univariate,
     denominator: &Univariate,
-    elimination: &Elimination,
-    symbols: &[f64],
+    nominal: &Nominal<'_>,
 ) -> Option<DcGain> {
     let (above, below) = (numerator.coefficient(0), denominator.coefficient(0));
     if above.is_zero() || below.is_zero() {
@@ -45,15 +44,14 @@ pub(super) fn dc_gain(
     }
     Some(DcGain {
         value: (above / below).to_f64()?,
-        sensitivities: sensitivity::of_value(elimination, symbols, Complex::zero()),
+        sensitivities: sensitivity::of_value(nominal, Complex::zero()),
     })
 }
 
 pub(super) fn band_edge(
     numerator: &Univariate,
     denominator: &Univariate,
-    elimination: &Elimination,
-    symbols: &[f64],
+    nominal: &Nominal<'_>,
 ) -> Option<BandEdge> {
     let (above, below) = (numerator.coefficient(0), denominator.coefficient(0));
     let low = !above.is_zero() && !below.is_zero();
@@ -75,19 +73,15 @@ pub(super) fn band_edge(
         .collect();
     let omega = *if low { crossings.first() } else { crossings.last() }?;
     let s = Complex::new(0.0, omega);
-    let sensitivities = if low { edge_sensitivities(elimination, symbols, s) } else { None };
+    let sensitivities = if low { edge_sensitivities(nominal, s) } else { None };
     Some(BandEdge { hz: omega / std::f64::consts::TAU, from_dc: low, sensitivities })
 }
 
 /// ln|H(jω)| − ln|H(0)| stays what it is while x moves: implicit differentiation.
-fn edge_sensitivities(
-    elimination: &Elimination,
-    symbols: &[f64],
-    s: Complex<f64>,
-) -> Option<Vec<Sensitivity>> {
-    let slope = sensitivity::logarithmic_slope(elimination, symbols, s)?.re;
-    let here = sensitivity::of_value(elimination, symbols, s)?;
-    let there = sensitivity::of_value(elimination, symbols, Complex::zero())?;
+fn edge_sensitivities(nominal: &Nominal<'_>, s: Complex<f64>) -> Option<Vec<Sensitivity>> {
+    let slope = sensitivity::logarithmic_slope(nominal, s)?.re;
+    let here = sensitivity::of_value(nominal, s)?;
+    let there = sensitivity::of_value(nominal, Complex::zero())?;
     let each = here.into_iter().map(|one| {
         let reference = there.iter().find(|other| other.symbol == one.symbol);
         let reference = reference.map_or(0.0, |other| other.value.re);

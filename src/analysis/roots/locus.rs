@@ -21,9 +21,8 @@ pub struct Locus {
 const STEPS: i32 = 60;
 
 /// Follows the poles; none where the symbol has no positive value.
-pub fn locus(values: Nominal<'_>, symbol: SymbolId) -> Option<Locus> {
-    let nominal =
-        values.assignment.numbers.get(symbol.0 as usize)?.to_f64().filter(|x| *x > 0.0)?;
+pub fn locus(values: &Nominal<'_>, symbol: SymbolId) -> Option<Locus> {
+    let nominal = values.number(symbol)?.to_f64().filter(|x| *x > 0.0)?;
     let start = places(&values.with(&[])?.1)?;
     let count = start.len();
     let at = |step: i32| nominal * libm::pow(10.0, f64::from(step) / f64::from(STEPS));

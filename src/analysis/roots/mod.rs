@@ -37,13 +37,11 @@ pub use stability::{Conditions, Verdict, is_hurwitz, verdict};
 pub use tolerance::Shift;
 pub use values::Nominal;
 
-use num_traits::{Signed, ToPrimitive, Zero};
+use num_traits::{Signed, ToPrimitive};
 
-use super::{ClosedForm, Derivation, Notice, NumericForm};
-use crate::algebra::{Polynomial, Univariate, Var};
-use crate::circuit::{Circuit, Number, SymbolId, SymbolRole, Transfer};
-use crate::elimination::symbol_of;
-use crate::numeric::{Assignment, Origin, used_symbols};
+use super::{Entry, Notice};
+use crate::algebra::{Polynomial, Univariate};
+use crate::circuit::{Circuit, SymbolId, SymbolRole};
 use sensitivity::Side;
 
 /// Everything about the roots of one transfer function.
@@ -94,44 +92,42 @@ impl RootFacts {
     }
 }
 
-/// Finds and describes the roots of a derived transfer function.
+/// Finds and describes the roots of a result, whose nominal values are given with it.
 ///
 /// # Errors
-/// Missing values, and bounds of the work.
+/// A function that is not finite, and bounds of the work.
 pub fn analyse(
     circuit: &Circuit,
-    transfer: &Transfer,
-    derivation: &Derivation,
+    entry: &Entry,
+    nominal: &Nominal<'_>,
 ) -> Result<RootReport, RootsError> {
-    let assignment = Assignment::for_transfer(circuit, transfer, 0);
-    let numeric = numeric_form(circuit, transfer, derivation, &assignment)?;
-    let symbols = assignment.floats();
-    let elimination = &derivation.elimination;
-    let numerator = Univariate::from_rationals(&numeric.numerator);
-    let denominator = Univariate::from_rationals(&numeric.denominator);
-    let fraction = match &derivation.form {
-        ClosedForm::Expanded(fraction) => Some(fraction),
-        ClosedForm::Nested(_) => None,
+    let (numerator, denominator) = match &entry.numeric {
+        Some(numeric) => (
+            Univariate::from_rationals(&numeric.numerator),
+            Univariate::from_rationals(&numeric.denominator),
+        ),
+        None if nominal.parts().is_some() => nominal.with(&[]).ok_or(RootsError::NotFinite)?,
+        None => {
+            let finite = !entry.notices.iter().any(|notice| notice.code == "no-nominal-value");
+            return Err(if finite { RootsError::TooLarge } else { RootsError::NotFinite });
+        }
     };
-    let describer = Describer { circuit, derivation, symbols: &symbols };
-    let poles =
-        describer.all(&denominator, fraction.map(|form| form.denominator()), Side::Poles)?;
-    let zeros = describer.all(&numerator, fraction.map(|form| form.numerator()), Side::Zeros)?;
+    let parts = nominal.parts();
+    let describer = Describer { circuit, nominal };
+    let poles = describer.all(&denominator, parts.map(|parts| parts[1]), Side::Poles)?;
+    let zeros = describer.all(&numerator, parts.map(|parts| parts[0]), Side::Zeros)?;
     let gain = if numerator.is_zero() {
         0.0
     } else {
         let ratio = numerator.leading_coefficient() / denominator.leading_coefficient();
         ratio.to_f64().unwrap_or(f64::NAN)
     };
-    let value = |polynomial: &Polynomial| {
-        polynomial.evaluate(|variable| value_of_symbol(&assignment.numbers, variable))
-    };
     // The conditions take every symbol as positive.
-    let all_positive = assignment.numbers.iter().all(Signed::is_positive);
-    let conditions = fraction
-        .filter(|_| all_positive)
-        .and_then(|form| stability::conditions(form, |part| value(part).is_positive()));
-    let cancelled = cancelled::find_cancelled(derivation, &assignment.numbers, &symbols)?;
+    let all_positive = nominal.floats().iter().all(|value| *value > 0.0);
+    let conditions = parts.filter(|_| all_positive).and_then(|parts| {
+        stability::conditions(parts[1], |part| nominal.value(part).is_positive())
+    });
+    let cancelled = cancelled::find_cancelled(nominal, &entry.notices)?;
     let mut notices = Vec::new();
     if cancelled.iter().any(|pair| pair.root.value.re >= 0.0) {
         notices.push(Notice {
@@ -144,9 +140,9 @@ pub fn analyse(
         });
     }
     Ok(RootReport {
-        dc_gain: frequency::dc_gain(&numerator, &denominator, elimination, &symbols)
+        dc_gain: frequency::dc_gain(&numerator, &denominator, nominal)
             .map(|gain| DcGain { sensitivities: describer.named(gain.sensitivities), ..gain }),
-        band_edge: frequency::band_edge(&numerator, &denominator, elimination, &symbols)
+        band_edge: frequency::band_edge(&numerator, &denominator, nominal)
             .map(|edge| BandEdge { sensitivities: describer.named(edge.sensitivities), ..edge }),
         verdict: verdict(&denominator),
         conditions,
@@ -158,15 +154,9 @@ pub fn analyse(
     })
 }
 
-fn value_of_symbol(numbers: &[Number], variable: Var) -> Number {
-    let symbol = symbol_of(variable).and_then(|symbol| numbers.get(symbol.0 as usize).cloned());
-    symbol.unwrap_or_else(Number::zero)
-}
-
 struct Describer<'a> {
     circuit: &'a Circuit,
-    derivation: &'a Derivation,
-    symbols: &'a [f64],
+    nominal: &'a Nominal<'a>,
 }
 
 impl Describer<'_> {
@@ -178,30 +168,23 @@ impl Describer<'_> {
     ) -> Result<Vec<RootFacts>, RootsError> {
         let roots = find(polynomial)?;
         let approximations = match form {
-            Some(form) => approximate::all(form, self.symbols, &roots),
+            Some(form) => approximate::all(form, self.nominal.floats(), &roots),
             None => vec![None; roots.len()],
         };
         let facts = roots.into_iter().zip(approximations);
         Ok(facts
             .map(|(root, approximation)| {
-                let sensitivities = self.sensitivities(&root, form, side);
+                let sensitivities = self.sensitivities(&root, side);
                 self.describe(root, approximation, sensitivities)
             })
             .collect())
     }
 
-    fn sensitivities(
-        &self,
-        root: &Root,
-        form: Option<&Polynomial>,
-        side: Side,
-    ) -> Option<Vec<Sensitivity>> {
-        if root.multiplicity > 1 || root.value.is_zero() {
+    fn sensitivities(&self, root: &Root, side: Side) -> Option<Vec<Sensitivity>> {
+        if root.multiplicity > 1 {
             return None;
         }
-        let elimination = &self.derivation.elimination;
-        let found = sensitivity::of_root(elimination, self.symbols, root.value, side);
-        self.named(found.or_else(|| sensitivity::of_polynomial(form?, self.symbols, root.value)))
+        self.named(sensitivity::of_root(self.nominal, root.value, side))
     }
 
     fn describe(
@@ -229,27 +212,4 @@ impl Describer<'_> {
         all.retain(|one| self.circuit[one.symbol].role != SymbolRole::Pi);
         Some(all)
     }
-}
-
-/// The numeric form, or why there is none.
-fn numeric_form<'a>(
-    circuit: &Circuit,
-    transfer: &Transfer,
-    derivation: &'a Derivation,
-    assignment: &Assignment,
-) -> Result<&'a NumericForm, RootsError> {
-    if let Some(numeric) = &derivation.numeric {
-        return Ok(numeric);
-    }
-    if assignment.origin == Origin::Nominal {
-        let finite = !derivation.notices.iter().any(|notice| notice.code == "no-nominal-value");
-        return Err(if finite { RootsError::TooLarge } else { RootsError::NotFinite });
-    }
-    let missing: Vec<String> = used_symbols(circuit, transfer)
-        .into_iter()
-        .filter(|&id| circuit[id].nominal.is_none() && circuit[id].role != SymbolRole::Pi)
-        .map(|id| format!("`{}`", circuit[id].name))
-        .collect();
-    let verb = if missing.len() == 1 { "has" } else { "have" };
-    Err(RootsError::NoValues(super::notice::listed(missing.into_iter()), verb))
 }

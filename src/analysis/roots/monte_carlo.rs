@@ -35,17 +35,16 @@ pub struct Spread {
     pub q: Option<[f64; 3]>,
 }
 
-/// Draws circuits. `poles` and `zeros` are the nominal roots.
+/// Draws so many circuits from that seed. `poles` and `zeros` are the nominal roots.
 ///
 /// # Cost
 /// That of the coefficients and their roots, for each circuit.
 pub fn monte_carlo(
     circuit: &Circuit,
-    values: Nominal<'_>,
+    values: &Nominal<'_>,
     poles: &[Root],
     zeros: &[Root],
-    trials: usize,
-    seed: u64,
+    (trials, seed): (usize, u64),
 ) -> Chance {
     let mut random = Random::new(seed);
     let toleranced: Vec<(SymbolId, &Number, [&Number; 2])> = (0_u32..)

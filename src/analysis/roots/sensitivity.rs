@@ -11,9 +11,10 @@
 use num_complex::Complex;
 use num_traits::{ToPrimitive, Zero};
 
+use super::values::Nominal;
 use crate::algebra::Polynomial;
 use crate::circuit::SymbolId;
-use crate::elimination::{Elimination, Gradient, symbol_of};
+use crate::elimination::{Gradient, symbol_of};
 
 /// (x/p)·∂p/∂x for one symbol: the real part is the relative change of |p|, the imaginary part the
 /// change of the angle, in radians, for a relative change of the symbol.
@@ -38,39 +39,36 @@ pub(super) enum Side {
 /// The sensitivities of a simple root; none where the derivative vanishes in the arithmetic (a
 /// multiple root moves infinitely fast) and for a root at 0.
 pub(super) fn of_root(
-    elimination: &Elimination,
-    symbols: &[f64],
+    nominal: &Nominal<'_>,
     root: Complex<f64>,
     side: Side,
 ) -> Option<Vec<Sensitivity>> {
     if root.is_zero() {
         return None;
     }
-    let [numerator, denominator] = elimination.gradients_at(root, symbols);
-    let gradient = match side {
-        Side::Zeros => numerator,
-        Side::Poles => denominator,
+    let pick = |[numerator, denominator]: [Gradient; 2]| match side {
+        Side::Zeros => implicit(&numerator),
+        Side::Poles => implicit(&denominator),
     };
-    implicit(&gradient)
+    // A common factor of the elimination may vanish too; the formula in lowest terms has none.
+    nominal
+        .gradients(root)
+        .and_then(pick)
+        .or_else(|| nominal.expanded_gradients(root).and_then(pick))
 }
 
-/// As [`of_root`], from the terms of the polynomial in lowest terms: for where a common factor of the
-/// elimination vanishes too.
-pub(super) fn of_polynomial(
-    polynomial: &Polynomial,
-    symbols: &[f64],
-    root: Complex<f64>,
-) -> Option<Vec<Sensitivity>> {
+/// A polynomial at `s` and these values with its relative derivatives, term by term.
+pub(super) fn gradient(polynomial: &Polynomial, symbols: &[f64], s: Complex<f64>) -> Gradient {
     let mut gradient =
         Gradient { value: Complex::zero(), by_s: Complex::zero(), by_symbol: Vec::new() };
     let variables = polynomial.variables().filter_map(symbol_of);
     gradient.by_symbol.extend(variables.map(|symbol| (symbol, Complex::zero())));
     for (powers, coefficient) in polynomial.terms() {
-        let mut term = Complex::new(coefficient.to_f64()?, 0.0);
+        let mut term = Complex::new(coefficient.to_f64().unwrap_or(f64::NAN), 0.0);
         for (variable, power) in powers.clone() {
             let base = match symbol_of(variable) {
                 Some(symbol) => Complex::new(symbols[symbol.0 as usize], 0.0),
-                None => root,
+                None => s,
             };
             term *= base.powu(power);
         }
@@ -88,7 +86,7 @@ pub(super) fn of_polynomial(
             }
         }
     }
-    implicit(&gradient)
+    gradient
 }
 
 fn implicit(gradient: &Gradient) -> Option<Vec<Sensitivity>> {
@@ -104,15 +102,12 @@ fn implicit(gradient: &Gradient) -> Option<Vec<Sensitivity>> {
 }
 
 /// The sensitivities of the function itself at `s`: x·∂H/∂x / H; none where H or 1/H is 0.
-pub(super) fn of_value(
-    elimination: &Elimination,
-    symbols: &[f64],
-    s: Complex<f64>,
-) -> Option<Vec<Sensitivity>> {
-    let [above, below] = elimination.gradients_at(s, symbols);
-    if above.value.is_zero() || below.value.is_zero() {
-        return None;
-    }
+pub(super) fn of_value(nominal: &Nominal<'_>, s: Complex<f64>) -> Option<Vec<Sensitivity>> {
+    let finite = |[above, below]: &[Gradient; 2]| !above.value.is_zero() && !below.value.is_zero();
+    let [above, below] = nominal
+        .gradients(s)
+        .filter(finite)
+        .or_else(|| nominal.expanded_gradients(s).filter(finite))?;
     let share = |gradient: &Gradient, symbol: SymbolId| {
         let found = gradient.by_symbol.iter().find(|(other, _)| *other == symbol);
         found.map_or_else(Complex::zero, |(_, share)| share / gradient.value)
@@ -128,12 +123,8 @@ pub(super) fn of_value(
 }
 
 /// s·H'/H at `s`.
-pub(super) fn logarithmic_slope(
-    elimination: &Elimination,
-    symbols: &[f64],
-    s: Complex<f64>,
-) -> Option<Complex<f64>> {
-    let [above, below] = elimination.gradients_at(s, symbols);
+pub(super) fn logarithmic_slope(nominal: &Nominal<'_>, s: Complex<f64>) -> Option<Complex<f64>> {
+    let [above, below] = nominal.gradients(s)?;
     let slope = above.by_s / above.value - below.by_s / below.value;
     slope.is_finite().then_some(slope)
 }

@@ -79,14 +79,13 @@ const DECADES: u32 = 6;
 /// # Cost
 /// Up to some two hundred evaluations of the coefficients and their roots.
 pub fn solve(
-    values: Nominal<'_>,
+    values: &Nominal<'_>,
     quantity: Quantity,
     symbol: SymbolId,
     target: &Number,
 ) -> Result<Solution, Unreachable> {
     let solver = Solver { values, quantity, symbol };
-    let nominal =
-        values.assignment.numbers.get(symbol.0 as usize).ok_or(Unreachable::NoSuchSymbol)?;
+    let nominal = values.number(symbol).ok_or(Unreachable::NoSuchSymbol)?;
     let start = nominal.to_f64().filter(|x| *x > 0.0).ok_or(Unreachable::NoSuchSymbol)?;
     let (above, below) = values.with(&[]).ok_or(Unreachable::NoSuchQuantity)?;
     let first = solver.start(&above, &below).ok_or(Unreachable::NoSuchQuantity)?;
@@ -124,7 +123,7 @@ struct State {
 }
 
 struct Solver<'a> {
-    values: Nominal<'a>,
+    values: &'a Nominal<'a>,
     quantity: Quantity,
     symbol: SymbolId,
 }

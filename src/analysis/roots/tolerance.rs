@@ -1,7 +1,7 @@
 //! What the tolerances do to a root: the shift to expect, and the worst one.
 
 use super::sensitivity::Sensitivity;
-use crate::analysis::judged::to_f64;
+use super::values::to_f64;
 use crate::circuit::{Circuit, SymbolId};
 
 /// Relative shifts, to first order in the tolerances.

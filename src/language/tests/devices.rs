@@ -110,6 +110,19 @@ fn a_bias_gives_numbers_and_shot_noise() {
 }
 
 #[test]
+fn slopes_are_noiseless_and_bodies_are_not() {
+    let circuit = circuit(
+        "block x(a)\na > R1 > ground\nend\nuse x S: a b\n\
+         bjt Q1: base b, collector c, emitter e, gm, rb, rpi, ro, rmu\n\
+         opamp U1: plus b, minus c, output d, gain = A0, rin, rout\n\
+         triode V1: grid b, plate c, cathode e, mu, rp\ndiode D1: anode b, cathode c, rd\nc > R2 > e",
+    );
+    let names: Vec<&str> = circuit.noiseless.iter().map(|id| circuit[*id].name.as_str()).collect();
+    let expected = ["Q1.rpi", "Q1.ro", "Q1.rmu", "U1.rin", "U1.rout", "V1.rp", "D1.rd"];
+    assert_eq!(names, expected);
+}
+
+#[test]
 fn a_bias_makes_what_its_numbers_allow() {
     builds("bjt Q1: base b, collector c, emitter e, at 1 mA", &["Q1.gm: c e i = Q1.gm*V(b, e)"]);
     builds(

@@ -2,17 +2,18 @@
 
 use num_traits::Zero;
 
-use super::{Answer, lettering};
-use crate::algebra::{Polynomial, Var};
-use crate::analysis::{ClosedForm, Derivation, Notice};
-use crate::circuit::{Circuit, Transfer};
+use super::{Answer, lettering_of, names, written};
+use crate::algebra::{Fraction, Polynomial, Var};
+use crate::analysis::{ClosedForm, Entry, Noise, Notice};
+use crate::circuit::{Circuit, SymbolRole, Unit};
 use crate::numeric::Origin;
 use crate::typeset::json::{
-    Answer as JsonAnswer, Coefficient, Crosscheck, Definition, DeriveResult, Numeric, Ratio,
-    SourceRatio, Symbol, TermCounts, Values, Warning,
+    Answer as JsonAnswer, BandNoise, Check, Coefficient, Constant, Contributor, Crosscheck,
+    Definition, DeriveResult, Noise as JsonNoise, Numeric, Ratio, SourceRatio, Symbol, TermCounts,
+    TotalNoise, Values, Warning,
 };
 use crate::typeset::latex::Latex;
-use crate::typeset::shape::{Layered, Shape, signed};
+use crate::typeset::shape::{Layered, Shape, compact, signed};
 use crate::typeset::{Dialect, Letter, Style, SymbolTable, number, plain};
 
 /// The symbols of a circuit.
@@ -42,41 +43,35 @@ pub fn warning(notice: &Notice) -> Warning {
     }
 }
 
-/// One result.
-pub fn result(answer: &Answer<'_>) -> DeriveResult {
-    let names = answer.names();
-    let mut ratios = answer.parts().map(|(transfer, derivation)| {
-        (answer.source(transfer), ratio(answer, transfer, derivation, &names))
-    });
-    let body = if answer.ask.is_superposition() {
-        JsonAnswer::Superposition {
-            by_source: ratios
-                .map(|(source, ratio)| SourceRatio {
-                    source: source.unwrap_or_default().to_owned(),
-                    ratio,
-                })
-                .collect(),
-        }
-    } else {
-        match ratios.next() {
-            Some((_, ratio)) => JsonAnswer::Single(Box::new(ratio)),
-            None => JsonAnswer::Superposition { by_source: Vec::new() },
-        }
+/// The results of a question: one with all sources for a superposition, else one for each entry.
+pub fn results(answer: &Answer<'_>) -> Vec<DeriveResult> {
+    if answer.ask.is_superposition() {
+        let by_source = answer
+            .entries
+            .iter()
+            .map(|entry| SourceRatio {
+                source: entry.source.clone().unwrap_or_default(),
+                ratio: ratio(answer, entry),
+            })
+            .collect();
+        let (name, query) = (answer.ask.name.clone(), answer.ask.text.clone());
+        return vec![DeriveResult { name, query, answer: JsonAnswer::Superposition { by_source } }];
+    }
+    let single = |entry: &Entry| DeriveResult {
+        name: entry.name.clone(),
+        query: entry.query.clone(),
+        answer: JsonAnswer::Single(Box::new(ratio(answer, entry))),
     };
-    DeriveResult { name: answer.ask.name.clone(), query: answer.ask.text.clone(), answer: body }
+    answer.entries.iter().map(single).collect()
 }
 
-fn ratio(
-    answer: &Answer<'_>,
-    transfer: &Transfer,
-    derivation: &Derivation,
-    names: &SymbolTable,
-) -> Ratio {
-    let letters = lettering(answer.circuit);
-    let Layered { definitions, formula } = answer.written(derivation);
+fn ratio(answer: &Answer<'_>, entry: &Entry) -> Ratio {
+    let names = &names(entry);
+    let letters = lettering_of(&entry.symbols);
+    let Layered { definitions, formula } = written(entry, answer.shape);
     let compact = match answer.shape {
         Shape::Compact => formula.clone(),
-        _ => Answer { shape: Shape::Compact, ..*answer }.written(derivation).formula,
+        _ => written(entry, Shape::Compact).formula,
     };
     let coefficients = |polynomial: &Polynomial| -> Vec<Coefficient> {
         polynomial
@@ -91,7 +86,7 @@ fn ratio(
             })
             .collect()
     };
-    let (numerator, denominator, term_counts) = match &derivation.form {
+    let (numerator, denominator, term_counts) = match &entry.form {
         ClosedForm::Expanded(fraction) => {
             let (n, d) = signed(fraction);
             (Some(coefficients(&n)), Some(coefficients(&d)), None)
@@ -101,15 +96,15 @@ fn ratio(
                 counts.iter().map(ToString::to_string).collect::<Vec<_>>()
             };
             let counts = TermCounts {
-                numerator: text(&derivation.counts.numerator),
-                denominator: text(&derivation.counts.denominator),
+                numerator: text(&entry.counts.numerator),
+                denominator: text(&entry.counts.denominator),
             };
             (None, None, Some(counts))
         }
     };
-    let floating = &derivation.evidence.floating;
+    let floating = &entry.evidence.floating;
     Ratio {
-        unit: transfer.unit.to_string(),
+        unit: entry.unit.to_string(),
         expression: plain::text(&formula, names, Dialect::Expression),
         compact: plain::text(&compact, names, Dialect::Language),
         definitions: definitions
@@ -124,7 +119,7 @@ fn ratio(
         denominator,
         term_counts,
         latex: Latex { names, width: LATEX_WIDTH }.text(&formula),
-        numeric: derivation.numeric.as_ref().map(|numeric| Numeric {
+        numeric: entry.numeric.as_ref().map(|numeric| Numeric {
             numerator: numbers(&numeric.numerator),
             denominator: numbers(&numeric.denominator),
         }),
@@ -132,14 +127,64 @@ fn ratio(
             points: floating.points,
             from_hz: floating.from_hz,
             to_hz: floating.to_hz,
-            values: match derivation.evidence.origin {
+            values: match entry.evidence.origin {
                 Origin::Nominal => Values::Nominal,
                 Origin::Random => Values::Random,
             },
             worst_relative_error: floating.worst_relative_error,
-            passed: derivation.evidence.passed(),
+            passed: entry.passed(),
         },
+        limits: entry.limits.clone(),
+        checks: entry
+            .checks
+            .iter()
+            .map(|check| Check { statement: check.statement.clone(), passed: check.passed })
+            .collect(),
+        noise: entry.noise.as_ref().map(|noise| noise_of(entry, noise, names)),
     }
+}
+
+fn noise_of(entry: &Entry, noise: &Noise, names: &SymbolTable) -> JsonNoise {
+    let letters = lettering_of(&entry.symbols);
+    let text = |fraction: &Fraction| {
+        let formula = compact(fraction, letters);
+        plain::text(&formula, names, Dialect::Expression)
+    };
+    JsonNoise {
+        contributors: noise
+            .contributors
+            .iter()
+            .map(|share| Contributor {
+                element: share.element.clone(),
+                expression: text(&share.density),
+            })
+            .collect(),
+        total: noise.total.as_ref().map(|total| TotalNoise {
+            expression: text(&total.square),
+            unit: Unit::VOLT.power(2).to_string(),
+            rms: total.rms,
+        }),
+        in_band: noise.band.map(|band| BandNoise {
+            from_hz: band.from_hz,
+            to_hz: band.to_hz,
+            rms: band.rms,
+            relative_error: band.relative_error,
+        }),
+        constants: constants(entry, names),
+    }
+}
+
+/// The symbols behind the circuit's own, π left out: it is a number.
+fn constants(entry: &Entry, names: &SymbolTable) -> Vec<Constant> {
+    let numbered = entry.symbols.iter().zip(0_u32..).skip(entry.own_symbols);
+    numbered
+        .filter(|(symbol, _)| symbol.role != SymbolRole::Pi)
+        .map(|(symbol, index)| Constant {
+            name: names.letter(Letter::Symbol(index), Style::Identifier).into_owned(),
+            value: symbol.nominal.as_ref().map(number::shortest).unwrap_or_default(),
+            unit: symbol.unit.to_string(),
+        })
+        .collect()
 }
 
 /// The widest sum in a row of LaTeX, in symbols.

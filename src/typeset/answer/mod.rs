@@ -8,66 +8,55 @@ pub mod roots;
 mod text;
 
 pub use evidence::evidence;
-pub use json::{result, symbols, warning};
+pub use json::{results, symbols, warning};
 pub use latex::latex;
 pub use text::{TextStyle, text};
 
 use super::shape::{Layered, Lettering, Shape, write};
 use super::{Formula, SymbolTable};
 use crate::algebra::Var;
-use crate::analysis::{ClosedForm, Derivation};
-use crate::circuit::{Ask, Circuit, Drive, SymbolRole, Transfer};
+use crate::analysis::{ClosedForm, Entry};
+use crate::circuit::{Ask, Circuit, Symbol, SymbolRole};
 use crate::elimination::variable_of;
 
-/// One question with the answers to its transfer functions.
+/// One question with its results.
 #[derive(Debug)]
 pub struct Answer<'a> {
     /// The circuit.
     pub circuit: &'a Circuit,
     /// The question.
     pub ask: &'a Ask,
-    /// One for each of the question's transfer functions, in their order.
-    pub derivations: &'a [Derivation],
+    /// The named results, in their order.
+    pub entries: &'a [Entry],
     /// The shape that was asked for.
     pub shape: Shape,
 }
 
-impl<'a> Answer<'a> {
-    /// The names of the circuit's symbols.
-    pub fn names(&self) -> SymbolTable {
-        SymbolTable::new(self.circuit.symbols.iter().map(|symbol| symbol.name.as_str()))
-    }
+/// The names of the symbols in a result.
+fn names(entry: &Entry) -> SymbolTable {
+    let names = SymbolTable::new(entry.symbols.iter().map(|symbol| symbol.name.as_str()));
+    if entry.noise.is_some() { names.of_frequency() } else { names }
+}
 
-    /// Transfer functions and their derivations.
-    fn parts(&self) -> impl Iterator<Item = (&'a Transfer, &'a Derivation)> {
-        self.ask.transfers().iter().zip(self.derivations)
-    }
-
-    /// The name of the source that drives a transfer function.
-    fn source(&self, transfer: &Transfer) -> Option<&'a str> {
-        match transfer.drive {
-            Drive::Source(id) => Some(&self.circuit[id].name),
-            Drive::Port(..) => None,
-        }
-    }
-
-    fn written(&self, derivation: &Derivation) -> Layered {
-        let letters = lettering(self.circuit);
-        let written = |shape| write(&derivation.form, &derivation.elimination, shape, letters);
-        // A shape that needs an expansion is refused before this, with the number of its terms.
-        written(self.shape)
-            .or_else(|| written(Shape::Compact))
-            .unwrap_or_else(|| Layered { definitions: Vec::new(), formula: Formula::integer(0) })
-    }
+/// A result's formula in a shape.
+fn written(entry: &Entry, shape: Shape) -> Layered {
+    let letters = lettering_of(&entry.symbols);
+    let written = |shape| write(&entry.form, entry.elimination.as_ref(), shape, letters);
+    // A shape that needs an expansion is refused before this, with the number of its terms.
+    written(shape)
+        .or_else(|| written(Shape::Compact))
+        .unwrap_or_else(|| Layered { definitions: Vec::new(), formula: Formula::integer(0) })
 }
 
 /// Which letters the circuit's variables are.
 pub fn lettering(circuit: &Circuit) -> Lettering<'_> {
-    let pi = circuit.symbols.iter().zip(0_u32..).find(|(symbol, _)| symbol.role == SymbolRole::Pi);
-    Lettering {
-        pi: pi.map(|(_, index)| variable_of(crate::circuit::SymbolId(index))),
-        symbols: &circuit.symbols,
-    }
+    lettering_of(&circuit.symbols)
+}
+
+/// Which letters the variables of these symbols are.
+pub fn lettering_of(symbols: &[Symbol]) -> Lettering<'_> {
+    let pi = symbols.iter().zip(0_u32..).find(|(symbol, _)| symbol.role == SymbolRole::Pi);
+    Lettering { pi: pi.map(|(_, index)| variable_of(crate::circuit::SymbolId(index))), symbols }
 }
 
 /// What a function does at one end of the frequency axis: factor · s^power.

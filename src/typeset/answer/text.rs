@@ -5,11 +5,13 @@ use std::fmt::Write;
 use num_rational::BigRational;
 use num_traits::{One, Zero};
 
-use super::{Answer, Asymptote, asymptotes, evidence, lettering};
-use crate::analysis::{ClosedForm, Derivation, NumericForm, total};
-use crate::circuit::{Transfer, Unit};
+use super::{Answer, Asymptote, asymptotes, evidence, lettering_of, names, written};
+use crate::algebra::Fraction;
+use crate::analysis::{ClosedForm, Entry, Noise, NumericForm, total};
+use crate::circuit::Unit;
 use crate::typeset::number::{self, Medium};
 use crate::typeset::screen::{Characters, Screen};
+use crate::typeset::shape::{Shape, compact};
 use crate::typeset::{Dialect, Formula, Letter, Style, SymbolTable, plain};
 
 /// How text is set.
@@ -32,19 +34,19 @@ const LONGEST_COUNT: usize = 60;
 
 /// One answer: formulas, numbers, evidence.
 pub fn text(answer: &Answer<'_>, style: TextStyle) -> String {
-    let names = answer.names();
     let mut out = String::new();
-    for (transfer, derivation) in answer.parts() {
-        let name = label(answer, transfer);
+    for entry in answer.entries {
+        let names = names(entry);
+        let name = label(entry);
         if !out.is_empty() {
             out.push('\n');
         }
         if !style.quiet {
-            let _ = writeln!(out, "{}", heading(answer, transfer, &name, style));
+            let _ = writeln!(out, "{}", heading(entry, &name, style));
         }
-        formula(&mut out, answer, derivation, &name, &names, style);
+        formula(&mut out, entry, answer.shape, &name, &names, style);
         if !style.quiet {
-            facts(&mut out, answer, transfer, derivation, &names, style);
+            facts(&mut out, entry, &names, style);
         }
     }
     if answer.ask.is_superposition() && !style.quiet {
@@ -54,24 +56,29 @@ pub fn text(answer: &Answer<'_>, style: TextStyle) -> String {
 }
 
 /// `H`, or `H[Vin]` for a source's share in a superposition.
-fn label(answer: &Answer<'_>, transfer: &Transfer) -> String {
-    match answer.source(transfer) {
-        Some(source) if answer.ask.is_superposition() => format!("{}[{source}]", answer.ask.name),
-        _ => answer.ask.name.clone(),
+fn label(entry: &Entry) -> String {
+    match &entry.source {
+        Some(source) => format!("{}[{source}]", entry.name),
+        None => entry.name.clone(),
     }
 }
 
-fn heading(answer: &Answer<'_>, transfer: &Transfer, name: &str, style: TextStyle) -> String {
-    let unit = if transfer.unit == Unit::ONE {
+fn heading(entry: &Entry, name: &str, style: TextStyle) -> String {
+    let unit = if entry.unit == Unit::ONE {
         String::new()
     } else {
-        format!("   in {}", unit_text(transfer.unit, style))
+        format!("   in {}", unit_text(entry.unit, style))
     };
-    let query = match answer.source(transfer) {
-        Some(source) if answer.ask.is_superposition() => format!("{} / {source}", answer.ask.text),
-        _ => answer.ask.text.clone(),
+    let query = match &entry.source {
+        Some(source) => format!("{} / {source}", entry.query),
+        None => entry.query.clone(),
     };
-    format!("{name}: {query}{unit}\n")
+    let limits = if entry.limits.is_empty() {
+        String::new()
+    } else {
+        format!(", limit {}", entry.limits.join(", "))
+    };
+    format!("{name}: {query}{limits}{unit}\n")
 }
 
 fn unit_text(unit: Unit, style: TextStyle) -> String {
@@ -85,13 +92,13 @@ fn unit_text(unit: Unit, style: TextStyle) -> String {
 
 fn formula(
     out: &mut String,
-    answer: &Answer<'_>,
-    derivation: &Derivation,
+    entry: &Entry,
+    shape: Shape,
     name: &str,
     names: &SymbolTable,
     style: TextStyle,
 ) {
-    let written = answer.written(derivation);
+    let written = written(entry, shape);
     let _ = writeln!(out, "{}", style.screen.equation(name, &written.formula, names));
     if written.definitions.is_empty() {
         return;
@@ -105,29 +112,27 @@ fn formula(
 }
 
 /// Everything below the formula.
-fn facts(
-    out: &mut String,
-    answer: &Answer<'_>,
-    transfer: &Transfer,
-    derivation: &Derivation,
-    names: &SymbolTable,
-    style: TextStyle,
-) {
+fn facts(out: &mut String, entry: &Entry, names: &SymbolTable, style: TextStyle) {
     out.push('\n');
     let mut fact = |title: &str, text: String| {
         let _ = writeln!(out, "  {title:<18}{text}");
     };
-    if let Some(numeric) = &derivation.numeric {
-        fact("with numbers", numbers(numeric, style));
+    if let Some(noise) = &entry.noise {
+        contributions(noise, entry, names, style, &mut fact);
+    } else {
+        if let Some(numeric) = &entry.numeric {
+            fact("with numbers", numbers(numeric, style));
+        }
+        let letters = lettering_of(&entry.symbols);
+        if let Some([low, high]) = asymptotes(&entry.form, letters).filter(|_| depends_on_s(entry))
+        {
+            fact("towards dc", asymptote(&low, entry, names, style, false));
+            fact("towards infinity", asymptote(&high, entry, names, style, true));
+        }
     }
-    let letters = lettering(answer.circuit);
-    if let Some([low, high]) = asymptotes(&derivation.form, letters) {
-        fact("towards dc", asymptote(&low, transfer.unit, names, style, derivation, false));
-        fact("towards infinity", asymptote(&high, transfer.unit, names, style, derivation, true));
-    }
-    if let ClosedForm::Nested(_) = derivation.form {
-        let count = total(&derivation.counts).to_string();
-        let about = if derivation.counts.exact { "" } else { "at most " };
+    if let ClosedForm::Nested(_) = entry.form {
+        let count = total(&entry.counts).to_string();
+        let about = if entry.counts.exact { "" } else { "at most " };
         // Hundreds of digits help nobody; JSON has them all.
         let count = if count.len() <= LONGEST_COUNT {
             count
@@ -136,15 +141,62 @@ fn facts(
         };
         fact("expanded", format!("{about}{count} terms"));
     }
-    fact("checked", evidence(&derivation.evidence));
+    fact("checked", evidence(&entry.evidence));
+    for check in &entry.checks {
+        fact("", check.statement.clone());
+    }
+}
+
+/// Whether there is anything to say about the ends of the frequency axis.
+fn depends_on_s(entry: &Entry) -> bool {
+    entry.counts.numerator.len().max(entry.counts.denominator.len()) > 1
+}
+
+/// The shares of a noise density, and what it adds up to.
+fn contributions(
+    noise: &Noise,
+    entry: &Entry,
+    names: &SymbolTable,
+    style: TextStyle,
+    fact: &mut dyn FnMut(&str, String),
+) {
+    let letters = lettering_of(&entry.symbols);
+    let line = |fraction: &Fraction| style.screen.one_line(&compact(fraction, letters), names);
+    let medium = medium(style);
+    let volts = |rms: f64| match BigRational::from_float(rms) {
+        Some(exact) => number::quantity(&exact, "V", 4, medium),
+        None => rms.to_string(),
+    };
+    for share in &noise.contributors {
+        fact(&format!("from {}", share.element), line(&share.density));
+    }
+    if let Some(total) = &noise.total {
+        let rms = total.rms.map_or(String::new(), |rms| format!(", rms {}", volts(rms)));
+        fact("mean square", format!("{}{rms}", line(&total.square)));
+    }
+    if let Some(band) = &noise.band {
+        let hertz = |value: f64| match BigRational::from_float(value) {
+            Some(exact) => number::quantity(&exact, "Hz", 3, medium),
+            None => value.to_string(),
+        };
+        fact(
+            "in the band",
+            format!(
+                "rms {} from {} to {}, relative error below {:.0e}",
+                volts(band.rms),
+                hertz(band.from_hz),
+                hertz(band.to_hz),
+                band.relative_error.max(1e-15)
+            ),
+        );
+    }
 }
 
 fn asymptote(
     asymptote: &Asymptote,
-    unit: Unit,
+    entry: &Entry,
     names: &SymbolTable,
     style: TextStyle,
-    derivation: &Derivation,
     high: bool,
 ) -> String {
     let whole = Formula::product([
@@ -152,7 +204,7 @@ fn asymptote(
         Formula::power(Formula::s(), asymptote.power.clamp(-1000, 1000) as i32),
     ]);
     let text = style.screen.one_line(&whole, names);
-    match derivation.numeric.as_ref().filter(|_| asymptote.power == 0) {
+    match entry.numeric.as_ref().filter(|_| asymptote.power == 0) {
         Some(numeric) => {
             let ends = |of: &[BigRational]| {
                 if high { of.last().cloned() } else { of.first().cloned() }
@@ -160,7 +212,8 @@ fn asymptote(
             match (ends(&numeric.numerator), ends(&numeric.denominator)) {
                 (Some(n), Some(d)) if !d.is_zero() => {
                     let medium = medium(style);
-                    let value = number::quantity(&(n / d), &plain_unit(unit, style), 4, medium);
+                    let value =
+                        number::quantity(&(n / d), &plain_unit(entry.unit, style), 4, medium);
                     if value == text { text } else { format!("{text} = {value}") }
                 }
                 _ => text,
@@ -239,10 +292,9 @@ fn superscript(power: usize) -> String {
 /// `V(out) = Vout[V1]·V1 + Vout[I2]·I2`
 fn superposition(answer: &Answer<'_>) -> String {
     let shares: Vec<String> = answer
-        .ask
-        .transfers()
+        .entries
         .iter()
-        .filter_map(|transfer| answer.source(transfer))
+        .filter_map(|entry| entry.source.as_ref())
         .map(|source| format!("{}[{source}]*{source}", answer.ask.name))
         .collect();
     format!("{} = {}", answer.ask.text, shares.join(" + "))

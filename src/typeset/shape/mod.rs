@@ -130,10 +130,11 @@ pub enum Shape {
 }
 
 /// The closed form of a derivation in a shape; `None` when the shape needs an expansion and the
-/// form is too long for one.
+/// form is too long for one. An answer that was put together from others has no diagram: it is nested
+/// as it is.
 pub fn write(
     form: &ClosedForm,
-    elimination: &Elimination,
+    elimination: Option<&Elimination>,
     shape: Shape,
     letters: Lettering<'_>,
 ) -> Option<Layered> {
@@ -144,7 +145,10 @@ pub fn write(
         (ClosedForm::Expanded(fraction), Shape::Product) => plain(product(fraction, letters)),
         (ClosedForm::Expanded(fraction), Shape::ByElement) => plain(by_element(fraction, letters)),
         (ClosedForm::Expanded(fraction), Shape::Compact) => plain(compact(fraction, letters)),
-        (ClosedForm::Expanded(_), Shape::Nested) => Some(nested(&elimination.nested(), letters)),
+        (ClosedForm::Expanded(fraction), Shape::Nested) => match elimination {
+            Some(elimination) => Some(nested(&elimination.nested(), letters)),
+            None => plain(compact(fraction, letters)),
+        },
         (ClosedForm::Nested(sums), Shape::Nested | Shape::Compact) => Some(nested(sums, letters)),
         (ClosedForm::Nested(_), _) => None,
     }

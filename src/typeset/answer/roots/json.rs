@@ -203,26 +203,26 @@ struct Tolerances {
     worst: f64,
 }
 
-/// One result.
-pub fn result(answer: &Answer<'_>) -> RootsResult {
+/// The results of one question.
+pub fn results(answer: &Answer<'_>) -> Vec<RootsResult> {
     let names = answer.names();
     let writer =
         Writer { circuit: answer.circuit, names: &names, letters: lettering(answer.circuit) };
-    let mut functions =
-        answer.parts().map(|(transfer, report)| (answer.source(transfer), writer.function(report)));
-    let body = if answer.ask.is_superposition() {
-        let share = |(source, function): (Option<&str>, Function)| Share {
-            source: source.unwrap_or_default().to_owned(),
-            function,
+    if answer.ask.is_superposition() {
+        let share = |report: &Report<'_>| Share {
+            source: report.entry.source.clone().unwrap_or_default(),
+            function: writer.function(report),
         };
-        Body::Superposition { by_source: functions.map(share).collect() }
-    } else {
-        match functions.next() {
-            Some((_, function)) => Body::Single(Box::new(function)),
-            None => Body::Superposition { by_source: Vec::new() },
-        }
+        let by_source = answer.reports.iter().map(share).collect();
+        let (name, query) = (answer.ask.name.clone(), answer.ask.text.clone());
+        return vec![RootsResult { name, query, body: Body::Superposition { by_source } }];
+    }
+    let single = |report: &Report<'_>| RootsResult {
+        name: report.entry.name.clone(),
+        query: report.entry.query.clone(),
+        body: Body::Single(Box::new(writer.function(report))),
     };
-    RootsResult { name: answer.ask.name.clone(), query: answer.ask.text.clone(), body }
+    answer.reports.iter().map(single).collect()
 }
 
 struct Writer<'a> {
@@ -249,7 +249,7 @@ impl Writer<'_> {
         Some(all?.iter().map(pair).collect())
     }
 
-    fn function(&self, report: &Report) -> Function {
+    fn function(&self, report: &Report<'_>) -> Function {
         let roots = &report.roots;
         let all = |list: &[RootFacts]| list.iter().map(|facts| self.root(facts)).collect();
         Function {

@@ -16,8 +16,8 @@ use crate::typeset::{Formula, Letter, Style, SymbolTable};
 pub fn latex(answer: &Answer<'_>) -> String {
     let names = answer.names();
     let mut out = String::new();
-    for (transfer, report) in answer.parts() {
-        let name = SymbolTable::new([label(answer, transfer).as_str()])
+    for report in answer.reports {
+        let name = SymbolTable::new([label(report.entry).as_str()])
             .letter(Letter::Symbol(0), Style::Latex)
             .into_owned();
         let writer = Writer { answer, names: &names };

@@ -7,9 +7,9 @@
 
 use num_complex::Complex;
 
-use super::Answer;
+use crate::analysis::Entry;
 use crate::analysis::roots::{Locus, RootFacts, RootReport};
-use crate::circuit::Transfer;
+use crate::circuit::Circuit;
 use crate::typeset::number::superscript;
 use crate::typeset::svg::{Axis, Picture, label, ticks};
 
@@ -21,21 +21,16 @@ const SIDE: f64 = 450.0;
 /// Ratio of sizes up to which the scale is linear.
 const LINEAR: f64 = 50.0;
 
-/// The picture of one transfer function; with the paths of the poles where a locus is given.
-pub fn map(
-    answer: &Answer<'_>,
-    transfer: &Transfer,
-    report: &RootReport,
-    locus: Option<&Locus>,
-) -> String {
-    let name = super::label(answer, transfer);
+/// The picture of one result; with the paths of the poles where a locus is given.
+pub fn map(circuit: &Circuit, entry: &Entry, report: &RootReport, locus: Option<&Locus>) -> String {
+    let name = super::label(entry);
     let roots = || report.poles.iter().chain(&report.zeros).map(|facts| facts.root.value);
     let paths = || locus.into_iter().flat_map(|locus| locus.paths.iter().flatten().flatten());
     let sizes: Vec<f64> = roots().chain(paths().copied()).map(|root| root.norm()).collect();
     let plane = Plane::around(&sizes);
     let title = match locus {
         Some(locus) => {
-            format!("Root locus of {name} against {}", answer.circuit[locus.symbol].name)
+            format!("Root locus of {name} against {}", circuit[locus.symbol].name)
         }
         None => format!("Poles and zeros of {name}"),
     };

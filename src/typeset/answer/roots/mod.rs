@@ -7,29 +7,32 @@ mod table;
 mod text;
 mod words;
 
-pub use json::{ROOTS_SCHEMA, Roots, RootsResult, result};
+pub use json::{ROOTS_SCHEMA, Roots, RootsResult, results};
 pub use latex::latex;
 pub use map::map;
 pub use text::text;
 
+use crate::analysis::Entry;
 use crate::analysis::roots::{Chance, Quantity, RootReport, Solution};
-use crate::circuit::{Ask, Circuit, Drive, SymbolId, Transfer};
+use crate::circuit::{Ask, Circuit, SymbolId};
 use crate::typeset::SymbolTable;
 
-/// One question with the roots of its transfer functions.
+/// One question with the roots of its results.
 #[derive(Debug)]
 pub struct Answer<'a> {
     /// The circuit.
     pub circuit: &'a Circuit,
     /// The question.
     pub ask: &'a Ask,
-    /// One for each of the question's transfer functions, in their order.
-    pub reports: &'a [Report],
+    /// One for each of the question's results, in their order.
+    pub reports: &'a [Report<'a>],
 }
 
-/// The roots of one transfer function, and what was asked besides.
+/// The roots of one result, and what was asked besides.
 #[derive(Debug)]
-pub struct Report {
+pub struct Report<'a> {
+    /// The result.
+    pub entry: &'a Entry,
     /// Roots and what sets them.
     pub roots: RootReport,
     /// What chance does to them.
@@ -51,29 +54,17 @@ pub struct Moved {
     pub solution: Solution,
 }
 
-impl<'a> Answer<'a> {
+impl Answer<'_> {
     /// The names of the circuit's symbols.
     fn names(&self) -> SymbolTable {
         SymbolTable::new(self.circuit.symbols.iter().map(|symbol| symbol.name.as_str()))
     }
-
-    fn parts(&self) -> impl Iterator<Item = (&'a Transfer, &'a Report)> {
-        self.ask.transfers().iter().zip(self.reports)
-    }
-
-    /// The source whose share in a superposition this is.
-    fn source(&self, transfer: &Transfer) -> Option<&'a str> {
-        match transfer.drive {
-            Drive::Source(id) if self.ask.is_superposition() => Some(&self.circuit[id].name),
-            _ => None,
-        }
-    }
 }
 
 /// `H`, or `H[Vin]` for a source's share in a superposition.
-fn label(answer: &Answer<'_>, transfer: &Transfer) -> String {
-    match answer.source(transfer) {
-        Some(source) => format!("{}[{source}]", answer.ask.name),
-        None => answer.ask.name.clone(),
+fn label(entry: &Entry) -> String {
+    match &entry.source {
+        Some(source) => format!("{}[{source}]", entry.name),
+        None => entry.name.clone(),
     }
 }

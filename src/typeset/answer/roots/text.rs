@@ -11,7 +11,7 @@ use crate::algebra::Fraction;
 use crate::analysis::roots::{
     Approximation, Chance, Conditions, Form, RootFacts, Sensitivity, Shift, Spread,
 };
-use crate::circuit::{SymbolId, Transfer, Unit};
+use crate::circuit::{SymbolId, Unit};
 use crate::typeset::answer::{TextStyle, lettering};
 use crate::typeset::number::{self, Medium};
 use crate::typeset::screen::Characters;
@@ -20,17 +20,22 @@ use crate::typeset::{Formula, SymbolTable, View};
 /// One answer.
 pub fn text(answer: &Answer<'_>, style: TextStyle) -> String {
     let mut out = String::new();
-    for (transfer, report) in answer.parts() {
+    for report in answer.reports {
         if !out.is_empty() {
             out.push('\n');
         }
-        let query = match answer.source(transfer) {
-            Some(source) => format!("{} / {source}", answer.ask.text),
-            None => answer.ask.text.clone(),
+        let entry = report.entry;
+        let query = match &entry.source {
+            Some(source) => format!("{} / {source}", entry.query),
+            None => entry.query.clone(),
         };
-        let _ = writeln!(out, "{}: {query}\n", label(answer, transfer));
+        let limits = match entry.limits.as_slice() {
+            [] => String::new(),
+            limits => format!(", limit {}", limits.join(", ")),
+        };
+        let _ = writeln!(out, "{}: {query}{limits}\n", label(entry));
         let names = answer.names();
-        let writer = Writer { answer, transfer, report, names: &names, style };
+        let writer = Writer { answer, report, names: &names, style };
         out.push_str(&writer.roots("poles", 'p', &report.roots.poles));
         out.push_str(&writer.roots("zeros", 'z', &report.roots.zeros));
         if !style.quiet {
@@ -52,8 +57,7 @@ pub fn text(answer: &Answer<'_>, style: TextStyle) -> String {
 
 struct Writer<'a> {
     answer: &'a Answer<'a>,
-    transfer: &'a Transfer,
-    report: &'a Report,
+    report: &'a Report<'a>,
     names: &'a SymbolTable,
     style: TextStyle,
 }
@@ -227,7 +231,7 @@ impl Writer<'_> {
     }
 
     fn unit(&self) -> String {
-        let unit = self.transfer.unit;
+        let unit = self.report.entry.unit;
         if unit == Unit::ONE { String::new() } else { unit.to_string() }
     }
 
