@@ -146,6 +146,14 @@ impl Writer<'_> {
 type Print<'a> = dyn Fn(&crate::algebra::Polynomial) -> String + 'a;
 
 fn root(value: &Fraction, print: &Print<'_>) -> String {
+    let roots = (words::exact_root(value.numerator()), words::exact_root(value.denominator()));
+    if let (Some(above), Some(below)) = &roots {
+        return if below.is_one() {
+            print(above)
+        } else {
+            format!("\\frac{{{}}}{{{}}}", print(above), print(below))
+        };
+    }
     let (above, below) = (print(value.numerator()), print(value.denominator()));
     match (value.numerator().is_one(), value.denominator().is_one()) {
         (_, true) => format!("\\sqrt{{{above}}}"),

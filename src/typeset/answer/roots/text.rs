@@ -366,28 +366,46 @@ impl Writer<'_> {
         out
     }
 
-    /// 1/√(…) or √(…).
+    /// √(…), 1/√(…), or without a root sign where the root is a term.
     fn root_of(&self, value: &Fraction) -> String {
         let letters = lettering(self.answer.circuit);
-        if value.numerator().is_one() {
-            let below = letters.polynomial(value.denominator());
-            format!("1/{}", self.square_root(&below))
-        } else {
-            self.square_root(&words::fraction(value, letters))
+        let (above, below) = (value.numerator(), value.denominator());
+        if above.is_one() {
+            return match words::exact_root(below) {
+                Some(root) => format!("1/{}", self.grouped(&letters.polynomial(&root), true)),
+                None => format!("1/{}", self.square_root(&letters.polynomial(below))),
+            };
+        }
+        match (words::exact_root(above), words::exact_root(below)) {
+            (Some(n), Some(d)) => {
+                let quotient = Formula::quotient(letters.polynomial(&n), letters.polynomial(&d));
+                self.line(&quotient)
+            }
+            _ => self.square_root(&words::fraction(value, letters)),
         }
     }
 
     /// √c/b.
     fn quality(&self, b: &Fraction, c: &Fraction) -> String {
         let letters = lettering(self.answer.circuit);
-        let mut out = self.square_root(&words::fraction(c, letters));
+        let mut out = self.root_of(c);
+        if out == "1" {
+            out.clear();
+        }
         if !b.denominator().is_one() {
             let factor = letters.polynomial(b.denominator());
-            let dot = if self.is_ascii() { "*" } else { "·" };
-            let _ = write!(out, "{dot}{}", self.grouped(&factor, false));
+            if !out.is_empty() {
+                out.push_str(if self.is_ascii() { "*" } else { "·" });
+            }
+            out.push_str(&self.grouped(&factor, false));
         }
-        let below = letters.polynomial(b.numerator());
-        let _ = write!(out, "/{}", self.grouped(&below, true));
+        if out.is_empty() {
+            out.push('1');
+        }
+        if !b.numerator().is_one() {
+            let below = letters.polynomial(b.numerator());
+            let _ = write!(out, "/{}", self.grouped(&below, true));
+        }
         out
     }
 

@@ -1,9 +1,11 @@
 //! Formulas and sentences about roots that text, LaTeX and JSON share.
 
+use num_bigint::{BigInt, Sign};
+
 use crate::algebra::{Fraction, Polynomial};
 use crate::analysis::roots::{Approximation, Condition, Conditions, Form, Quantity, Verdict};
 use crate::typeset::Formula;
-use crate::typeset::shape::{Lettering, ratio, signed};
+use crate::typeset::shape::{Lettering, signed};
 
 /// A fraction in lowest terms as a formula.
 pub(super) fn fraction(value: &Fraction, letters: Lettering<'_>) -> Formula {
@@ -11,7 +13,7 @@ pub(super) fn fraction(value: &Fraction, letters: Lettering<'_>) -> Formula {
         return Formula::integer(0);
     }
     let (above, below) = signed(value);
-    ratio(&above, &below, letters)
+    Formula::quotient(letters.polynomial(&above), letters.polynomial(&below))
 }
 
 /// 1 + s·b + s²·c: the quadratic that has a pair as roots.
@@ -32,6 +34,23 @@ pub(super) fn expression(approximation: &Approximation, letters: Lettering<'_>) 
     }
 }
 
+/// The root of a single term whose powers are all even and whose number is a square.
+pub(super) fn exact_root(polynomial: &Polynomial) -> Option<Polynomial> {
+    let mut terms = polynomial.terms();
+    let ((powers, coefficient), None) = (terms.next()?, terms.next()) else { return None };
+    let number = square_root(&coefficient)?;
+    let halves = powers.map(|(variable, power)| (power % 2 == 0).then_some((variable, power / 2)));
+    Some(Polynomial::monomial(halves.collect::<Option<Vec<_>>>()?, number))
+}
+
+fn square_root(number: &BigInt) -> Option<BigInt> {
+    if number.sign() == Sign::Minus {
+        return None;
+    }
+    let root = number.sqrt();
+    (&root * &root == *number).then_some(root)
+}
+
 /// The two sides of `large ≫ small`.
 pub(super) fn sides(condition: &Condition, letters: Lettering<'_>) -> [Formula; 2] {
     [letters.polynomial(&condition.large), letters.polynomial(&condition.small)]
@@ -42,7 +61,7 @@ pub(super) fn inequality(polynomial: &Polynomial, letters: Lettering<'_>) -> [Fo
     let side = |positive: bool| {
         let terms = polynomial
             .terms()
-            .filter(|(_, coefficient)| (coefficient.sign() == num_bigint::Sign::Plus) == positive)
+            .filter(|(_, coefficient)| (coefficient.sign() == Sign::Plus) == positive)
             .map(|(powers, coefficient)| {
                 let size = if positive { coefficient } else { -coefficient };
                 (powers.collect::<Vec<_>>(), size)
