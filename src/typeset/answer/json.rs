@@ -73,7 +73,7 @@ fn ratio(
     names: &SymbolTable,
 ) -> Ratio {
     let letters = lettering(answer.circuit);
-    let Layered { definitions, formula } = answer.written(derivation);
+    let Layered { definitions, formula, .. } = answer.written(derivation);
     let compact = match answer.shape {
         Shape::Compact => formula.clone(),
         _ => Answer { shape: Shape::Compact, ..*answer }.written(derivation).formula,

@@ -23,6 +23,9 @@ pub fn latex(answer: &Answer<'_>) -> String {
             let _ = writeln!(out, "\\[\n{}\n\\]", writer.equation(&symbol, definition));
         }
         let _ = writeln!(out, "\\[\n{}\n\\]", writer.equation(&left, &written.formula));
+        for line in super::sections::latex(&written.sections, &writer) {
+            let _ = writeln!(out, "\\[\n{line}\n\\]");
+        }
     }
     out
 }

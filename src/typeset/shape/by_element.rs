@@ -51,14 +51,15 @@ fn parts(
         .collect();
     for (power, parts) in (1_u32..).zip(by_power.iter().skip(1)) {
         let written = parts.iter().map(|(elements, part)| {
-            let written = chain(elements, &by_power).map(|order| {
+            let chain = chain(elements, &by_power).filter(|order| order.len() == power as usize);
+            let written = chain.map(|order| {
                 // Each element with what it sees when those before it are infinite.
                 let mut seen = Vec::new();
                 let mut before = first;
                 for place in 1..=order.len() {
                     let here = prefix(&order, place, &by_power)?;
-                    seen.push(letter(order[place - 1], letters));
-                    seen.push(coefficients.ratio(here, before));
+                    let value = coefficients.ratio(here, before);
+                    seen.push(product([letter(order[place - 1], letters), value]));
                     before = here;
                 }
                 Some(Formula::product(seen))
@@ -67,7 +68,7 @@ fn parts(
                 let elements = elements.iter().map(|element| letter(*element, letters));
                 let elements: Vec<Formula> = elements.collect();
                 let value = coefficients.ratio(part, first);
-                Formula::product(elements.into_iter().chain([value]))
+                product(elements.into_iter().chain([value]))
             })
         });
         let sum = Formula::sum(written.collect::<Vec<_>>());

@@ -5,7 +5,7 @@
 //! and Q² = b₂/b₁². Of a higher order that does not factor there is no such closed form, which is said.
 
 use num_rational::BigRational;
-use num_traits::{One, Signed, ToPrimitive};
+use num_traits::{Signed, ToPrimitive};
 
 use super::bode::lowest;
 use super::compact::{Coefficients, factors, product};
@@ -90,7 +90,12 @@ fn section(
         let number = |formula| nominal(formula, letters)?.to_f64();
         let nominal = number(&factor).zip(number(&radicand)).map(|(a, b)| a * libm::sqrt(b));
         let radicand = (!radicand.is_one()).then_some(radicand);
-        Some(Quantity { name, factor, radicand, nominal: nominal.filter(|value| value.is_finite()) })
+        Some(Quantity {
+            name,
+            factor,
+            radicand,
+            nominal: nominal.filter(|value| value.is_finite()),
+        })
     };
     let quantities = match parts.as_slice() {
         [c0, c1] => vec![quantity("w", Fraction::new(c0, c1), false)],

@@ -91,12 +91,13 @@ fn every_shape_has_the_value_of_the_fraction() {
     let mut random = Random::new(20);
     let symbols = some_capacitors();
     let letters = Lettering { pi: None, symbols: &symbols };
-    let shapes: [(&str, fn(&Fraction, Lettering<'_>) -> Formula); 5] = [
+    let shapes: [(&str, fn(&Fraction, Lettering<'_>) -> Formula); 6] = [
         ("compact", compact),
         ("powers", powers),
         ("bode", bode),
         ("product", product),
         ("by-element", by_element),
+        ("sections", |fraction, letters| sections(fraction, letters).0),
     ];
     for case in 0..64 {
         let Some(fraction) = fraction(&mut random, case) else { continue };
