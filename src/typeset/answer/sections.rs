@@ -16,11 +16,14 @@ pub(super) fn lines(sections: &[Section], names: &SymbolTable, style: TextStyle)
     let medium = if style.is_ascii() { Medium::Ascii } else { Medium::Unicode };
     let text = |formula: &Formula| plain::text(formula, names, Dialect::Language);
     let root = |radicand: &Formula| format!("sqrt({})", text(radicand));
+    let over = |above: String, below: &Formula| match below.view() {
+        View::Letter(_) | View::Number(_) | View::Power(..) => format!("{above}/{}", text(below)),
+        _ => format!("{above}/({})", text(below)),
+    };
     let one = |section: &Section| {
         let mut line = title(section);
         for (index, quantity) in section.quantities.iter().enumerate() {
-            let value =
-                value(quantity, &text, &root, "*", &|above, below| format!("{above}/{below}"));
+            let value = value(quantity, &text, &root, "*", &over);
             let between = if index == 0 { ": " } else { ", " };
             let _ = write!(line, "{between}{} = {value}", quantity.name);
             if let Some(nominal) = nominal(quantity, medium) {
@@ -41,7 +44,7 @@ pub(super) fn lines(sections: &[Section], names: &SymbolTable, style: TextStyle)
 pub(super) fn latex(sections: &[Section], writer: &Latex<'_>) -> Vec<String> {
     let text = |formula: &Formula| writer.text(formula);
     let root = |radicand: &Formula| format!("\\sqrt{{{}}}", text(radicand));
-    let quotient = |above: String, below: String| format!("\\frac{{{above}}}{{{below}}}");
+    let over = |above: String, below: &Formula| format!("\\frac{{{above}}}{{{}}}", text(below));
     let one = |quantity: &Quantity| {
         let name = match quantity.name {
             "gain" => "K",
@@ -49,7 +52,7 @@ pub(super) fn latex(sections: &[Section], writer: &Latex<'_>) -> Vec<String> {
             "w0" => "\\omega_0",
             name => name,
         };
-        format!("{name} = {}", value(quantity, &text, &root, "\\,", &quotient))
+        format!("{name} = {}", value(quantity, &text, &root, "\\,", &over))
     };
     let all = sections.iter().filter(|section| !section.quantities.is_empty());
     all.map(|section| {
@@ -74,7 +77,7 @@ fn value(
     text: &impl Fn(&Formula) -> String,
     root: &impl Fn(&Formula) -> String,
     times: &str,
-    quotient: &impl Fn(String, String) -> String,
+    over: &impl Fn(String, &Formula) -> String,
 ) -> String {
     let Some(radicand) = &quantity.radicand else { return text(&quantity.factor) };
     let above = |factor: &Formula| match factor.view() {
@@ -83,11 +86,7 @@ fn value(
         _ => format!("{}{times}{}", text(factor), root(radicand)),
     };
     match quantity.factor.view() {
-        View::Quotient(a, b) => {
-            let simple = matches!(b.view(), View::Letter(_) | View::Number(_) | View::Power(..));
-            let below = if simple { text(b) } else { format!("({})", text(b)) };
-            quotient(above(a), below)
-        }
+        View::Quotient(a, b) => over(above(a), b),
         _ => above(&quantity.factor),
     }
 }
