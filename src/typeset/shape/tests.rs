@@ -79,7 +79,7 @@ fn some_capacitors() -> Vec<Symbol> {
     let symbol = |index: u32| Symbol {
         name: format!("x{index}"),
         role: SymbolRole::Parameter,
-        unit: if index % 2 == 0 { Unit::OHM } else { Unit::FARAD },
+        unit: if index.is_multiple_of(2) { Unit::OHM } else { Unit::FARAD },
         nominal: None,
         tolerance: None,
     };
@@ -91,7 +91,7 @@ fn every_shape_has_the_value_of_the_fraction() {
     let mut random = Random::new(20);
     let symbols = some_capacitors();
     let letters = Lettering { pi: None, symbols: &symbols };
-    let shapes: [(&str, fn(&Fraction, Lettering<'_>) -> Formula); 6] = [
+    let shapes: [(&str, ShapeOf); 6] = [
         ("compact", compact),
         ("powers", powers),
         ("bode", bode),
@@ -187,7 +187,7 @@ fn compact_forms_read_as_written_by_hand() {
     check("A B C", "A*B + A*C", "A + B + C", expect!["A || (B + C)"]);
     check("g R1 R2 R3", "-g*R1*R2", "R1*R3 + R2*R3", expect!["-g*(R1 || R2)/R3"]);
     check("R C", "R", "1 + s*R*C", expect!["R/(1 + s*R*C)"]);
-    check("R1 R2 C", "R2", "R1 + R2 + s*R1*R2*C", expect!["1/(1 + R1/R2 + s*R1*C)"]);
+    check("R1 R2 C", "R2", "R1 + R2 + s*R1*R2*C", expect!["R2/(R1 + R2 + s*R1*R2*C)"]);
     check("R C", "1 - s*R*C", "1 + s*R*C", expect!["(1 - s*R*C)/(1 + s*R*C)"]);
     check(
         "R1 R2 R3 R4",
@@ -220,12 +220,17 @@ fn compact_forms_read_as_written_by_hand() {
         "1 + s*Ra*C1 + s*Rb*C2 + s*s*Ra*Rb*C1*C2",
         expect!["1/(1 + s*Ra*C1) + 1/(1 + s*Rb*C2)"],
     );
+    check("RS g r", "r + RS + RS*g*r", "1", expect!["RS + r*(1 + RS*g)"]);
+    check("R1 R2 g1 g2", "g2 + g2*g1*R1", "g1 + g1*g2*R2", expect!["(R1 + 1/g1)/(R2 + 1/g2)"]);
+    check("R r g", "-g*R*r", "R + r", expect!["-g*(R || r)"]);
+    check("R m r", "m*R", "r + R + R*m", expect!["m/(1 + m + r/R)"]);
+    check("R C g", "R*g*g + s*C", "g*g", expect!["R + s*C/g^2"]);
     check("R1 R2", "0*R1", "R1 + R2", expect!["0"]);
 }
 
 #[test]
 fn capacitances_in_a_row_are_no_parallel() {
-    check("C1 C2", "C1*C2", "C1 + C2", expect!["C2/(1 + C2/C1)"]);
+    check("C1 C2", "C1*C2", "C1 + C2", expect!["C1*C2/(C1 + C2)"]);
     check("L1 L2", "L1*L2", "L1 + L2", expect!["L1 || L2"]);
     check("R1 R2 g", "R1*R2", "R1 + R2 + g*R1*R2", expect!["(1/g) || R1 || R2"]);
 }
