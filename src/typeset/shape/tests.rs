@@ -187,7 +187,7 @@ fn compact_forms_read_as_written_by_hand() {
     check("A B C", "A*B + A*C", "A + B + C", expect!["A || (B + C)"]);
     check("g R1 R2 R3", "-g*R1*R2", "R1*R3 + R2*R3", expect!["-g*(R1 || R2)/R3"]);
     check("R C", "R", "1 + s*R*C", expect!["R/(1 + s*R*C)"]);
-    check("R1 R2 C", "R2", "R1 + R2 + s*R1*R2*C", expect!["R2/(R1 + R2 + s*R1*R2*C)"]);
+    check("R1 R2 C", "R2", "R1 + R2 + s*R1*R2*C", expect!["1/(1 + R1/R2 + s*R1*C)"]);
     check("R C", "1 - s*R*C", "1 + s*R*C", expect!["(1 - s*R*C)/(1 + s*R*C)"]);
     check(
         "R1 R2 R3 R4",

@@ -24,7 +24,7 @@ const POLE_BELOW: u32 = 5;
 const S_DIVISOR: u32 = 15;
 /// `a/(1 + b/c)`, and the same under a bare 1.
 const BAR_BELOW: u32 = 5;
-const BAR_BELOW_ONE: u32 = 20;
+const BAR_BELOW_ONE: u32 = 17;
 /// `a/(1 + b/c)` where `a*c/(b + c)` is the familiar form.
 const DIVIDER: u32 = 6;
 /// A sum over a bar that has long bars itself, as a term of a sum: `(1 + (a + b)/c)/d + e`.
