@@ -26,6 +26,7 @@ use crate::typeset::Formula;
 use laurent::{Laurent, Ring};
 pub(super) use order::product;
 use quotient::Factored;
+pub(super) use quotient::factors;
 use sum::{Form, Writer};
 
 /// Terms of fractions that are split.
