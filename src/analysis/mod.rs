@@ -19,6 +19,7 @@ mod numbers;
 mod port;
 mod posed;
 mod return_ratio;
+pub mod roots;
 mod two_port;
 
 pub use answer::{Entry, answer};

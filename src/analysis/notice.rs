@@ -99,7 +99,7 @@ fn drive(circuit: &Circuit, own: usize, transfer: &Transfer) -> String {
 }
 
 /// `a, b and c`; long lists are cut.
-fn listed(names: impl ExactSizeIterator<Item = String>) -> String {
+pub(super) fn listed(names: impl ExactSizeIterator<Item = String>) -> String {
     const SHOWN: usize = 8;
     let count = names.len();
     let mut shown: Vec<String> = names.take(SHOWN).collect();

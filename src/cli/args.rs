@@ -16,6 +16,8 @@ pub(crate) struct Arguments {
 pub(crate) enum Command {
     /// Closed forms, each cross-checked against a floating-point solve
     Derive(Derive),
+    /// Poles and zeros, and which elements set each
+    Roots(Roots),
     /// The circuit as understood: nodes, elements, values, what the graph says, and a picture
     Inspect(Inspect),
 }
@@ -76,6 +78,72 @@ pub(crate) enum ListingFormat {
     /// For other programs
     Json,
     /// A picture of the graph
+    Svg,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct Roots {
+    #[command(flatten)]
+    pub(crate) input: Input,
+    #[command(flatten)]
+    pub(crate) output: RootsOutput,
+    /// Find the value of an element that moves something: "w0 = 1 kHz", "Q = 0.7", "p2 = 1 MHz",
+    /// "z1 = 50 Hz", "gain = 10"; "w0 of p3 = …" where there are several pairs
+    #[arg(long = "move", value_name = "WHAT = VALUE", requires = "with")]
+    pub(crate) target: Option<String>,
+    /// The element that `--move` may change
+    #[arg(long, value_name = "SYMBOL", requires = "target")]
+    pub(crate) with: Option<String>,
+    /// Draw this many circuits with values evenly between the limits of their tolerances
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u32).range(1..=1_000_000))]
+    pub(crate) monte_carlo: Option<u32>,
+    /// What the draws begin with; the same seed gives the same circuits
+    #[arg(long, value_name = "K", default_value_t = 1, requires = "monte_carlo")]
+    pub(crate) seed: u64,
+    /// Draw the paths of the poles while this element goes from a tenth to ten times its value
+    #[arg(long, value_name = "SYMBOL")]
+    pub(crate) locus: Option<String>,
+    /// Expand up to this many terms; the roots of longer formulas come without approximations
+    #[arg(long, value_name = "N", default_value_t = 20_000)]
+    pub(crate) max_terms: usize,
+}
+
+#[derive(Debug, Args)]
+pub(crate) struct RootsOutput {
+    /// How results are printed
+    #[arg(long, value_enum, default_value_t = RootsFormat::Text)]
+    pub(crate) format: RootsFormat,
+    /// ASCII only
+    #[arg(long)]
+    pub(crate) ascii: bool,
+    /// Colours in messages; NO_COLOR is respected
+    #[arg(long, value_enum, default_value_t = Colour::Auto)]
+    pub(crate) color: Colour,
+    /// Results only: no notices
+    #[arg(long)]
+    pub(crate) quiet: bool,
+}
+
+impl RootsOutput {
+    /// The same choices as for other commands; a picture has the messages of text.
+    pub(crate) fn output(&self) -> Output {
+        let format = match self.format {
+            RootsFormat::Json => Format::Json,
+            RootsFormat::Text | RootsFormat::Latex | RootsFormat::Svg => Format::Text,
+        };
+        Output { format, ascii: self.ascii, color: self.color, quiet: self.quiet }
+    }
+}
+
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub(crate) enum RootsFormat {
+    /// For a terminal
+    Text,
+    /// A fragment for a document that uses amsmath
+    Latex,
+    /// For other programs
+    Json,
+    /// A picture of the complex plane
     Svg,
 }
 

@@ -16,6 +16,7 @@ mod failure;
 mod input;
 mod inspect;
 mod messages;
+mod roots;
 
 use std::io::Write;
 use std::process::ExitCode;
@@ -40,6 +41,10 @@ pub(crate) fn run() -> ExitCode {
             Command::Derive(derive) => {
                 let messages = Messages::new(&derive.output);
                 finish(&messages, derive::run(&derive, &messages))
+            }
+            Command::Roots(roots) => {
+                let messages = Messages::new(&roots.output.output());
+                finish(&messages, roots::run(&roots, &messages))
             }
             Command::Inspect(inspect) => {
                 let messages = Messages::new(&inspect.output());

@@ -36,12 +36,13 @@ use crate::algebra::{Polynomial, Var};
 use crate::circuit::{Circuit, Drive, ElementId, NodeId, Transfer};
 use diagram::{Diagram, Link};
 use passes::expand::{self, TermSet};
-use passes::{coefficients, count, numbers};
+use passes::{coefficients, count, gradient, numbers};
 use system::System;
 
 pub use at_limit::InfiniteLimit;
 pub use error::EliminationError;
 pub use nested::{Nested, NestedFactor, NestedSum};
+pub use passes::gradient::Gradient;
 pub use value::{DividesByZero, fraction_of, symbol_of, variable_of};
 
 /// What the work may cost.
@@ -169,6 +170,11 @@ impl Elimination {
         }
     }
 
+    /// The symbols that the answer depends on, ascending, as variables.
+    pub fn variables(&self) -> &[Var] {
+        &self.symbols
+    }
+
     /// Whether the answer is exactly 0: the drive does not reach what is asked.
     pub fn is_zero(&self) -> bool {
         self.numerator.is_dead()
@@ -204,8 +210,9 @@ impl Elimination {
         let weights: Vec<_> = self.weights.iter().map(count::weight).collect();
         let roots = [self.numerator, self.denominator];
         let mut counts = passes::at_links(&count::Counts, &self.diagram, &weights, &roots);
-        let denominator = counts.pop().unwrap_or_default();
-        let numerator = counts.pop().unwrap_or_default();
+        let mut last = || counts.pop().map(|tally| tally.numbers()).unwrap_or_default();
+        let denominator = last();
+        let numerator = last();
         TermCounts { numerator, denominator, exact: self.distinct }
     }
 
@@ -258,6 +265,20 @@ impl Elimination {
             &values,
             self.denominator,
         ))
+    }
+
+    /// Numerator and denominator at `s` and these symbol values (by index), each with its relative
+    /// derivatives with respect to `s` and to every symbol.
+    ///
+    /// # Cost
+    /// Two backward passes: as much as four values.
+    pub fn gradients_at(&self, s: Complex<f64>, symbols: &[f64]) -> [Gradient; 2] {
+        let weights: Vec<_> =
+            self.weights.iter().map(|w| numbers::complex_weight(w, s, symbols)).collect();
+        let values = passes::values(&numbers::ComplexNumbers, &self.diagram, &weights);
+        [self.numerator, self.denominator].map(|root| {
+            gradient::relative(&self.diagram, &self.weights, &weights, &values, root, (s, symbols))
+        })
     }
 
     /// Numerator and denominator modulo the prime of a field; `values` holds `s` first, then the symbols.

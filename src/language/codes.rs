@@ -124,6 +124,11 @@ pub const CODES: &[(&str, &str, &str)] = &[
     ),
     ("no-source", "no independent source drives the circuit", "add one"),
     (
+        "not-a-quantity",
+        "a value on the command line is no number with a unit",
+        "write a number and a unit, such as `1 kHz`",
+    ),
+    (
         "not-linear",
         "a source's value is not linear in voltages and currents",
         "write a sum of factor times `V(…)` or `I(…)`",

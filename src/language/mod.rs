@@ -41,7 +41,7 @@ pub use diagnostic::{
     Diagnostic, Label, MOST_SHOWN, Severity, Span, line_and_column, render, render_all,
 };
 
-use crate::circuit::{Ask, Band, Circuit, Limit, Value};
+use crate::circuit::{Ask, Band, Circuit, Limit, Number, Unit, Value};
 use build::Builder;
 use parse::{Reader, Rule};
 use source::Source;
@@ -101,6 +101,14 @@ pub fn band(text: &str) -> Result<Band, Vec<Diagnostic>> {
         Some((from, to)) => build::make_band(&from, &to).map_err(|fault| vec![fault]),
         None => Err(faults),
     }
+}
+
+/// Reads a quantity of the command line: `1 kHz`, `4k7`, `0.7`; the unit may be left out.
+///
+/// # Errors
+/// What cannot be read; spans are places in `text`.
+pub fn quantity(text: &str) -> Result<(Number, Option<Unit>), Vec<Diagnostic>> {
+    quantity::whole(text).map_err(|fault| vec![fault])
 }
 
 /// Reads a limit of the command line: `A0 to infinity`.

@@ -127,6 +127,28 @@ pub(crate) fn amount(figure: &str, word: &str, span: Span) -> Result<Amount, Dia
     Err(fault)
 }
 
+/// Reads a text that is one quantity: a sign, a figure, a unit.
+///
+/// # Errors
+/// As for [`amount`], and where no figure stands at the beginning.
+pub(crate) fn whole(text: &str) -> Result<Amount, Diagnostic> {
+    let span = Span { start: 0, end: text.len() };
+    let (negative, rest) = match text.trim().strip_prefix(['-', '−']) {
+        Some(rest) => (true, rest.trim_start()),
+        None => (false, text.trim()),
+    };
+    let (figure, word) = match rest.split_once(char::is_whitespace) {
+        Some((figure, word)) => (figure, word.trim()),
+        None => (rest, ""),
+    };
+    if !figure.starts_with(|c: char| c.is_ascii_digit() || c == '.') {
+        let fault = Diagnostic::error("not-a-quantity", span, format!("`{text}` is no quantity"));
+        return Err(fault.help("write a number and a unit, such as `1 kHz`"));
+    }
+    let (value, unit) = amount(figure, word, span)?;
+    Ok((if negative { -value } else { value }, unit))
+}
+
 /// Kelvin as a temperature's unit is read by itself, since elsewhere `K` is a slip for `k`.
 ///
 /// # Errors

@@ -34,6 +34,7 @@ pub mod plain;
 mod random;
 pub mod screen;
 pub mod shape;
+pub mod svg;
 mod symbol;
 
 pub use formula::{Formula, Letter, View};

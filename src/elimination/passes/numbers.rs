@@ -59,6 +59,17 @@ impl Scaled {
         Self::new(large.mantissa + moved, large.exponent)
     }
 
+    /// The power of two of the largest; 1 for none and for zeros.
+    pub(crate) fn largest<'a>(values: impl IntoIterator<Item = &'a Self>) -> Self {
+        let exponent = values
+            .into_iter()
+            .filter(|value| value.mantissa != Complex::new(0.0, 0.0))
+            .map(|value| value.exponent)
+            .max()
+            .unwrap_or(0);
+        Self { mantissa: Complex::new(1.0, 0.0), exponent }
+    }
+
     fn negative(self) -> Self {
         Self { mantissa: -self.mantissa, exponent: self.exponent }
     }
@@ -116,7 +127,7 @@ pub(crate) fn complex_weight(weight: &Polynomial, s: Complex<f64>, symbols: &[f6
 }
 
 /// An integer of any size, rounded to a double's mantissa.
-fn scaled_integer(integer: &BigInt) -> Scaled {
+pub(crate) fn scaled_integer(integer: &BigInt) -> Scaled {
     let shift = integer.bits().saturating_sub(64);
     let mantissa = (integer >> shift).to_f64().unwrap_or(0.0);
     Scaled::new(Complex::new(mantissa, 0.0), shift as i32)

@@ -4,6 +4,7 @@
 mod evidence;
 mod json;
 mod latex;
+pub mod roots;
 mod sections;
 mod text;
 

@@ -1,0 +1,127 @@
+//! Chance: the roots of many circuits whose values lie evenly between the limits of their tolerances.
+//!
+//! The same seed gives the same circuits on every machine (SplitMix64). Each is solved from exact
+//! coefficients, like the nominal one; each root is followed to the one that it has become.
+
+use num_complex::Complex;
+
+use super::find::Root;
+use super::stability::{Verdict, verdict};
+use super::values::{Nominal, follow, places};
+use crate::algebra::modular::Random;
+use crate::circuit::{Circuit, Number, SymbolId};
+
+/// What chance does to the roots.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Chance {
+    /// Circuits drawn.
+    pub trials: usize,
+    /// The seed they were drawn with.
+    pub seed: u64,
+    /// Circuits that are not stable.
+    pub not_stable: usize,
+    /// For each pole of the report.
+    pub poles: Vec<Spread>,
+    /// For each zero of the report.
+    pub zeros: Vec<Spread>,
+}
+
+/// Quantiles of one root: 5 %, 50 % and 95 %.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Spread {
+    /// Of |p|/2π in hertz.
+    pub hz: [f64; 3],
+    /// Of Q, where the root belongs to a pair in nine circuits out of ten.
+    pub q: Option<[f64; 3]>,
+}
+
+/// Draws so many circuits from that seed. `poles` and `zeros` are the nominal roots.
+///
+/// # Cost
+/// That of the coefficients and their roots, for each circuit.
+pub fn monte_carlo(
+    circuit: &Circuit,
+    values: &Nominal<'_>,
+    poles: &[Root],
+    zeros: &[Root],
+    (trials, seed): (usize, u64),
+) -> Chance {
+    let mut random = Random::new(seed);
+    let toleranced: Vec<(SymbolId, &Number, [&Number; 2])> = (0_u32..)
+        .map(SymbolId)
+        .zip(&circuit.symbols)
+        .filter_map(|(id, symbol)| {
+            let (nominal, tolerance) = (symbol.nominal.as_ref()?, symbol.tolerance.as_ref()?);
+            Some((id, nominal, [&tolerance.low, &tolerance.high]))
+        })
+        .collect();
+    let (mut poles, mut zeros) = (Followed::new(poles), Followed::new(zeros));
+    let mut not_stable = 0;
+    for _ in 0..trials {
+        let drawn: Vec<(SymbolId, Number)> = toleranced
+            .iter()
+            .map(|&(id, nominal, [low, high])| {
+                // 2^-32 of the span is finer than any tolerance.
+                let part = Number::new((random.word() >> 32).into(), (1_u64 << 32).into());
+                (id, nominal + low + (high - low) * part)
+            })
+            .collect();
+        let Some((above, below)) = values.with(&drawn) else { continue };
+        not_stable += usize::from(verdict(&below) != Verdict::Stable);
+        if let (Some(above), Some(below)) = (places(&above), places(&below)) {
+            zeros.take(&above);
+            poles.take(&below);
+        }
+    }
+    Chance { trials, seed, not_stable, poles: poles.spreads(), zeros: zeros.spreads() }
+}
+
+/// The roots of all circuits, by the nominal root that they come from.
+struct Followed {
+    /// The nominal roots, multiple ones repeated, and which root of the report each is.
+    nominal: Vec<Complex<f64>>,
+    owner: Vec<usize>,
+    seen: Vec<Vec<Complex<f64>>>,
+}
+
+impl Followed {
+    fn new(roots: &[Root]) -> Self {
+        let mut followed = Self { nominal: Vec::new(), owner: Vec::new(), seen: Vec::new() };
+        for (index, root) in roots.iter().enumerate() {
+            followed.seen.push(Vec::new());
+            for _ in 0..root.multiplicity {
+                followed.nominal.push(root.value);
+                followed.owner.push(index);
+            }
+        }
+        followed
+    }
+
+    fn take(&mut self, roots: &[Complex<f64>]) {
+        for (place, &owner) in follow(&self.nominal, roots).into_iter().zip(&self.owner) {
+            self.seen[owner].extend(place.map(|place| roots[place]));
+        }
+    }
+
+    fn spreads(self) -> Vec<Spread> {
+        let spread = |roots: Vec<Complex<f64>>| {
+            let hz = roots.iter().map(|root| root.norm() / std::f64::consts::TAU).collect();
+            let q: Vec<f64> = roots
+                .iter()
+                .filter(|root| root.im != 0.0 && root.re != 0.0)
+                .map(|root| root.norm() / (2.0 * root.re.abs()))
+                .collect();
+            let mostly = !roots.is_empty() && 10 * q.len() >= 9 * roots.len();
+            Spread { hz: quantiles(hz), q: mostly.then(|| quantiles(q)) }
+        };
+        self.seen.into_iter().map(spread).collect()
+    }
+}
+
+fn quantiles(mut values: Vec<f64>) -> [f64; 3] {
+    values.sort_by(f64::total_cmp);
+    [0.05, 0.5, 0.95].map(|part| {
+        let place = (part * (values.len().saturating_sub(1)) as f64).round() as usize;
+        values.get(place).copied().unwrap_or(f64::NAN)
+    })
+}
