@@ -1,7 +1,7 @@
 //! Exact nodal elimination on a frontier: each element is a choice, the network determinant is a
 //! sum over pairs of trees, and all of it is held in one decision diagram.
 //!
-//! [`system`] makes the choices, [`order`] sorts them, [`diagram`] holds all terms, [`passes`] read
+//! `system` makes the choices, `order` sorts them, `diagram` holds all terms, `passes` read
 //! what is wanted from it. [`Elimination`] is the whole, for one transfer function.
 //!
 //! May use: [`crate::circuit`], [`crate::algebra`]. Never rounds, but for the passes that say so.
