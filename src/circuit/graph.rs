@@ -2,7 +2,7 @@
 //! capacitors touch.
 //!
 //! All of it is connectivity (Kirchhoff 1847), found with disjoint sets and a breadth-first search;
-//! no value is looked at. [`facts`] puts together what a listing tells about a whole circuit.
+//! no value is looked at. [`facts()`] puts together what a listing tells about a whole circuit.
 
 mod branches;
 mod complexity;

@@ -211,6 +211,8 @@ pub(crate) enum ShapeName {
     Product,
     /// Coefficients as sums of reactive elements times what they see
     ByElement,
+    /// Gain, and corner or ω0 and Q of each section
+    Sections,
     /// Named sub-expressions
     Nested,
 }

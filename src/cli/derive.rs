@@ -26,6 +26,7 @@ pub(crate) fn run(arguments: &Derive, messages: &Messages) -> Result<u8, Failure
         Some(ShapeName::Bode) => Shape::Bode,
         Some(ShapeName::Product) => Shape::Product,
         Some(ShapeName::ByElement) => Shape::ByElement,
+        Some(ShapeName::Sections) => Shape::Sections,
         Some(ShapeName::Nested) => Shape::Nested,
     };
     let feedback = match &arguments.feedback {

@@ -1,7 +1,7 @@
 //! Exact nodal elimination on a frontier: each element is a choice, the network determinant is a
 //! sum over pairs of trees, and all of it is held in one decision diagram.
 //!
-//! [`system`] makes the choices, [`order`] sorts them, [`diagram`] holds all terms, [`passes`] read
+//! `system` makes the choices, `order` sorts them, `diagram` holds all terms, `passes` read
 //! what is wanted from it. [`Elimination`] is the whole, for one transfer function.
 //!
 //! May use: [`crate::circuit`], [`crate::algebra`]. Never rounds, but for the passes that say so.
@@ -210,8 +210,9 @@ impl Elimination {
         let weights: Vec<_> = self.weights.iter().map(count::weight).collect();
         let roots = [self.numerator, self.denominator];
         let mut counts = passes::at_links(&count::Counts, &self.diagram, &weights, &roots);
-        let denominator = counts.pop().unwrap_or_default();
-        let numerator = counts.pop().unwrap_or_default();
+        let mut last = || counts.pop().map(|tally| tally.numbers()).unwrap_or_default();
+        let denominator = last();
+        let numerator = last();
         TermCounts { numerator, denominator, exact: self.distinct }
     }
 

@@ -22,8 +22,11 @@ const FLOOR: f64 = 1e-9;
 const USELESS: f64 = 1e-3;
 /// Frequencies at which the floating witness looks.
 const POINTS: usize = 41;
-/// Random points for each prime.
+/// Random points for each prime; one where a solve is long. Each alone would tell a wrong result from
+/// a right one but for a chance of about degree/2⁶¹.
 const POINTS_PER_PRIME: usize = 4;
+/// Elements from which on a solve is long.
+const LONG: usize = 200;
 /// How many primes.
 const MODULI: usize = 3;
 /// Attempts at a random point before a result is taken to have none.
@@ -188,9 +191,10 @@ fn equal_modulo_primes(
     candidate: &impl Candidate,
 ) -> Result<ExactEvidence, NumericError> {
     let mut generator = Generator::new(SEED);
-    let kind = ExactKind::EqualAt { points: MODULI * POINTS_PER_PRIME, primes: MODULI };
+    let points_per_prime = if circuit.elements.len() < LONG { POINTS_PER_PRIME } else { 1 };
+    let kind = ExactKind::EqualAt { points: MODULI * points_per_prime, primes: MODULI };
     for &prime in &PRIMES[..MODULI] {
-        for _ in 0..POINTS_PER_PRIME {
+        for _ in 0..points_per_prime {
             let mut attempts = 0;
             let (derived, witness) = loop {
                 let s = generator.below(prime);

@@ -1,7 +1,7 @@
 //! Stability, decided exactly: from the signs of integers, not from the places of roots.
 //!
 //! Numbers: the array of Routh (1877). What lies symmetrically about the imaginary axis is split off
-//! first ([`super::find`]); an even polynomial A has only simple roots on that axis exactly when A + A' is
+//! first ([`super::find()`]); an even polynomial A has only simple roots on that axis exactly when A + A' is
 //! stable (Hermite 1856, Biehler 1879). Symbols: the conditions of Hurwitz (1895) in the
 //! short form of Liénard and Chipart (1914), for orders up to four.
 

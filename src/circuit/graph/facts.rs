@@ -1,6 +1,6 @@
 //! Everything that a listing of a circuit tells about its graph.
 //!
-//! The graph is that of the [`branches`]: pairs of nodes between which a current can flow. Facts
+//! The graph is that of the [`branches()`]: pairs of nodes between which a current can flow. Facts
 //! are those of the circuit as it stands, with every source in its place.
 
 use super::{

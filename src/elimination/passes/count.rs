@@ -1,7 +1,6 @@
 //! Counting terms without making them.
 
 use num_bigint::BigUint;
-use num_traits::Zero;
 
 use super::Ring;
 use crate::algebra::{Polynomial, Var};
@@ -9,6 +8,62 @@ use crate::algebra::{Polynomial, Var};
 /// Numbers of terms by powers of `s`. Signs do not count, nor do coefficients: where terms can meet
 /// this is how many there are before they do.
 pub(crate) struct Counts;
+
+/// Large integers of one width in one piece of memory, one for each power of `s`: a long ladder has
+/// millions of them, and each by itself would cost an allocation.
+#[derive(Clone, Debug)]
+pub(crate) struct Tally {
+    /// 64-bit digits of each number, at least one.
+    width: usize,
+    /// The numbers, each with its lowest digit first.
+    digits: Vec<u64>,
+}
+
+impl Tally {
+    fn len(&self) -> usize {
+        self.digits.len() / self.width
+    }
+
+    /// Makes room for at least this many powers and digits.
+    fn grow(&mut self, powers: usize, width: usize) {
+        if self.width < width {
+            let mut wide = Vec::with_capacity(powers.max(self.len()) * width);
+            for number in self.digits.chunks(self.width) {
+                wide.extend_from_slice(number);
+                wide.resize(wide.len() + width - self.width, 0);
+            }
+            (self.width, self.digits) = (width, wide);
+        }
+        if self.len() < powers {
+            self.digits.resize(powers * self.width, 0);
+        }
+    }
+
+    /// Adds factor × digits to the number at a power.
+    fn add(&mut self, power: usize, factor: u64, digits: &[u64]) {
+        let number = &mut self.digits[power * self.width..][..self.width];
+        let mut carry = 0_u128;
+        for (index, digit) in number.iter_mut().enumerate() {
+            let more = digits.get(index).copied().unwrap_or(0);
+            carry += u128::from(*digit) + u128::from(more) * u128::from(factor);
+            *digit = carry as u64;
+            carry >>= 64;
+        }
+        if carry > 0 {
+            let width = self.width;
+            self.grow(self.len(), width + 1);
+            self.digits[power * self.width + width] = carry as u64;
+        }
+    }
+
+    /// The numbers, lowest power first.
+    pub(crate) fn numbers(&self) -> Vec<BigUint> {
+        let number = |digits: &[u64]| {
+            BigUint::new(digits.iter().flat_map(|&d| [d as u32, (d >> 32) as u32]).collect())
+        };
+        self.digits.chunks(self.width).map(number).collect()
+    }
+}
 
 /// How many terms a weight has at each power of `s`.
 pub(crate) fn weight(polynomial: &Polynomial) -> Vec<(usize, u64)> {
@@ -25,32 +80,50 @@ pub(crate) fn weight(polynomial: &Polynomial) -> Vec<(usize, u64)> {
 
 impl Ring for Counts {
     type Weight = Vec<(usize, u64)>;
-    type Value = Vec<BigUint>;
+    type Value = Tally;
 
-    fn zero(&self) -> Self::Value {
-        Vec::new()
+    fn zero(&self) -> Tally {
+        Tally { width: 1, digits: Vec::new() }
     }
 
-    fn one(&self) -> Self::Value {
-        vec![BigUint::from(1_u32)]
+    fn one(&self) -> Tally {
+        Tally { width: 1, digits: vec![1] }
     }
 
-    fn add(&self, sum: &mut Self::Value, weight: &Self::Weight, value: &Self::Value, _: bool) {
+    fn add(&self, sum: &mut Tally, weight: &Self::Weight, value: &Tally, _: bool) {
         for &(power, count) in weight {
-            if sum.len() < value.len() + power {
-                sum.resize(value.len() + power, BigUint::zero());
-            }
-            for (at, terms) in value.iter().enumerate() {
-                if count == 1 {
-                    sum[at + power] += terms;
-                } else {
-                    sum[at + power] += terms * count;
-                }
+            sum.grow(value.len() + power, value.width);
+            for (at, digits) in value.digits.chunks(value.width).enumerate() {
+                sum.add(at + power, count, digits);
             }
         }
     }
 
-    fn negate(&self, value: &Self::Value) -> Self::Value {
+    fn negate(&self, value: &Tally) -> Tally {
         value.clone()
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn numbers_grow_beyond_a_digit() {
+        // Doubling a hundred times, and shifting by a power of s each time.
+        let ring = Counts;
+        let mut value = ring.one();
+        for _ in 0..100 {
+            let mut sum = ring.zero();
+            ring.add(&mut sum, &vec![(0, 1), (1, 2)], &value, false);
+            value = sum;
+        }
+        let numbers = value.numbers();
+        assert_eq!(numbers.len(), 101);
+        assert_eq!(numbers[0], BigUint::from(1_u32));
+        assert_eq!(numbers[1], BigUint::from(200_u32));
+        assert_eq!(numbers[100], BigUint::from(1_u32) << 100);
+        let total = numbers.iter().fold(BigUint::default(), |sum, number| sum + number);
+        assert_eq!(total, BigUint::from(3_u32).pow(100));
     }
 }

@@ -68,7 +68,7 @@ pub fn results(answer: &Answer<'_>) -> Vec<DeriveResult> {
 fn ratio(answer: &Answer<'_>, entry: &Entry) -> Ratio {
     let names = &names(entry);
     let letters = lettering_of(&entry.symbols);
-    let Layered { definitions, formula } = written(entry, answer.shape);
+    let Layered { definitions, formula, .. } = written(entry, answer.shape);
     let compact = match answer.shape {
         Shape::Compact => formula.clone(),
         _ => written(entry, Shape::Compact).formula,

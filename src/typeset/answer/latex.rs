@@ -27,6 +27,9 @@ pub fn latex(answer: &Answer<'_>) -> String {
             let _ = writeln!(out, "\\[\n{}\n\\]", writer.equation(&symbol, definition));
         }
         let _ = writeln!(out, "\\[\n{}\n\\]", writer.equation(&left, &written.formula));
+        for line in super::sections::latex(&written.sections, &writer) {
+            let _ = writeln!(out, "\\[\n{line}\n\\]");
+        }
         if let Some(total) = entry.noise.as_ref().and_then(|noise| noise.total.as_ref()) {
             let square = compact(&total.square, lettering_of(&entry.symbols));
             let left = format!("\\int_0^\\infty {left}\\,\\mathrm{{d}}f");

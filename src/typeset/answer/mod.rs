@@ -5,6 +5,7 @@ mod evidence;
 mod json;
 mod latex;
 pub mod roots;
+mod sections;
 mod text;
 
 pub use evidence::evidence;
@@ -45,7 +46,7 @@ fn written(entry: &Entry, shape: Shape) -> Layered {
     // A shape that needs an expansion is refused before this, with the number of its terms.
     written(shape)
         .or_else(|| written(Shape::Compact))
-        .unwrap_or_else(|| Layered { definitions: Vec::new(), formula: Formula::integer(0) })
+        .unwrap_or_else(|| Layered::plain(Formula::integer(0)))
 }
 
 /// Which letters the circuit's variables are.

@@ -24,7 +24,7 @@ pub struct TextStyle {
 }
 
 impl TextStyle {
-    fn is_ascii(self) -> bool {
+    pub(super) fn is_ascii(self) -> bool {
         self.screen.characters == Characters::Ascii
     }
 }
@@ -100,6 +100,12 @@ fn formula(
 ) {
     let written = written(entry, shape);
     let _ = writeln!(out, "{}", style.screen.equation(name, &written.formula, names));
+    if !written.sections.is_empty() {
+        out.push('\n');
+        for line in super::sections::lines(&written.sections, names, style) {
+            let _ = writeln!(out, "  {line}");
+        }
+    }
     if written.definitions.is_empty() {
         return;
     }

@@ -3,8 +3,8 @@
 //! Nodes are upright lines with their names, two-terminal elements are level signs between them, and
 //! what leads to ground hangs down to a ground sign of its own, so that ground does not tangle the
 //! picture. Op-amps, transformers and gyrators are blocks with pins; a controlled source bears its control
-//! in words. [`columns`] orders nodes and blocks from source to output, [`rows`] stacks the elements
-//! with few crossings, [`place`] gives everything its room, and [`canvas`] writes. The same circuit gives the same bytes.
+//! in words. `columns` orders nodes and blocks from source to output, `rows` stacks the elements
+//! with few crossings, `place` gives everything its room, and `canvas` writes. The same circuit gives the same bytes.
 
 mod canvas;
 mod columns;

@@ -42,6 +42,11 @@ fn parts(
     letters: Lettering<'_>,
     coefficients: &mut Coefficients<'_>,
 ) -> Formula {
+    // What all terms share belongs to the gain, also where it is a reactive element.
+    let shared = polynomial.monomial_content().into_iter().filter(|power| power.0 != Var::S);
+    let shared = Polynomial::monomial(shared, 1);
+    let over = |whole: &Polynomial| whole.divide_exact(&shared).unwrap_or_else(|| whole.clone());
+    let (polynomial, first) = (&over(polynomial), &over(first));
     let mut terms = vec![Formula::integer(1)];
     let by_power: Vec<BTreeMap<Elements, Polynomial>> = polynomial
         .coefficients(Var::S)
@@ -51,29 +56,43 @@ fn parts(
         .collect();
     for (power, parts) in (1_u32..).zip(by_power.iter().skip(1)) {
         let written = parts.iter().map(|(elements, part)| {
-            let written = chain(elements, &by_power).map(|order| {
+            let chains = elements.len() == power as usize && are_alike(elements, letters);
+            let chain = chain(elements, &by_power).filter(|_| chains);
+            let written = chain.map(|order| {
                 // Each element with what it sees when those before it are infinite.
                 let mut seen = Vec::new();
                 let mut before = first;
                 for place in 1..=order.len() {
                     let here = prefix(&order, place, &by_power)?;
-                    seen.push(letter(order[place - 1], letters));
-                    seen.push(coefficients.ratio(here, before));
+                    let value = coefficients.ratio(here, before);
+                    seen.push(product([letter(order[place - 1], letters), value]));
                     before = here;
                 }
                 Some(Formula::product(seen))
             });
             written.flatten().unwrap_or_else(|| {
-                let elements = elements.iter().map(|element| letter(*element, letters));
-                let elements: Vec<Formula> = elements.collect();
+                let elements = elements
+                    .chunk_by(|a, b| a == b)
+                    .map(|same| Formula::power(letter(same[0], letters), same.len() as i32));
                 let value = coefficients.ratio(part, first);
-                Formula::product(elements.into_iter().chain([value]))
+                product(elements.chain([value]))
             })
         });
         let sum = Formula::sum(written.collect::<Vec<_>>());
         terms.push(with_s(power, sum));
     }
     Formula::sum(terms)
+}
+
+/// Whether what one element sees can be told from what the next one sees: the elements are
+/// different, and all capacitances or all inductances. A capacitance and an inductance make a
+/// resonance, and the resistance that the one sees cancels against the other's.
+fn are_alike(elements: &Elements, letters: Lettering<'_>) -> bool {
+    let unit = |variable: &Var| match letters.letter(*variable) {
+        Letter::Symbol(index) => letters.unit(index),
+        _ => Unit::ONE,
+    };
+    elements.windows(2).all(|pair| pair[0] != pair[1] && unit(&pair[0]) == unit(&pair[1]))
 }
 
 fn letter(variable: Var, letters: Lettering<'_>) -> Formula {
@@ -86,7 +105,8 @@ fn by_elements(part: &Polynomial, letters: Lettering<'_>) -> BTreeMap<Elements, 
         Letter::Symbol(index) => [Unit::FARAD, Unit::HENRY].contains(&letters.unit(index)),
         _ => false,
     };
-    let mut parts: BTreeMap<Elements, Vec<(Vec<(Var, u32)>, num_bigint::BigInt)>> = BTreeMap::new();
+    type Terms = Vec<(Vec<(Var, u32)>, num_bigint::BigInt)>;
+    let mut parts: BTreeMap<Elements, Terms> = BTreeMap::new();
     for (powers, coefficient) in part.terms() {
         let (reactive, rest): (Vec<_>, Vec<_>) = powers.partition(|power| is_reactive(power.0));
         let elements = reactive

@@ -9,6 +9,7 @@ mod compact;
 mod nested;
 mod powers;
 mod product;
+mod sections;
 
 pub use bode::bode;
 pub(crate) use bode::ratio;
@@ -17,6 +18,7 @@ pub use compact::compact;
 pub use nested::{Layered, nested};
 pub use powers::powers;
 pub use product::product;
+pub use sections::{Quantity, Section, sections};
 
 use num_bigint::BigInt;
 use num_rational::BigRational;
@@ -125,6 +127,8 @@ pub enum Shape {
     Product,
     /// Coefficients as sums of reactive elements times what they see.
     ByElement,
+    /// Gain, and corner or ω0 and Q of each section.
+    Sections,
     /// Named sub-expressions.
     Nested,
 }
@@ -138,12 +142,16 @@ pub fn write(
     shape: Shape,
     letters: Lettering<'_>,
 ) -> Option<Layered> {
-    let plain = |formula| Some(Layered { definitions: Vec::new(), formula });
+    let plain = |formula| Some(Layered::plain(formula));
     match (form, shape) {
         (ClosedForm::Expanded(fraction), Shape::Powers) => plain(powers(fraction, letters)),
         (ClosedForm::Expanded(fraction), Shape::Bode) => plain(bode(fraction, letters)),
         (ClosedForm::Expanded(fraction), Shape::Product) => plain(product(fraction, letters)),
         (ClosedForm::Expanded(fraction), Shape::ByElement) => plain(by_element(fraction, letters)),
+        (ClosedForm::Expanded(fraction), Shape::Sections) => {
+            let (formula, sections) = sections(fraction, letters);
+            Some(Layered { sections, ..Layered::plain(formula) })
+        }
         (ClosedForm::Expanded(fraction), Shape::Compact) => plain(compact(fraction, letters)),
         (ClosedForm::Expanded(fraction), Shape::Nested) => match elimination {
             Some(elimination) => Some(nested(&elimination.nested(), letters)),

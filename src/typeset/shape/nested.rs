@@ -1,6 +1,6 @@
 //! Named sub-expressions, for what is too long to expand.
 
-use super::Lettering;
+use super::{Lettering, Section};
 use crate::elimination::{Nested, NestedFactor, NestedSum};
 use crate::typeset::Formula;
 
@@ -11,6 +11,15 @@ pub struct Layered {
     pub definitions: Vec<Formula>,
     /// The whole.
     pub formula: Formula,
+    /// What the sections are, in the shape `sections`.
+    pub sections: Vec<Section>,
+}
+
+impl Layered {
+    /// Without anything beside it.
+    pub(crate) fn plain(formula: Formula) -> Self {
+        Self { definitions: Vec::new(), formula, sections: Vec::new() }
+    }
 }
 
 /// The shape `nested`.
@@ -20,7 +29,7 @@ pub fn nested(nested: &Nested, letters: Lettering<'_>) -> Layered {
         written(&nested.numerator, letters),
         written(&nested.denominator, letters),
     );
-    Layered { definitions, formula }
+    Layered { definitions, ..Layered::plain(formula) }
 }
 
 /// Sums nest only a few levels deep: the elimination names them beyond that.

@@ -5,7 +5,7 @@
 //! and Q² = b₂/b₁². Of a higher order that does not factor there is no such closed form, which is said.
 
 use num_rational::BigRational;
-use num_traits::{One, Signed, ToPrimitive};
+use num_traits::{Signed, ToPrimitive};
 
 use super::bode::lowest;
 use super::compact::{Coefficients, factors, product};
@@ -49,7 +49,8 @@ pub fn sections(fraction: &Fraction, letters: Lettering<'_>) -> (Formula, Vec<Se
     let [(above, above_power), (below, below_power)] = sides.map(lowest);
     let gain = Fraction::new(&above, &below).unwrap_or_else(Fraction::zero);
     let factor = coefficients.ratio(gain.numerator(), gain.denominator());
-    let nominal = nominal(&factor, letters).as_ref().and_then(ToPrimitive::to_f64);
+    let nominal = nominal(&factor, letters).filter(|_| factor.symbols() > 0);
+    let nominal = nominal.as_ref().and_then(ToPrimitive::to_f64);
     let quantity = Quantity { name: "gain", factor: factor.clone(), radicand: None, nominal };
     let mut list =
         vec![Section { poles: false, order: 0, multiplicity: 1, quantities: vec![quantity] }];
@@ -82,30 +83,41 @@ fn section(
     for (power, part) in (0_u32..).zip(&parts).skip(1).filter(|(_, part)| !part.is_zero()) {
         terms.push(with_s(power, coefficients.ratio(part, &first)));
     }
-    let mut quantity = |name, value: Option<Fraction>, root: bool| {
+    let mut quantity = |name, value: Option<Fraction>, root: Option<Fraction>| {
         let value = value?;
-        let (outside, inside) = if root { square(&value)? } else { (value, Fraction::one()) };
+        let (outside, inside) = match root {
+            None => (value, Fraction::one()),
+            Some(sign) => square(&value, &sign)?,
+        };
         let mut write = |f: &Fraction| coefficients.ratio(f.numerator(), f.denominator());
         let (factor, radicand) = (write(&outside), write(&inside));
         let number = |formula| nominal(formula, letters)?.to_f64();
-        let nominal = number(&factor).zip(number(&radicand)).map(|(a, b)| a * libm::sqrt(b));
+        let known = factor.symbols() + radicand.symbols() > 0;
+        let nominal = number(&factor).zip(number(&radicand)).filter(|_| known);
+        let nominal = nominal.map(|(a, b)| a * libm::sqrt(b));
         let radicand = (!radicand.is_one()).then_some(radicand);
-        Some(Quantity { name, factor, radicand, nominal: nominal.filter(|value| value.is_finite()) })
+        Some(Quantity {
+            name,
+            factor,
+            radicand,
+            nominal: nominal.filter(|value| value.is_finite()),
+        })
     };
     let quantities = match parts.as_slice() {
-        [c0, c1] => vec![quantity("w", Fraction::new(c0, c1), false)],
+        [c0, c1] => vec![quantity("w", Fraction::new(c0, c1), None)],
         [c0, c1, c2] => vec![
-            quantity("w0", Fraction::new(c0, c2), true),
+            quantity("w0", Fraction::new(c0, c2), Some(Fraction::one())),
             // None where c₁ is 0: the section is on the imaginary axis.
-            quantity("Q", Fraction::new(&(c0 * c2), &c1.pow(2)), true),
+            quantity("Q", Fraction::new(&(c0 * c2), &c1.pow(2)), Fraction::new(c0, c1)),
         ],
         _ => Vec::new(),
     };
     (Formula::sum(terms), quantities.into_iter().flatten().collect())
 }
 
-/// A fraction as square · rest: what stands before a square root, and under it.
-fn square(fraction: &Fraction) -> Option<(Fraction, Fraction)> {
+/// A fraction as square · rest: what stands before a square root, and under it. Of the two signs
+/// before the root, that of `sign`.
+fn square(fraction: &Fraction, sign: &Fraction) -> Option<(Fraction, Fraction)> {
     let mut sides = Vec::new();
     for side in [fraction.numerator(), fraction.denominator()] {
         let (content, factors) = factors(side);
@@ -123,7 +135,14 @@ fn square(fraction: &Fraction) -> Option<(Fraction, Fraction)> {
         sides.push((outside, inside));
     }
     let [(a, b), (c, d)] = sides.try_into().ok()?;
-    Some((Fraction::new(&a, &c)?, Fraction::new(&b, &d)?))
+    let outside = Fraction::new(&a, &c)?;
+    // Equal or opposite as functions, up to positive factors: one point tells.
+    let at = |fraction: &Fraction| {
+        let value = |variable: Var| BigRational::new((variable.0 + 3).into(), 2.into());
+        fraction.evaluate(value).is_some_and(|value| value.is_negative())
+    };
+    let outside = if at(&outside) == at(sign) { outside } else { -&outside };
+    Some((outside, Fraction::new(&b, &d)?))
 }
 
 /// The value at the nominal values.

@@ -79,7 +79,7 @@ fn some_capacitors() -> Vec<Symbol> {
     let symbol = |index: u32| Symbol {
         name: format!("x{index}"),
         role: SymbolRole::Parameter,
-        unit: if index % 2 == 0 { Unit::OHM } else { Unit::FARAD },
+        unit: if index.is_multiple_of(2) { Unit::OHM } else { Unit::FARAD },
         nominal: None,
         tolerance: None,
     };
@@ -91,12 +91,13 @@ fn every_shape_has_the_value_of_the_fraction() {
     let mut random = Random::new(20);
     let symbols = some_capacitors();
     let letters = Lettering { pi: None, symbols: &symbols };
-    let shapes: [(&str, fn(&Fraction, Lettering<'_>) -> Formula); 5] = [
+    let shapes: [(&str, ShapeOf); 6] = [
         ("compact", compact),
         ("powers", powers),
         ("bode", bode),
         ("product", product),
         ("by-element", by_element),
+        ("sections", |fraction, letters| sections(fraction, letters).0),
     ];
     for case in 0..64 {
         let Some(fraction) = fraction(&mut random, case) else { continue };
@@ -145,14 +146,39 @@ fn read(text: &str, names: &[&str]) -> Polynomial {
     sum
 }
 
+/// Symbols with the units that their first letters say.
+fn symbols(names: &[&str]) -> Vec<Symbol> {
+    let unit = |name: &str| match name.as_bytes()[0] {
+        b'R' => Unit::OHM,
+        b'C' => Unit::FARAD,
+        b'L' => Unit::HENRY,
+        b'g' => Unit::SIEMENS,
+        _ => Unit::ONE,
+    };
+    let symbol = |name: &&str| Symbol {
+        name: (*name).to_owned(),
+        role: SymbolRole::Parameter,
+        unit: unit(name),
+        nominal: None,
+        tolerance: None,
+    };
+    names.iter().map(symbol).collect()
+}
+
+type ShapeOf = fn(&Fraction, Lettering<'_>) -> Formula;
+
+#[track_caller]
+fn check_shape(shape: ShapeOf, names: &str, n: &str, d: &str, expected: Expect) {
+    let names: Vec<&str> = names.split(' ').collect();
+    let fraction = Fraction::new(&read(n, &names), &read(d, &names)).expect("a fraction");
+    let (table, symbols) = (SymbolTable::new(names.iter().copied()), symbols(&names));
+    let formula = shape(&fraction, Lettering { pi: None, symbols: &symbols });
+    expected.assert_eq(&plain::text(&formula, &table, Dialect::Language));
+}
+
 #[track_caller]
 fn check(names: &str, numerator: &str, denominator: &str, expected: Expect) {
-    let names: Vec<&str> = names.split(' ').collect();
-    let (n, d) = (read(numerator, &names), read(denominator, &names));
-    let fraction = Fraction::new(&n, &d).expect("the denominator is not 0");
-    let table = SymbolTable::new(names.iter().copied());
-    let formula = compact(&fraction, Lettering::default());
-    expected.assert_eq(&plain::text(&formula, &table, Dialect::Language));
+    check_shape(compact, names, numerator, denominator, expected);
 }
 
 #[test]
@@ -179,7 +205,7 @@ fn compact_forms_read_as_written_by_hand() {
         "RE Rf gm1 gm2 RD",
         "-gm2*RE - gm2*gm1*RD*RE - gm2*gm1*RD*Rf",
         "1 + gm2*RE + gm2*RE*gm1*RD",
-        expect!["-((1/(RE*(1 + gm1*RD))) || gm2)*(RE + gm1*RD*(RE + Rf))"],
+        expect!["-(1 + Rf/RE + 1/(gm1*RD))/(1 + (1 + 1/(RE*gm2))/(gm1*RD))"],
     );
     check("RL Rs n", "n*RL", "Rs + n*n*RL", expect!["n/(n^2 + Rs/RL)"]);
     check(
@@ -194,5 +220,97 @@ fn compact_forms_read_as_written_by_hand() {
         "1 + s*Ra*C1 + s*Rb*C2 + s*s*Ra*Rb*C1*C2",
         expect!["1/(1 + s*Ra*C1) + 1/(1 + s*Rb*C2)"],
     );
+    check("RS g r", "r + RS + RS*g*r", "1", expect!["RS + r*(1 + RS*g)"]);
+    check("R1 R2 g1 g2", "g2 + g2*g1*R1", "g1 + g1*g2*R2", expect!["(R1 + 1/g1)/(R2 + 1/g2)"]);
+    check("R r g", "-g*R*r", "R + r", expect!["-g*(R || r)"]);
+    check("R m r", "m*R", "r + R + R*m", expect!["m/(1 + m + r/R)"]);
+    check("R C g", "R*g*g + s*C", "g*g", expect!["R + s*C/g^2"]);
     check("R1 R2", "0*R1", "R1 + R2", expect!["0"]);
+}
+
+#[test]
+fn capacitances_in_a_row_are_no_parallel() {
+    check("C1 C2", "C1*C2", "C1 + C2", expect!["C1*C2/(C1 + C2)"]);
+    check("L1 L2", "L1*L2", "L1 + L2", expect!["L1 || L2"]);
+    check("R1 R2 g", "R1*R2", "R1 + R2 + g*R1*R2", expect!["(1/g) || R1 || R2"]);
+}
+
+const SALLEN_KEY: [&str; 3] = ["R1 R2 C1 C2", "1", "1 + s*C2*R1 + s*C2*R2 + s*s*R1*R2*C1*C2"];
+const LOADED: [&str; 3] = ["R1 R2 C1", "R2", "R1 + R2 + s*R1*R2*C1"];
+const RESONANCE: [&str; 3] = ["R1 C1 L1", "s*C1*R1", "1 + s*C1*R1 + s*s*C1*L1"];
+
+#[test]
+fn other_shapes() {
+    let check = |shape: ShapeOf, [names, n, d]: [&str; 3], expected: Expect| {
+        check_shape(shape, names, n, d, expected);
+    };
+    check(powers, SALLEN_KEY, expect!["1/(1 + s*C2*(R1 + R2) + s^2*R1*R2*C1*C2)"]);
+    check(powers, LOADED, expect!["R2/(R1 + R2 + s*R1*R2*C1)"]);
+    check(bode, LOADED, expect!["R2/((R1 + R2)*(1 + s*C1*(R1 || R2)))"]);
+    check(bode, RESONANCE, expect!["s*R1*C1/(1 + s*R1*C1 + s^2*C1*L1)"]);
+    check(product, LOADED, expect!["R2/(R1 + R2 + s*R1*R2*C1)"]);
+    check(
+        by_element,
+        SALLEN_KEY,
+        expect!["1/(1 + s*C2*(R1 + R2) + s^2*C2*(R1 + R2)*C1*(R1 || R2))"],
+    );
+    check(by_element, LOADED, expect!["R2/((R1 + R2)*(1 + s*C1*(R1 || R2)))"]);
+    check(by_element, RESONANCE, expect!["s*R1*C1/(1 + s*R1*C1 + s^2*C1*L1)"]);
+}
+
+#[test]
+fn sections_have_their_frequency_and_quality() {
+    let [names, n, d] = SALLEN_KEY;
+    let names: Vec<&str> = names.split(' ').collect();
+    let fraction = Fraction::new(&read(n, &names), &read(d, &names)).expect("a fraction");
+    let (_, sections) = sections(&fraction, Lettering::default());
+    let table = SymbolTable::new(names.iter().copied());
+    let text = |formula: &Formula| plain::text(formula, &table, Dialect::Language);
+    let mut found = String::new();
+    for section in &sections {
+        for quantity in &section.quantities {
+            let radicand = quantity.radicand.as_ref().map(text).unwrap_or_default();
+            let factor = text(&quantity.factor);
+            found.push_str(&format!(
+                "{} {}: {factor} root {radicand}\n",
+                section.order, quantity.name
+            ));
+        }
+    }
+    expect![[r#"
+        0 gain: 1 root 
+        2 w0: 1 root 1/(R1*R2*C1*C2)
+        2 Q: 1/(R1 + R2) root R1*R2*C1/C2
+    "#]]
+    .assert_eq(&found);
+}
+
+/// The denominator of an RC ladder with different symbols in every section.
+fn ladder(sections: u32) -> Polynomial {
+    // D(k) and Y(k)·D(k), the input admittance times it, from the far end.
+    let (mut whole, mut current) = (Polynomial::one(), Polynomial::zero());
+    for section in 0..sections {
+        let capacitor = Polynomial::monomial([(Var::S, 1), (Var(2 * section + 2), 1)], 1);
+        let resistor = Polynomial::variable(Var(2 * section + 1));
+        current = &current + &(&capacitor * &whole);
+        whole = &whole + &(&resistor * &current);
+    }
+    whole
+}
+
+#[test]
+fn long_polynomials_are_written_without_a_search() {
+    for sections in [4, 7] {
+        let fraction = Fraction::new(&Polynomial::one(), &ladder(sections)).expect("a fraction");
+        let formula = compact(&fraction, Lettering::default());
+        let value = |letter| match letter {
+            Letter::Symbol(index) => Some(BigRational::from_integer((index + 2).into())),
+            letter => value(letter),
+        };
+        let expected = fraction.evaluate(|variable| {
+            value(Lettering::default().letter(variable)).expect("every letter has a value")
+        });
+        assert_eq!(formula.evaluate(value), expected);
+        assert!(formula.symbols() < fraction.denominator().len() as u64 * 2);
+    }
 }

@@ -24,7 +24,9 @@ const POLE_BELOW: u32 = 5;
 const S_DIVISOR: u32 = 15;
 /// `a/(1 + b/c)`, and the same under a bare 1.
 const BAR_BELOW: u32 = 5;
-const BAR_BELOW_ONE: u32 = 15;
+const BAR_BELOW_ONE: u32 = 17;
+/// `a/(1 + b/c)` where `a*c/(b + c)` is the familiar form.
+const DIVIDER: u32 = 6;
 /// A sum over a bar that has long bars itself, as a term of a sum: `(1 + (a + b)/c)/d + e`.
 const BAR_ABOVE: u32 = 10;
 /// `s` in a parallel.
@@ -149,6 +151,7 @@ fn quotient(above: &Formula, below: &Formula) -> Measure {
         (true, true) => BAR_BELOW_ONE,
         (true, false) => BAR_BELOW,
     };
+    cost += if is_divider(below) && !matches!(above.view(), View::Sum(_)) { DIVIDER } else { 0 };
     cost += if a.pole_term { POLE_ABOVE } else { 0 } + if b.pole_term { POLE_BELOW } else { 0 };
     cost += if a.s_divisor_term | b.s_divisor_term { S_DIVISOR } else { 0 };
     Measure {
@@ -161,6 +164,16 @@ fn quotient(above: &Formula, below: &Formula) -> Measure {
         ratio: b.sum_in_s && a.sum_in_s,
         s_divisor: b.power_of_s && !b.sum_in_s,
         ..a.and(b).plus(cost)
+    }
+}
+
+/// Whether it is `1 + b/c` of two letters.
+fn is_divider(below: &Formula) -> bool {
+    let letter = |formula: &Formula| matches!(formula.view(), View::Letter(_));
+    let View::Sum([one, ratio]) = below.view() else { return false };
+    match ratio.view() {
+        View::Quotient(b, c) => one.is_one() && letter(b) && letter(c),
+        _ => false,
     }
 }
 

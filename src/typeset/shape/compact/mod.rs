@@ -18,6 +18,7 @@ mod split;
 mod sum;
 mod verify;
 
+use num_rational::BigRational;
 use rustc_hash::FxHashMap;
 
 use super::{Lettering, bode, powers};
@@ -26,6 +27,7 @@ use crate::typeset::Formula;
 use laurent::{Laurent, Ring};
 pub(super) use order::product;
 use quotient::Factored;
+pub(super) use quotient::factors;
 use sum::{Form, Writer};
 
 /// Terms of fractions that are split.
@@ -35,8 +37,16 @@ const MAX_DEPTH: usize = 3;
 /// Splits that are followed.
 const MAX_SPLITS: usize = 6;
 
-/// The shape `compact`.
+/// Coefficients of more bits than this come from numbers that were put in for symbols.
+const MAX_BITS: u64 = 24;
+
+/// The shape `compact`. Where numbers stand for most symbols, it is the shape `bode` unless `powers`
+/// has fewer symbols: what counts there are the decimals of each coefficient.
 pub fn compact(fraction: &Fraction, letters: Lettering<'_>) -> Formula {
+    let sides = [fraction.numerator(), fraction.denominator()];
+    if sides.iter().any(|side| side.coefficient_bits() > MAX_BITS) {
+        return simpler(fraction, letters);
+    }
     let ring = Ring::new(&[fraction.numerator(), fraction.denominator()]);
     let mut search = Search { writer: Writer::new(ring, letters), known: FxHashMap::default() };
     if let Some(form) = search.best(fraction, MAX_DEPTH)
@@ -44,8 +54,12 @@ pub fn compact(fraction: &Fraction, letters: Lettering<'_>) -> Formula {
     {
         return form.formula;
     }
+    simpler(fraction, letters)
+}
+
+fn simpler(fraction: &Fraction, letters: Lettering<'_>) -> Formula {
     let (powers, bode) = (powers(fraction, letters), bode(fraction, letters));
-    if bode.symbols() < powers.symbols() { bode } else { powers }
+    if powers.symbols() < bode.symbols() { powers } else { bode }
 }
 
 struct Search<'a> {
@@ -158,10 +172,29 @@ impl<'a> Coefficients<'a> {
 
     /// a/b in compact form.
     pub(super) fn ratio(&mut self, a: &Polynomial, b: &Polynomial) -> Formula {
-        let form = Fraction::new(a, b).and_then(|ratio| self.search.best(&ratio, 2));
+        let ratio = Fraction::new(a, b);
+        if let Some(decimals) = ratio.as_ref().and_then(|ratio| self.decimals(ratio)) {
+            return decimals;
+        }
+        let form = ratio.and_then(|ratio| self.search.best(&ratio, 2));
         match form {
             Some(form) => form.formula,
             None => Formula::quotient(self.polynomial(a), self.polynomial(b)),
         }
+    }
+
+    /// Over a large number: term by term, so that each coefficient is one decimal.
+    fn decimals(&self, fraction: &Fraction) -> Option<Formula> {
+        let writer = &self.search.writer;
+        let below = fraction
+            .denominator()
+            .to_constant()
+            .filter(|below| *below > sum::MAX_DIVISOR.into())?;
+        let sum = Laurent::new(fraction.numerator(), &writer.ring)?;
+        let terms = sum.terms.iter().map(|(exponents, coefficient)| {
+            let number = BigRational::new(laurent::integer(*coefficient), below.clone());
+            writer.monomial(exponents, &number)
+        });
+        Some(order::sum(terms))
     }
 }

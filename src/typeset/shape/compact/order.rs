@@ -5,6 +5,7 @@ use num_bigint::BigInt;
 use num_rational::BigRational;
 
 use super::cost::{has_pole, unsigned};
+use super::sum::MAX_DIVISOR;
 use crate::typeset::{Formula, Letter, View};
 
 /// A sum in order, beginning with a term that is not negative where there is one.
@@ -41,7 +42,7 @@ pub(in super::super) fn product(factors: impl IntoIterator<Item = Formula>) -> F
                         above.extend(flat(a));
                         below.extend(flat(b));
                     }
-                    View::Number(value) => {
+                    View::Number(value) if value.denom() <= &BigInt::from(MAX_DIVISOR) => {
                         let integer = |part: &BigInt| {
                             Formula::number(BigRational::from_integer(part.clone()))
                         };

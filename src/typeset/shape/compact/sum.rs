@@ -47,6 +47,9 @@ impl Form {
 /// Sums of more terms than this are written without choosing.
 const MAX_CHOICE: usize = 120;
 
+/// Numbers up to this stand below a bar; those over larger ones are decimals.
+pub(super) const MAX_DIVISOR: i64 = 1000;
+
 /// Term comparisons spent on choices, of all sums of one problem together.
 const MAX_WORK: u64 = 300_000;
 
@@ -83,6 +86,11 @@ impl<'a> Writer<'a> {
                 Formula::power(letter, i32::from(power.abs()))
             })
         };
+        if coefficient.denom() > &MAX_DIVISOR.into() {
+            let number = Formula::number(coefficient.clone());
+            let above = Formula::product([number].into_iter().chain(side(1)));
+            return Formula::quotient(above, Formula::product(side(-1)));
+        }
         let number =
             |value: &num_bigint::BigInt| Formula::number(BigRational::from_integer(value.clone()));
         let above = Formula::product([number(coefficient.numer())].into_iter().chain(side(1)));
