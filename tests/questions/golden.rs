@@ -99,5 +99,5 @@ fn kept_symbols_and_limits_go_together() {
     // A0 has no number to put in before it has gone to its limit.
     let more = ["--limit", "A0 to infinity", "--keep", "R2"];
     let text = printed("float-switch-number-free.circuit", "json", &more);
-    assert!(text.contains("\"expression\": \"-R2/10000\""), "{text}");
+    assert!(text.contains("\"expression\": \"-1/10000*R2\""), "{text}");
 }
