@@ -310,6 +310,6 @@ fn printed_formulas_equal_an_independent_exact_solve() {
     };
     let (equal, singular) = (count(&Outcome::Equal), count(&Outcome::Singular));
     // The generator must keep making circuits worth judging.
-    assert!(2 * equal > circuits, "only {equal} of {circuits} were judged");
+    assert!(3 * equal > circuits, "only {equal} of {circuits} were judged");
     assert!(100 * singular > circuits, "only {singular} of {circuits} had no unique solution");
 }
