@@ -16,6 +16,7 @@ mod failure;
 mod input;
 mod inspect;
 mod messages;
+mod progress;
 mod roots;
 mod schema;
 
