@@ -23,8 +23,8 @@ pub(crate) struct Judged<'a> {
 }
 
 impl Candidate for Judged<'_> {
-    fn value_at(&self, s: Complex<f64>, symbols: &[f64]) -> Complex<f64> {
-        self.elimination.value_at(s, symbols)
+    fn values_at(&self, frequencies: &[Complex<f64>], symbols: &[f64]) -> Vec<Complex<f64>> {
+        self.elimination.values_at(frequencies, symbols)
     }
 
     fn coefficients(&self, symbols: &[Number]) -> Option<(Vec<Number>, Vec<Number>)> {

@@ -36,8 +36,8 @@ const SEED: u64 = 0x5eed;
 /// A derived result, as far as a witness must see it. Symbols are indexed by
 /// [`crate::circuit::SymbolId`].
 pub trait Candidate {
-    /// The value in double precision.
-    fn value_at(&self, s: Complex<f64>, symbols: &[f64]) -> Complex<f64>;
+    /// The values at these complex frequencies, in double precision.
+    fn values_at(&self, frequencies: &[Complex<f64>], symbols: &[f64]) -> Vec<Complex<f64>>;
     /// Coefficients of numerator and denominator, ascending in s, in any scale; `None` when they
     /// are too long to have.
     fn coefficients(&self, symbols: &[Number]) -> Option<(Vec<Number>, Vec<Number>)>;
@@ -243,8 +243,10 @@ fn floating(
         passed: true,
         failure: None,
     };
-    for &frequency in &hertz {
-        let s = Complex::new(0.0, std::f64::consts::TAU * frequency);
+    let points: Vec<_> =
+        hertz.iter().map(|f| Complex::new(0.0, std::f64::consts::TAU * f)).collect();
+    let derived = candidate.values_at(&points, &values);
+    for ((&frequency, s), derived) in hertz.iter().zip(points).zip(derived) {
         let answer = match sweep.examine(s) {
             Ok(answer) => answer,
             // A pole on the imaginary axis that a frequency happens to meet says nothing.
@@ -256,7 +258,6 @@ fn floating(
             Err(error) => return Err(error),
         };
         result.largest_condition = result.largest_condition.max(answer.condition);
-        let derived = candidate.value_at(s, &values);
         let Some((error, bound)) = compare(&answer, derived) else { continue };
         result.points += 1;
         let agrees = error <= bound;

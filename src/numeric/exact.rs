@@ -11,7 +11,7 @@ use num_traits::{One, Zero};
 use super::network::{Form, Network, System, summed};
 use super::polynomial::{Polynomial, Quotient, Quotients};
 use super::values::images;
-use super::{Field, NumericError, lowered};
+use super::{Additive, NumericError, lowered};
 use crate::circuit::{Circuit, Number, Transfer};
 
 /// Bound of unknowns³ · (degree + 1)² up to which the exact solve stays within about a second.
@@ -37,7 +37,10 @@ pub fn exact_is_affordable(
     transfer: &Transfer,
     numbers: &[Number],
 ) -> Result<bool, NumericError> {
-    Ok(Matrix::new(&lowered(circuit), transfer, numbers)?.is_affordable())
+    match Matrix::new(&lowered(circuit), transfer, numbers) {
+        Err(NumericError::TooLarge) => Ok(false),
+        matrix => Ok(matrix?.is_affordable()),
+    }
 }
 
 /// The transfer as a rational function of s at these numbers, indexed by symbol.
@@ -129,6 +132,9 @@ impl Matrix {
         numbers: &[Number],
     ) -> Result<Self, NumericError> {
         let network = Network::new(circuit, transfer)?;
+        if network.voltages().saturating_pow(3) > AFFORDABLE_WORK {
+            return Err(NumericError::TooLarge);
+        }
         let field = Quotients;
         let symbols = images(&field, numbers)?;
         let s = Quotient {

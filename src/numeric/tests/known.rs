@@ -6,7 +6,7 @@ use num_traits::ToPrimitive;
 use crate::circuit::{Class, Drive, Law, Number, Probe, Quantity, Transfer, Value};
 use crate::numeric::testing::{Builder, constant, number, transfer};
 use crate::numeric::{
-    Field, PRIMES, PrimeField, Sweep, exact, grounded_nodes, modular_value, response,
+    Additive, Field, PRIMES, PrimeField, Sweep, exact, grounded_nodes, modular_value, response,
 };
 
 fn whole(coefficients: &[i64]) -> Vec<Number> {
