@@ -64,13 +64,13 @@ impl<'c> Posed<'c> {
         let mut notices = notice::collect(circuit, self.own, transfer, &whole);
         let limited = limits::take(circuit, &whole)?;
         let Closed { form, length } = close(&limited, options.max_terms);
-        let judged = Judged { elimination: &limited, form: &form };
+        let judged = Judged::new(&limited, &form);
         let (evidence, checks) = if circuit.limits.is_empty() {
             (numeric::crosscheck(circuit, transfer, &judged), Vec::new())
         } else {
             // The function before its limits is judged as it stands in the diagram.
             let before = ClosedForm::Nested(whole.nested());
-            let before = Judged { elimination: &whole, form: &before };
+            let before = Judged::new(&whole, &before);
             let checks = limits::judge(circuit, transfer, &judged)?;
             (numeric::crosscheck(circuit, transfer, &before), vec![checks])
         };

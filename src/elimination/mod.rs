@@ -278,6 +278,7 @@ impl Elimination {
             self.weights.iter().map(|weight| numbers::Coefficients::new(weight, symbols)).collect();
         let ring = numbers::ComplexNumbers;
         let at = |&s: &Complex<f64>| {
+            let s = numbers::Scaled::new(s, 0);
             let weights: Vec<_> = coefficients.iter().map(|weight| weight.at(s)).collect();
             let values = passes::values(&ring, &self.diagram, &weights);
             let root = |link| passes::at(&ring, &values, link);

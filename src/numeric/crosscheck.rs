@@ -26,7 +26,7 @@ const POINTS: usize = 41;
 /// a right one but for a chance of about degree/2⁶¹.
 const POINTS_PER_PRIME: usize = 4;
 /// Elements from which on a solve is long.
-const LONG: usize = 200;
+const LONG: usize = 100;
 /// How many primes.
 const MODULI: usize = 3;
 /// Attempts at a random point before a result is taken to have none.
@@ -80,7 +80,7 @@ pub struct FloatingEvidence {
     pub worst_hz: f64,
     /// The difference that was allowed there, relative likewise.
     pub bound: f64,
-    /// Largest condition number of the equations.
+    /// Largest condition number of the equations, at every fifth frequency.
     pub largest_condition: f64,
     /// Whether every difference was allowed. With 0 points nothing was compared and nothing is
     /// said: double precision does not resolve the circuit, and the exact witnesses decide.
@@ -246,6 +246,7 @@ fn floating(
     let points: Vec<_> =
         hertz.iter().map(|f| Complex::new(0.0, std::f64::consts::TAU * f)).collect();
     let derived = candidate.values_at(&points, &values);
+    result.largest_condition = sweep.largest_condition(&points);
     for ((&frequency, s), derived) in hertz.iter().zip(points).zip(derived) {
         let answer = match sweep.examine(s) {
             Ok(answer) => answer,
@@ -257,7 +258,6 @@ fn floating(
             ) => continue,
             Err(error) => return Err(error),
         };
-        result.largest_condition = result.largest_condition.max(answer.condition);
         let Some((error, bound)) = compare(&answer, derived) else { continue };
         result.points += 1;
         let agrees = error <= bound;

@@ -196,16 +196,21 @@ impl Field for PrimeField {
         if *a == 0 {
             return None;
         }
-        // Fermat: a^(p−2).
-        let (mut square, mut left, mut result) = (*a, self.prime - 2, 1);
-        while left > 0 {
-            if left & 1 == 1 {
-                result = self.multiply(&result, &square);
-            }
-            square = self.multiply(&square, &square);
-            left >>= 1;
+        // Extended Euclid: remainder = factor·a modulo p throughout; |factor| stays below p < 2^63.
+        let (mut old, mut remainder) = (self.prime, a % self.prime);
+        let (mut old_factor, mut factor) = (0_i64, 1_i64);
+        while remainder > 1 {
+            let quotient = old / remainder;
+            (old, remainder) = (remainder, old % remainder);
+            #[expect(clippy::cast_possible_wrap, reason = "quotient·factor is at most the prime")]
+            let next = old_factor - quotient as i64 * factor;
+            (old_factor, factor) = (factor, next);
         }
-        Some(result)
+        // A remainder of 0 means a modulus that is not prime.
+        if remainder == 0 {
+            return None;
+        }
+        Some(if factor < 0 { self.prime - factor.unsigned_abs() } else { factor.unsigned_abs() })
     }
     fn is_zero(&self, a: &u64) -> bool {
         *a == 0

@@ -15,7 +15,7 @@ use num_complex::Complex;
 use num_traits::ToPrimitive;
 
 use super::field::size;
-use super::network::Network;
+use super::network::{Form, Network};
 use super::{
     Additive, Assignment, Complexes, Field, NumericError, Origin, Rationals, evaluate, lowered,
 };
@@ -28,6 +28,11 @@ type C = Complex<f64>;
 /// k in the bound: roundings in the evaluation of an entry and of the formula that is judged,
 /// which sums the same products in another order.
 const ROUNDINGS: f64 = 256.0;
+/// An estimate of the condition costs as much as three solves, and changes slowly.
+const CONDITION_STEP: usize = 5;
+/// From this many elements on, impedances stand as 1/Z: half as many unknowns. What that loses where
+/// numbers of very different size add up is in the bound.
+const LONG: usize = 200;
 const UNIT_ROUNDOFF: f64 = f64::EPSILON / 2.0;
 /// The least double: what a rounding can lose where numbers are subnormal.
 const SMALLEST: f64 = f64::from_bits(1);
@@ -44,8 +49,6 @@ pub struct PointAnswer {
     /// Size of what adds up to the upper quantity, over the lower one: what an answer that is
     /// exactly 0 is compared with. At least the largest node voltage for a voltage.
     pub scale: f64,
-    /// Estimate of the condition number in the 1-norm, after scaling.
-    pub condition: f64,
 }
 
 /// A transfer made ready for many frequencies.
@@ -83,9 +86,15 @@ impl<'a> Sweep<'a> {
         values: &[f64],
     ) -> Result<Self, NumericError> {
         let network = Network::new(circuit, transfer)?;
+        let symbols: Vec<C> = values.iter().map(|value| C::new(*value, 0.0)).collect();
+        let is_long = circuit.elements.len() >= LONG;
+        let form = match is_long && !network.has_short(&symbols) {
+            true => Form::Compact,
+            false => Form::Extended,
+        };
         Ok(Self {
-            symbols: values.iter().map(|value| C::new(*value, 0.0)).collect(),
-            pattern: Pattern::new(&network),
+            symbols,
+            pattern: Pattern::new(&network, form),
             network,
             plan: None,
             numbers: Numbers::default(),
@@ -104,7 +113,20 @@ impl<'a> Sweep<'a> {
         ratio(solved.probe(0), solved.probe(1))
     }
 
-    /// The ratio with its error bound and the condition of the equations.
+    /// The largest condition number of the equations (estimated in the 1-norm, each time scaled for
+    /// the frequency) at every fifth of these frequencies, the first among them; at least 1.
+    pub fn largest_condition(&mut self, frequencies: &[C]) -> f64 {
+        let some = frequencies.iter().step_by(CONDITION_STEP);
+        some.filter_map(|s| self.condition(*s).ok()).fold(1.0, f64::max)
+    }
+
+    fn condition(&mut self, s: C) -> Result<f64, NumericError> {
+        self.scaled.forget();
+        let solved = self.solve(s)?;
+        Ok(solved.scaled.norm(solved.pattern) * solved.factors.inverse_norm(solved.plan))
+    }
+
+    /// The ratio with its error bound.
     ///
     /// # Errors
     /// As [`Sweep::value`].
@@ -113,8 +135,6 @@ impl<'a> Sweep<'a> {
         let solved = self.solve(s)?;
         let (numerator, denominator) = (solved.probe(0), solved.probe(1));
         let value = ratio(numerator, denominator)?;
-        let condition =
-            solved.scaled.norm(solved.pattern) * solved.factors.inverse_norm(solved.plan);
         let sums = solved.magnitudes();
         let residual = solved.residual();
         let [upper, lower] = [0, 1].map(|which| {
@@ -134,19 +154,25 @@ impl<'a> Sweep<'a> {
         let voltages = solved.x.iter().take(solved.pattern.voltages).map(|v| v.norm());
         let largest = if asks_voltage { voltages.fold(0.0, f64::max) } else { 0.0 };
         let scale = upper.1.max(largest) / below;
-        Ok(PointAnswer { s, value, error_bound, scale, condition })
+        Ok(PointAnswer { s, value, error_bound, scale })
     }
 
     fn solve(&mut self, s: C) -> Result<Solved<'_>, NumericError> {
         self.pattern.fill(&self.network, &self.symbols, s, &mut self.numbers)?;
-        self.scaled.compute(&self.pattern, &self.numbers.entries);
-        let (pattern, entries) = (&self.pattern, &self.scaled.entries);
+        let pattern = &self.pattern;
+        self.scaled.apply(pattern, &self.numbers.entries);
+        let entries = &self.scaled.entries;
         let known = self.plan.take().filter(|plan| self.factors.compute(plan, pattern, entries));
         let plan = match known {
             Some(plan) => plan,
-            None => Plan::new(pattern, entries)
-                .filter(|plan| self.factors.compute_anyway(plan, pattern, entries))
-                .ok_or(NumericError::Singular)?,
+            None => {
+                self.scaled.forget();
+                self.scaled.apply(pattern, &self.numbers.entries);
+                let entries = &self.scaled.entries;
+                Plan::new(pattern, entries)
+                    .filter(|plan| self.factors.compute_anyway(plan, pattern, entries))
+                    .ok_or(NumericError::Singular)?
+            }
         };
         let mut solved = Solved {
             pattern,
@@ -222,19 +248,35 @@ fn ratio(numerator: C, denominator: C) -> Result<C, NumericError> {
     Ok(numerator * inverse)
 }
 
-/// R·A·C with largest entries of rows and columns near 1.
+/// R·A·C. R and C are chosen so that the largest entries of rows and columns are near 1, and kept for
+/// other frequencies as long as the pivots are.
 #[derive(Debug, Default)]
 struct Scaled {
     entries: Vec<C>,
+    /// What each entry is multiplied by.
+    factors: Vec<f64>,
     row_scale: Vec<f64>,
     column_scale: Vec<f64>,
 }
 
 impl Scaled {
-    fn compute(&mut self, pattern: &Pattern, entries: &[C]) {
-        let count = pattern.len();
+    /// The next matrix is to have factors of its own.
+    fn forget(&mut self) {
+        self.factors.clear();
+    }
+
+    fn apply(&mut self, pattern: &Pattern, entries: &[C]) {
+        if self.factors.is_empty() {
+            self.choose(pattern, entries);
+        }
         self.entries.clear();
-        self.entries.extend_from_slice(entries);
+        self.entries
+            .extend(entries.iter().zip(&self.factors).map(|(entry, factor)| entry * factor));
+    }
+
+    fn choose(&mut self, pattern: &Pattern, entries: &[C]) {
+        let count = pattern.len();
+        let mut sizes: Vec<f64> = entries.iter().map(|entry| size(*entry)).collect();
         for scale in [&mut self.row_scale, &mut self.column_scale] {
             scale.clear();
             scale.resize(count, 1.0);
@@ -245,7 +287,7 @@ impl Scaled {
             column_factors.fill(0.0);
             for (row, largest) in row_factors.iter_mut().enumerate() {
                 for at in pattern.row(row) {
-                    let (magnitude, column) = (size(self.entries[at]), pattern.columns[at]);
+                    let (magnitude, column) = (sizes[at], pattern.columns[at]);
                     *largest = largest.max(magnitude);
                     column_factors[column] = column_factors[column].max(magnitude);
                 }
@@ -255,7 +297,7 @@ impl Scaled {
             }
             for (row, factor) in row_factors.iter().enumerate() {
                 for at in pattern.row(row) {
-                    self.entries[at] *= factor * column_factors[pattern.columns[at]];
+                    sizes[at] *= factor * column_factors[pattern.columns[at]];
                 }
             }
             self.row_scale
@@ -263,6 +305,10 @@ impl Scaled {
                 .zip(&row_factors)
                 .for_each(|(scale, factor)| *scale *= factor);
             self.column_scale.iter_mut().zip(&column_factors).for_each(|(s, factor)| *s *= factor);
+        }
+        for (row, scale) in self.row_scale.iter().enumerate() {
+            let columns = &pattern.columns[pattern.row(row)];
+            self.factors.extend(columns.iter().map(|column| scale * self.column_scale[*column]));
         }
     }
 

@@ -9,6 +9,8 @@
 //! grounded, which changes no voltage inside and no current. Where something does, the equations
 //! are singular for good.
 
+use num_complex::Complex;
+
 use super::{Additive, Field, NumericError};
 use crate::circuit::{
     Circuit, Control, Drive, Element, ElementId, GROUND, Law, NodeId, Probe, Quantity, Transfer,
@@ -123,6 +125,15 @@ impl<'a> Network<'a> {
     pub(crate) fn laws(&self) -> impl Iterator<Item = Option<&'a Law>> {
         let elements = self.circuit.elements.iter().zip(&self.removed);
         elements.map(|(element, removed)| (!removed).then_some(&element.law))
+    }
+
+    /// Whether some impedance is 0 at these numbers and s = 1 + j (with that it is a short for good),
+    /// or cannot be had there.
+    pub(crate) fn has_short(&self, symbols: &[Complex<f64>]) -> bool {
+        let is_short =
+            |stamp: &Stamp<_>| matches!(stamp, Stamp::Impedance(z) if *z == Complex::ZERO);
+        self.stamps(&super::Complexes, symbols, &Complex::new(1.0, 1.0))
+            .map_or(true, |stamps| stamps.iter().any(is_short))
     }
 
     fn present(&self) -> impl Iterator<Item = &'a Element> {

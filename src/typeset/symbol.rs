@@ -9,9 +9,11 @@
 
 use std::borrow::Cow;
 use std::collections::BTreeSet;
+use std::sync::OnceLock;
 
 use super::Letter;
 use super::greek;
+use super::latex_name::latex_name;
 
 /// How names are written.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -32,20 +34,21 @@ pub enum Style {
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct SymbolName {
     source: String,
-    ascii: String,
     identifier: String,
-    latex: String,
-    unicode: String,
+    // Made when first asked for: a large circuit has thousands of names, of which one style is printed.
+    ascii: OnceLock<String>,
+    latex: OnceLock<String>,
+    unicode: OnceLock<String>,
 }
 
 impl SymbolName {
     fn new(source: &str, identifier: String) -> Self {
         Self {
             source: source.to_owned(),
-            ascii: ascii_name(source),
             identifier,
-            latex: super::latex_name::latex_name(source),
-            unicode: unicode_name(source),
+            ascii: OnceLock::new(),
+            latex: OnceLock::new(),
+            unicode: OnceLock::new(),
         }
     }
 
@@ -54,10 +57,10 @@ impl SymbolName {
     pub fn styled(&self, style: Style) -> &str {
         match style {
             Style::Source => &self.source,
-            Style::Ascii => &self.ascii,
             Style::Identifier => &self.identifier,
-            Style::Latex => &self.latex,
-            Style::Unicode => &self.unicode,
+            Style::Ascii => self.ascii.get_or_init(|| ascii_name(&self.source)),
+            Style::Latex => self.latex.get_or_init(|| latex_name(&self.source)),
+            Style::Unicode => self.unicode.get_or_init(|| unicode_name(&self.source)),
         }
     }
 }

@@ -156,8 +156,7 @@ impl Coefficients {
         Self(coefficients)
     }
 
-    pub(crate) fn at(&self, s: Complex<f64>) -> Scaled {
-        let s = Scaled::new(s, 0);
+    pub(crate) fn at(&self, s: Scaled) -> Scaled {
         self.0.iter().fold(Scaled::ZERO, |sum, &(power, coefficient)| {
             sum.plus((0..power).fold(coefficient, |product, _| product.times(s)))
         })
@@ -166,7 +165,7 @@ impl Coefficients {
 
 /// The value of a weight at `s` and these symbol values.
 pub(crate) fn complex_weight(weight: &Polynomial, s: Complex<f64>, symbols: &[f64]) -> Scaled {
-    Coefficients::new(weight, symbols).at(s)
+    Coefficients::new(weight, symbols).at(Scaled::new(s, 0))
 }
 
 /// An integer of any size, rounded to a double's mantissa.

@@ -8,9 +8,9 @@ use smallvec::{SmallVec, smallvec};
 
 use crate::circuit::Law;
 use crate::numeric::field::size;
-use crate::numeric::network::{Network, Stamp};
+use crate::numeric::network::{Form, Network, Stamp};
 use crate::numeric::sparse::Row;
-use crate::numeric::{Additive, Complexes, NumericError};
+use crate::numeric::{Additive, Complexes, Field, NumericError};
 
 type C = Complex<f64>;
 
@@ -51,6 +51,8 @@ pub(super) struct Pattern {
     /// Column of each entry, ascending in a row.
     pub(super) columns: Vec<usize>,
     entries: Vec<Places>,
+    /// For each element whether its impedance stands as 1/Z.
+    inverted: Vec<bool>,
     right: Vec<Places>,
     /// Numerator and denominator: entries of a row, and a constant.
     probes: [(Vec<(usize, Places)>, Places); 2],
@@ -70,8 +72,10 @@ pub(super) struct Numbers {
 }
 
 impl Pattern {
-    /// Of the equations in which every impedance has a current of its own.
-    pub(super) fn new(network: &Network<'_>) -> Self {
+    /// Of the equations in which impedances have a current of their own, or stand as 1/Z where that
+    /// is not needed.
+    pub(super) fn new(network: &Network<'_>, form: Form) -> Self {
+        let branches = network.branches(|_| form == Form::Extended);
         let mut next = ONE;
         let mut place = || -> Places {
             next += 1;
@@ -79,16 +83,18 @@ impl Pattern {
         };
         let stamps: Vec<Stamp<Places>> = network
             .laws()
-            .map(|law| match law {
-                Some(Law::Impedance(_)) => Stamp::Impedance(place()),
-                Some(Law::Admittance(_)) => Stamp::Admittance(place()),
+            .zip(&branches.0)
+            .map(|(law, branch)| match law {
+                Some(Law::Impedance(_)) if branch.is_some() => Stamp::Impedance(place()),
+                Some(Law::Impedance(_) | Law::Admittance(_)) => Stamp::Admittance(place()),
                 Some(Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls)) => {
                     Stamp::Controls(controls.iter().map(|_| place()).collect())
                 }
                 _ => Stamp::None,
             })
             .collect();
-        let system = network.write(&Formal, &stamps, network.branches(|_| true));
+        let inverted = branches.0.iter().map(Option::is_none).collect();
+        let system = network.write(&Formal, &stamps, branches);
         let (mut starts, mut columns, mut entries) = (vec![0], Vec::new(), Vec::<Places>::new());
         for mut row in system.rows {
             let begin = columns.len();
@@ -104,7 +110,8 @@ impl Pattern {
             starts.push(columns.len());
         }
         let probes = system.probes.map(|probe| (probe.row, probe.constant));
-        Self { starts, columns, entries, right: system.right, probes, voltages: system.voltages }
+        let (right, voltages) = (system.right, system.voltages);
+        Self { starts, columns, entries, inverted, right, probes, voltages }
     }
 
     /// Number of equations.
@@ -134,9 +141,13 @@ impl Pattern {
         let values = &mut numbers.values;
         values.clear();
         values.push(C::ONE);
-        for stamp in network.stamps(&Complexes, symbols, &s)? {
+        for (stamp, inverted) in network.stamps(&Complexes, symbols, &s)?.iter().zip(&self.inverted)
+        {
             match stamp {
-                Stamp::Impedance(value) | Stamp::Admittance(value) => values.push(value),
+                Stamp::Impedance(value) if *inverted => {
+                    values.push(Complexes.inverse(value).ok_or(NumericError::Singular)?);
+                }
+                Stamp::Impedance(value) | Stamp::Admittance(value) => values.push(*value),
                 Stamp::Controls(gains) => values.extend(gains),
                 Stamp::None => {}
             }
