@@ -15,9 +15,12 @@ use std::path::{Path, PathBuf};
 use std::process::{Command, Stdio};
 use std::time::{Duration, Instant};
 
-use cofactor::circuit::Question;
+use cofactor::analysis::{Options, answer};
+use cofactor::circuit::{Circuit, Question};
 use cofactor::elimination::{Elimination, Limits};
 use cofactor::language;
+use cofactor::typeset::answer::lettering;
+use cofactor::typeset::shape::{Shape, write};
 
 /// The least time of so many runs counts.
 const RUNS: usize = 15;
@@ -40,6 +43,11 @@ fn main() {
         std::fs::write(&path, ladder(sections)).expect("a scratch file");
         whole(&format!("RC ladder of {sections} sections"), &path);
     }
+    println!("\n## From a circuit to the written formula\n");
+    println!("| circuits | shape | slowest result |");
+    println!("| --- | --- | --- |");
+    forms("textbook circuits", &textbook(root));
+    forms("RC ladder of 10 sections", &[language::read(&ladder(10)).circuit.expect("a circuit")]);
     println!("\n## Full expansion inside the engine\n");
     println!("| RC ladder | terms | time | million terms a second |");
     println!("| --- | --- | --- | --- |");
@@ -103,6 +111,40 @@ fn memory(path: &Path) -> Option<u32> {
         highest = found.or(highest);
     }
     highest
+}
+
+/// The circuits of the table of hand formulas.
+fn textbook(root: &Path) -> Vec<Circuit> {
+    let files = std::fs::read_dir(root.join("tests/textbook")).expect("the circuits");
+    let mut paths: Vec<PathBuf> = files.filter_map(|file| Some(file.ok()?.path())).collect();
+    paths.sort();
+    let circuits = paths.iter().filter(|path| path.extension().is_some_and(|e| e == "circuit"));
+    circuits
+        .filter_map(|path| language::read(&std::fs::read_to_string(path).ok()?).circuit)
+        .collect()
+}
+
+/// From the circuit to the written formula, with the witnesses.
+fn forms(title: &str, circuits: &[Circuit]) {
+    let shapes = [Shape::Compact, Shape::Product, Shape::Sections, Shape::ByElement];
+    for (shape, name) in shapes.into_iter().zip(["compact", "product", "sections", "by-element"]) {
+        let mut slowest = Duration::ZERO;
+        for circuit in circuits {
+            for ask in &circuit.asks {
+                let best = (0..RUNS).map(|_| {
+                    let start = Instant::now();
+                    let entries = answer(circuit, ask, &Options::default()).unwrap_or_default();
+                    let letters = lettering(circuit);
+                    for entry in &entries {
+                        write(&entry.form, entry.elimination.as_ref(), shape, letters);
+                    }
+                    start.elapsed()
+                });
+                slowest = slowest.max(best.min().unwrap_or_default());
+            }
+        }
+        println!("| {title} | {name} | {} |", milliseconds(slowest));
+    }
 }
 
 fn expansion(sections: usize) {

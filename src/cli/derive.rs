@@ -156,9 +156,18 @@ impl Printer<'_> {
                     text.push('\n');
                 }
                 text.push_str(&answer::text(&answer, style));
+                if self.arguments.legend {
+                    text.push_str(&answer::legend_text(&answer, style));
+                }
                 write_results(&text)?;
             }
-            Format::Latex => write_results(&answer::latex(&answer))?,
+            Format::Latex => {
+                let mut text = answer::latex(&answer);
+                if self.arguments.legend {
+                    text.push_str(&answer::legend_latex(&answer));
+                }
+                write_results(&text)?;
+            }
         }
         self.printed += 1;
         Ok(())
