@@ -20,6 +20,8 @@ pub(crate) enum Command {
     Roots(Roots),
     /// The circuit as understood: nodes, elements, values, what the graph says, and a picture
     Inspect(Inspect),
+    /// The JSON Schema of what a command prints under `--format json`
+    Schema(super::schema::Schema),
 }
 
 #[derive(Debug, Args)]
@@ -182,6 +184,13 @@ pub(crate) struct Output {
     /// Results only: no numbers, no evidence, no notices
     #[arg(long)]
     pub(crate) quiet: bool,
+}
+
+impl Default for Output {
+    /// Where nothing is to be chosen.
+    fn default() -> Self {
+        Self { format: Format::Text, ascii: false, color: Colour::Auto, quiet: false }
+    }
 }
 
 #[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]

@@ -17,6 +17,7 @@ mod input;
 mod inspect;
 mod messages;
 mod roots;
+mod schema;
 
 use std::io::Write;
 use std::process::ExitCode;
@@ -49,6 +50,9 @@ pub(crate) fn run() -> ExitCode {
             Command::Inspect(inspect) => {
                 let messages = Messages::new(&inspect.output());
                 finish(&messages, inspect::run(&inspect, &messages))
+            }
+            Command::Schema(schema) => {
+                finish(&Messages::new(&args::Output::default()), schema::run(&schema))
             }
         });
     match worker.map(std::thread::JoinHandle::join) {

@@ -394,9 +394,6 @@ impl<'c> Builder<'c> {
             *sum = &*sum + &gain;
         }
         gains.retain(|_, gain| !gain.is_zero());
-        if gains.is_empty() && pair.0 == pair.1 {
-            return Ok(());
-        }
         self.push(controlled_voltage(pair, &gains).choice(), vec![id], false);
         Ok(())
     }
