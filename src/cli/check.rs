@@ -9,7 +9,7 @@ use cofactor::analysis::check::{self, Verdict};
 use cofactor::analysis::{self, Entry, Notice, Options};
 use cofactor::circuit::{Ask, Circuit, Claim, Question, SymbolId, Value};
 use cofactor::language::{self, Diagnostic, Label, Severity, Span, UnitClash, line_and_column};
-use cofactor::typeset::answer::check::{self as typeset, Checked, Look, Outcome, Place, UnitError};
+use cofactor::typeset::answer::check::{self as typeset, Checked, Look, Place, UnitError};
 use cofactor::typeset::answer::{self, TextStyle};
 use cofactor::typeset::json;
 use cofactor::typeset::screen::{Characters, Screen};
@@ -188,29 +188,24 @@ impl Printer<'_> {
     /// Judges one claim and prints the verdict, or keeps it for the end.
     fn take(&mut self, posed: &Posed, index: usize) -> Result<(), Failure> {
         let claim = &posed.claim;
-        let outcome = match language::claim_units(self.written, claim) {
-            Err(clash) => Outcome::Units(unit_error(claim, &clash)),
-            Ok(unit) => {
-                let claim = self.with_numbers(claim);
-                let circuit = self.circuit;
-                let entry = self.entry(&claim)?;
-                let failed = |error: check::CheckError| Failure::check(&claim.name, &error);
-                let judgement = check::judge(circuit, &claim, entry, unit).map_err(failed)?;
-                let notices = judgement.notices.clone();
-                for notice in &notices {
-                    self.say(&claim.name, notice);
-                }
-                Outcome::Judged(Box::new(judgement))
-            }
+        let (unit, units) = match language::claim_units(self.written, claim) {
+            Ok(unit) => (Some(unit), None),
+            Err(clash) => (None, Some(unit_error(claim, &clash))),
         };
-        let checked = Checked { circuit: self.circuit, claim, index, outcome };
-        let verdict = checked.verdict();
-        self.verdicts.push(verdict);
-        if verdict == Verdict::EqualInLimit
-            && let Outcome::Judged(judgement) = &checked.outcome
-        {
-            self.in_limit(&claim.name, judgement);
+        let numbered = self.with_numbers(claim);
+        let circuit = self.circuit;
+        let entry = self.entry(&numbered)?;
+        let judgement = check::judge(circuit, &numbered, entry, unit)
+            .map_err(|error| Failure::check(&claim.name, &error))?;
+        for notice in &judgement.notices {
+            self.say(&claim.name, notice);
         }
+        let verdict = judgement.verdict;
+        self.verdicts.push(verdict);
+        if verdict == Verdict::EqualInLimit {
+            self.in_limit(&claim.name, &judgement);
+        }
+        let checked = Checked { circuit, claim, index, judgement, units };
         self.print(&checked, &self.sources[posed.source])
     }
 
@@ -226,10 +221,8 @@ impl Printer<'_> {
         let output = &self.arguments.output;
         match output.format {
             Format::Json => {
-                let place = match &checked.outcome {
-                    Outcome::Units(error) => Some(place(checked.claim, error, &source.text)),
-                    Outcome::Judged(_) => None,
-                };
+                let place = |error| place(checked.claim, error, &source.text);
+                let place = checked.units.as_ref().map(place);
                 self.results.push(typeset::result(checked, place));
                 Ok(())
             }
@@ -249,9 +242,7 @@ impl Printer<'_> {
                 text.push_str(&typeset::heading(checked));
                 text.push('\n');
                 text.push_str(&typeset::text(checked, style, &marked));
-                if let Outcome::Units(error) = &checked.outcome
-                    && !output.quiet
-                {
+                if let Some(error) = checked.units.as_ref().filter(|_| !output.quiet) {
                     text.push_str(&shown(checked.claim, error, source));
                     text.push('\n');
                 }

@@ -8,6 +8,7 @@ use std::collections::BTreeMap;
 
 use super::Right;
 use crate::algebra::{Fraction, Polynomial, Var};
+use crate::circuit::Number;
 
 /// Above or below the fraction bar.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -33,6 +34,16 @@ pub struct Difference {
     pub missing: Fraction,
     /// Terms that the claim has and should not have.
     pub extra: Fraction,
+}
+
+impl Difference {
+    /// Claimed over exact, where that is a number.
+    pub fn factor(&self) -> Option<Number> {
+        let ratio = self.claimed.checked_div(&self.exact)?;
+        let above = ratio.numerator().to_constant()?;
+        let below = ratio.denominator().to_constant()?;
+        (!ratio.is_zero()).then(|| Number::new(above, below))
+    }
 }
 
 /// The coefficients that differ, the numerator's first.

@@ -61,7 +61,7 @@ fn over_band(claimed: &Fraction, exact: &Fraction, values: &Values) -> Option<De
         let mut worst = (0.0_f64, None);
         for &hertz in &values.frequencies {
             let value = of(ratio(hertz));
-            if value.abs() > worst.0.abs() || (worst.1.is_none() && !value.is_nan()) {
+            if value.abs() > worst.0.abs() {
                 worst = (value, Some(hertz));
             }
         }
@@ -79,10 +79,17 @@ fn over_band(claimed: &Fraction, exact: &Fraction, values: &Values) -> Option<De
     })
 }
 
+/// What is smaller than this is the rounding of doubles.
+const ROUNDING: f64 = 1e-9;
+
 fn decibels(ratio: Complex<f64>) -> f64 {
-    20.0 * libm::log10(ratio.norm())
+    settled(20.0 * libm::log10(ratio.norm()))
 }
 
 fn degrees(ratio: Complex<f64>) -> f64 {
-    libm::atan2(ratio.im, ratio.re).to_degrees()
+    settled(libm::atan2(ratio.im, ratio.re).to_degrees())
+}
+
+fn settled(value: f64) -> f64 {
+    if value.abs() < ROUNDING { 0.0 } else { value }
 }

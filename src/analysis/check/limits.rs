@@ -50,7 +50,7 @@ pub(super) fn search(
     let mut left_out: Vec<Var> = variables(exact)
         .filter(|&variable| !claimed.numerator().contains(variable))
         .filter(|&variable| !claimed.denominator().contains(variable))
-        .filter(|&variable| !is_pi(circuit, variable))
+        .filter(|&variable| may_vary(circuit, variable))
         .collect();
     left_out.sort_unstable();
     left_out.dedup();
@@ -63,9 +63,12 @@ pub(super) fn search(
     if found.is_empty() { problem.matched(&whole) } else { found }
 }
 
-fn is_pi(circuit: &Circuit, variable: Var) -> bool {
-    let symbol = symbol_of(variable).and_then(|symbol| circuit.symbols.get(symbol.0 as usize));
-    symbol.is_some_and(|symbol| symbol.role == SymbolRole::Pi)
+/// Whether a variable is `s` or a symbol of the circuit: no constant goes to a limit.
+fn may_vary(circuit: &Circuit, variable: Var) -> bool {
+    symbol_of(variable).is_none_or(|symbol| {
+        let symbol = circuit.symbols.get(symbol.0 as usize);
+        symbol.is_some_and(|symbol| symbol.role != SymbolRole::Pi)
+    })
 }
 
 /// A polynomial in the symbols left out, over a prime field: exponents and residue of each term,
@@ -436,7 +439,7 @@ pub(super) fn of_root(
     let at_root = point.with(Var::S, residue);
     let left_out: Vec<Var> = polynomial
         .variables()
-        .filter(|&variable| variable != Var::S && !is_pi(circuit, variable))
+        .filter(|&variable| variable != Var::S && may_vary(circuit, variable))
         .filter(|&variable| !value.numerator().contains(variable))
         .filter(|&variable| !value.denominator().contains(variable))
         .collect();

@@ -16,7 +16,7 @@ pub(super) fn refute(
     claim: &Claim,
     entry: &Entry,
     symbols: Vec<Symbol>,
-    unit: Unit,
+    unit: Option<Unit>,
 ) -> Result<Judgement, CheckError> {
     let too_long = CheckError::TooLong { points: POINTS };
     let (ClosedForm::Nested(_), Some(elimination)) = (&entry.form, &entry.elimination) else {
@@ -33,7 +33,7 @@ pub(super) fn refute(
             && claimed != exact
         {
             return Ok(Judgement {
-                verdict: Verdict::Different,
+                verdict: if unit.is_some() { Verdict::Different } else { Verdict::UnitError },
                 limits: Vec::new(),
                 claimed: None,
                 exact: None,

@@ -72,8 +72,8 @@ pub struct Judgement {
     pub nearness: Option<Nearness>,
     /// The symbols of the formulas.
     pub symbols: Vec<Symbol>,
-    /// The unit of the claimed quantity.
-    pub unit: Unit,
+    /// The unit of the claimed quantity; none where the claim's own do not fit.
+    pub unit: Option<Unit>,
     /// Remarks.
     pub notices: Vec<Notice>,
 }
@@ -91,8 +91,10 @@ pub struct Right {
     pub zeros: (u32, u32),
 }
 
-/// Judges a claim whose units fit against the result that it names; the circuit's limits are taken in
-/// that result already.
+/// Judges a claim against the result that it names; the circuit's limits are taken in that result already.
+///
+/// `unit` is that of the answer, none where the claim's own units do not fit: then the verdict is
+/// [`Verdict::UnitError`], and only the repair is looked for.
 ///
 /// # Errors
 /// A formula too long for a proof, roots that do not exist, and values that are missing for a claim
@@ -105,7 +107,7 @@ pub fn judge(
     circuit: &Circuit,
     claim: &Claim,
     entry: &Entry,
-    unit: Unit,
+    unit: Option<Unit>,
 ) -> Result<Judgement, CheckError> {
     let symbols = symbols_of(circuit, claim, entry);
     let values = Values::new(circuit, entry, &symbols);
@@ -130,6 +132,12 @@ pub fn judge(
         unit,
         notices,
     };
+    if unit.is_none() {
+        judgement.verdict = Verdict::UnitError;
+        judgement.exact = subject.fraction().cloned();
+        judgement.explain(claim);
+        return Ok(judgement);
+    }
     if let (Some(exact), Some(claimed)) = (subject.fraction(), &claimed) {
         judgement.exact = Some(exact.clone());
         if exact == claimed && subject.has_right_sign(claim, &values) {

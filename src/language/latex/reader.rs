@@ -320,6 +320,7 @@ impl Reader<'_> {
                         Some(item) if item.subscript.is_none() => {
                             item.subscript = Some(text);
                             item.short = short;
+                            item.text.push_str(token.as_str());
                             item.span = item.span.join(span);
                         }
                         _ => return fault(span, "two subscripts in a row", |fault| fault),
@@ -329,6 +330,7 @@ impl Reader<'_> {
                     word: flattened(token.as_str()),
                     splits: true,
                     subscript: None,
+                    text: token.as_str().to_owned(),
                     short: false,
                     span,
                 }),
@@ -336,6 +338,7 @@ impl Reader<'_> {
                     word: flattened(&self.spelt(&token)?),
                     splits: token.as_str().starts_with("\\mathrm"),
                     subscript: None,
+                    text: token.as_str().to_owned(),
                     short: false,
                     span,
                 }),
@@ -435,7 +438,7 @@ impl Reader<'_> {
         let fault = Diagnostic::error(
             "unknown-name",
             item.span,
-            format!("no symbol of this circuit is written like that (`{whole}`)"),
+            format!("no symbol of this circuit is written `{}`", item.text),
         );
         Err(Box::new(match near {
             Some(near) => fault.help(format!("is it `{near}`?")),
@@ -479,6 +482,8 @@ struct Item {
     /// Whether it may be a product of names.
     splits: bool,
     subscript: Option<String>,
+    /// As written.
+    text: String,
     /// Whether the subscript is one character without braces.
     short: bool,
     span: Span,

@@ -122,7 +122,17 @@ impl<'a> Search<'a> {
         if let Some(ratio) = over(&|point, value, needed| point.quotient(needed, value))
             && let Some(ratio) = self.monomial(&ratio)
         {
-            changes.extend(self.times(part, &ratio));
+            // A sign or a number belongs to a whole term, or to the number that stands there.
+            let is_term =
+                matches!(parent, None | Some(Value::Sum(_))) || matches!(part, Value::Number(_));
+            let aside = if is_term { 0 } else { 110 };
+            let found = self.times(part, &ratio);
+            changes.extend(found.map(|(cost, change, by)| match change {
+                Change::Sign { .. } | Change::Factor { .. } | Change::Turns { .. } => {
+                    (cost + aside, change, by)
+                }
+                _ => (cost, change, by),
+            }));
         }
         let inverse = |point: &Point, value: u64, needed: u64| Some(point.field.mul(value, needed));
         if over(&inverse).is_some_and(|products| products.iter().all(|&product| product == 1)) {
@@ -187,7 +197,10 @@ impl<'a> Search<'a> {
         match ratio.powers.as_slice() {
             [] if number.is_one() => None,
             [] if (-number).is_one() => {
-                let by = Value::Negative(Box::new(part.clone()));
+                let by = match part {
+                    Value::Negative(inner) => (**inner).clone(),
+                    _ => Value::Negative(Box::new(part.clone())),
+                };
                 Some((cost::SIGN, Change::Sign { part: part.clone() }, by))
             }
             [] => {

@@ -2,7 +2,7 @@
 
 use serde::Serialize;
 
-use super::{Checked, Outcome, UnitError, names, of_frequency, words};
+use super::{Checked, UnitError, names, of_frequency, words};
 use crate::analysis::check::{Difference, Judgement, Repair, Side, Verdict};
 use crate::circuit::{Property, Relation};
 use crate::typeset::json::Warning;
@@ -146,7 +146,7 @@ pub fn result(checked: &Checked<'_>, place: Option<Place>) -> ClaimResult {
         line: (claim.line > 0).then_some(claim.line),
         claim: claim.text.clone(),
         relation: if claim.relation == Relation::Equal { "=" } else { "~" },
-        verdict: verdict(checked.verdict()),
+        verdict: verdict(checked.judgement.verdict),
         proof: None,
         limits: Vec::new(),
         alternatives: Vec::new(),
@@ -161,10 +161,8 @@ pub fn result(checked: &Checked<'_>, place: Option<Place>) -> ClaimResult {
         nearness: None,
         unit_error: None,
     };
-    match &checked.outcome {
-        Outcome::Judged(judgement) => fill(&mut result, checked, judgement),
-        Outcome::Units(error) => result.unit_error = Some(unit_error(error, &claim.text, place)),
-    }
+    fill(&mut result, checked, &checked.judgement);
+    result.unit_error = checked.units.as_ref().map(|error| unit_error(error, &claim.text, place));
     result
 }
 
@@ -233,11 +231,13 @@ fn repair(
     names: &SymbolTable,
 ) -> RepairObject {
     let text = |value: &_| words::language(&words::formula(value, letters), names);
+    let root = checked.claim.under_root.as_ref().map(text);
+    let text = |value: &_| words::with_root(text(value), value, checked.claim, root.as_deref());
     let quoted = |value: &_| format!("`{}`", text(value));
     RepairObject {
         kind: of.change.kind(),
         description: words::change(&of.change, checked.circuit, &quoted),
-        formula: text(&of.formula),
+        formula: words::times_root(text(&of.formula), root.as_deref()),
     }
 }
 

@@ -2,7 +2,7 @@
 
 use std::fmt::Write;
 
-use super::{Checked, Outcome, names, of_frequency, words};
+use super::{Checked, names, of_frequency, words};
 use crate::analysis::check::{Difference, Judgement, Side, Verdict};
 use crate::circuit::Value;
 use crate::typeset::answer::json::LATEX_WIDTH;
@@ -14,21 +14,14 @@ use crate::typeset::{Letter, Style, SymbolTable};
 pub fn latex(checked: &Checked<'_>) -> String {
     let mut out = String::new();
     let left = name(&checked.claim.name);
-    let Outcome::Judged(judgement) = &checked.outcome else {
-        let text = escaped(&checked.claim.text);
-        let _ = writeln!(
-            out,
-            "\\[\n{left} \\neq \\text{{{text}}}\\quad\\text{{(the units do not fit)}}\n\\]"
-        );
-        return out;
-    };
+    let judgement = &checked.judgement;
     let (names, letters) = names(judgement, of_frequency(checked.claim));
     let writer = Latex { names: &names, width: LATEX_WIDTH };
     let formula = writer.text(&words::formula(&checked.claim.formula, letters));
     let root = checked.claim.under_root.as_ref().map_or(String::new(), |root| {
         format!("\\,\\sqrt{{{}}}", writer.text(&words::formula(root, letters)))
     });
-    let (relation, remark) = remark(checked, judgement, &names);
+    let (relation, remark) = remark(checked, judgement);
     let _ = writeln!(out, "\\[\n{left} {relation} {formula}{root}\\quad\\text{{({remark})}}\n\\]");
     if judgement.verdict == Verdict::Different {
         for difference in &judgement.differences {
@@ -39,16 +32,12 @@ pub fn latex(checked: &Checked<'_>) -> String {
         let text = |value: &Value| format!("${}$", writer.text(&words::formula(value, letters)));
         let sentence = words::change(&repair.change, checked.circuit, &text);
         let right = writer.text(&words::formula(&repair.formula, letters));
-        let _ = writeln!(out, "\\[\n{left} = {right}\\quad\\text{{({sentence})}}\n\\]");
+        let _ = writeln!(out, "\\[\n{left} = {right}{root}\\quad\\text{{({sentence})}}\n\\]");
     }
     out
 }
 
-fn remark(
-    checked: &Checked<'_>,
-    judgement: &Judgement,
-    names: &SymbolTable,
-) -> (&'static str, String) {
+fn remark(checked: &Checked<'_>, judgement: &Judgement) -> (&'static str, String) {
     match judgement.verdict {
         Verdict::Equal if judgement.nearness.is_some() => ("\\approx", "near enough".to_owned()),
         Verdict::Equal => ("=", "proved".to_owned()),
@@ -58,10 +47,8 @@ fn remark(
                 steps.map(|step| escaped(&words::step_text(checked.circuit, step))).collect();
             ("\\to", format!("in the limit {}", steps.join(", ")))
         }
-        Verdict::Different | Verdict::UnitError => {
-            let _ = names;
-            ("\\neq", "wrong".to_owned())
-        }
+        Verdict::Different => ("\\neq", "wrong".to_owned()),
+        Verdict::UnitError => ("\\neq", "the units do not fit".to_owned()),
     }
 }
 

@@ -10,7 +10,7 @@ pub use latex::latex;
 pub use text::{Look, heading, summary, text};
 pub use words::step_text;
 
-use crate::analysis::check::{Judgement, Verdict};
+use crate::analysis::check::Judgement;
 use crate::circuit::{Circuit, Claim, Unit};
 use crate::typeset::{SymbolTable, shape::Lettering};
 
@@ -24,16 +24,9 @@ pub struct Checked<'a> {
     /// Its number, from 1.
     pub index: usize,
     /// What was found.
-    pub outcome: Outcome,
-}
-
-/// What was found about a claim.
-#[derive(Debug)]
-pub enum Outcome {
-    /// Its units fit, and it was judged.
-    Judged(Box<Judgement>),
-    /// Its units do not fit.
-    Units(UnitError),
+    pub judgement: Judgement,
+    /// Which of its units do not fit.
+    pub units: Option<UnitError>,
 }
 
 /// Two units that would have to be one, and where, in bytes of the claim's text.
@@ -47,16 +40,6 @@ pub struct UnitError {
     pub part: (usize, usize),
     /// The first summand; none where the whole formula is not in the unit of the answer.
     pub before: Option<(usize, usize)>,
-}
-
-impl Checked<'_> {
-    /// The verdict.
-    pub fn verdict(&self) -> Verdict {
-        match &self.outcome {
-            Outcome::Judged(judgement) => judgement.verdict,
-            Outcome::Units(_) => Verdict::UnitError,
-        }
-    }
 }
 
 /// The names of a judgement's symbols, and which of them are what.

@@ -4,7 +4,7 @@ use std::fmt::Write;
 
 use num_rational::BigRational;
 
-use super::{Checked, Outcome, names, of_frequency, words};
+use super::{Checked, names, of_frequency, words};
 use crate::algebra::Fraction;
 use crate::analysis::check::{Deviation, Difference, Judgement, Nearness, Right, Side, Verdict};
 use crate::circuit::{Relation, Value};
@@ -49,18 +49,15 @@ pub fn text(
     look: &dyn Fn(Look, &str) -> String,
 ) -> String {
     let mut writer = Writer { out: String::new(), style, look };
-    match &checked.outcome {
-        Outcome::Judged(judgement) => writer.judged(checked, judgement),
-        Outcome::Units(error) => {
-            let [left, right] =
-                [error.left, error.right].map(|unit| writer.unit(&unit.to_string()));
-            let what = match error.before {
-                Some(_) => format!("{right} is added to {left}"),
-                None => format!("the whole is in {right}, the answer in {left}"),
-            };
-            writer.verdict(Look::Bad, "unit error", &what);
-        }
+    if let Some(error) = &checked.units {
+        let [left, right] = [error.left, error.right].map(|unit| writer.unit(&unit.to_string()));
+        let what = match error.before {
+            Some(_) => format!("{right} is added to {left}"),
+            None => format!("the whole is in {right}, the answer in {left}"),
+        };
+        writer.verdict(Look::Bad, "unit error", &what);
     }
+    writer.judged(checked, &checked.judgement);
     writer.out
 }
 
@@ -108,6 +105,9 @@ impl Writer<'_> {
             Verdict::Equal => {
                 let reason = match &judgement.nearness {
                     Some(near) => self.near(near),
+                    None if judgement.squared => {
+                        "proved: the squares are the same fraction".to_owned()
+                    }
                     None => "proved: the same fraction in lowest terms".to_owned(),
                 };
                 self.verdict(Look::Good, "equal", &reason);
@@ -126,21 +126,24 @@ impl Writer<'_> {
                     self.fact("", &format!("or {set}"));
                 }
             }
-            Verdict::Different | Verdict::UnitError => {
-                self.different(judgement, &names, letters);
-            }
+            Verdict::Different => self.different(judgement, &names, letters),
+            Verdict::UnitError => {}
         }
         if self.style.quiet {
             return;
         }
         if let Some(repair) = &judgement.repair {
             let text = |value: &Value| self.line(&words::formula(value, letters), &names);
+            let root = checked.claim.under_root.as_ref().map(text);
+            let text = |value: &Value| {
+                words::with_root(text(value), value, checked.claim, root.as_deref())
+            };
             let sentence = words::change(&repair.change, checked.circuit, &text);
-            let formula = text(&repair.formula);
+            let formula = words::times_root(text(&repair.formula), root.as_deref());
             self.fact("repair", &sentence);
             self.fact("", &format!("{} = {formula}", checked.claim.name));
         }
-        if let Some(right) = &judgement.right {
+        if let Some(right) = judgement.right.as_ref().filter(|_| checked.units.is_none()) {
             let right = self.right(right);
             self.fact("right", &right);
         }
@@ -197,6 +200,18 @@ impl Writer<'_> {
         self.fact(side, &format!("coefficient of {power}"));
         self.fact("  claimed", &claimed);
         self.fact("  exact", &exact);
+        if let Some(factor) = of.factor() {
+            let text = match factor == -BigRational::from_integer(1.into()) {
+                true => "wrong sign".to_owned(),
+                false => format!(
+                    "too large by the factor {}",
+                    number::rounded(&factor, 6, self.medium())
+                ),
+            };
+            let marked = (self.look)(Look::Extra, &text);
+            self.fact("", &marked);
+            return;
+        }
         for (fraction, look, sign, word) in [
             (&of.missing, Look::Missing, '+', "  missing"),
             (&of.extra, Look::Extra, '-', "  extra"),

@@ -3,7 +3,7 @@
 use crate::algebra::Fraction;
 use crate::analysis::check::{Change, Step};
 use crate::analysis::limit_text;
-use crate::circuit::{Circuit, SymbolId, Value};
+use crate::circuit::{Circuit, Claim, SymbolId, Value};
 use crate::elimination::variable_of;
 use crate::typeset::shape::{Lettering, compact};
 use crate::typeset::{Dialect, Formula, SymbolTable, plain};
@@ -103,4 +103,18 @@ pub(super) fn change(
 /// A formula in the language, for programs and for pasting.
 pub(super) fn language(formula: &Formula, names: &SymbolTable) -> String {
     plain::text(formula, names, Dialect::Language)
+}
+
+/// A part of a claim as written: the whole has its root behind it.
+pub(super) fn with_root(text: String, value: &Value, claim: &Claim, root: Option<&str>) -> String {
+    if *value == claim.formula { times_root(text, root) } else { text }
+}
+
+/// A formula with the root that the claim has.
+pub(super) fn times_root(text: String, root: Option<&str>) -> String {
+    match root {
+        Some(root) if text == "1" => format!("sqrt({root})"),
+        Some(root) => format!("{text}*sqrt({root})"),
+        None => text,
+    }
 }
