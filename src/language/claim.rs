@@ -94,13 +94,7 @@ impl<'c> Formulas<'c> {
     /// Reads a formula of a claim, LaTeX or not; spans are moved by `offset`.
     fn read(&self, text: &str, offset: usize) -> Result<Expression, Vec<Diagnostic>> {
         if latex::is_latex(text) {
-            let words = ["s", "j"].into_iter().filter(|&word| word != "s" || !self.of_noise);
-            let mut names: Vec<&str> = self.known.keys().map(String::as_str).collect();
-            // Of two ways to write one name, the one with a dot is the name.
-            names.retain(|name| name.contains('.') || !self.is_identifier(name));
-            names.retain(|name| !matches!(*name, "w" | "jw" | "jomega"));
-            names.sort_unstable();
-            let names = latex::Names::new(names.into_iter().chain(words));
+            let names = self.latex_names();
             let unit = |expression: &Expression| self.unit(expression).map_err(|_| ());
             return latex::read(&latex::Context { names: &names, unit: &unit }, text, offset);
         }
@@ -114,6 +108,7 @@ impl<'c> Formulas<'c> {
         match read {
             Some(mut expression) => {
                 shift(&mut expression, offset);
+                self.settle_subscripts(&mut expression).map_err(|fault| vec![fault])?;
                 Ok(expression)
             }
             None => {
@@ -126,6 +121,63 @@ impl<'c> Formulas<'c> {
                     }
                 }
                 Err(faults)
+            }
+        }
+    }
+
+    /// The names of the circuit as LaTeX may have them.
+    fn latex_names(&self) -> latex::Names {
+        let words = ["s", "j"].into_iter().filter(|&word| word != "s" || !self.of_noise);
+        let mut names: Vec<&str> = self.known.keys().map(String::as_str).collect();
+        // Of two ways to write one name, the one with a dot is the name.
+        names.retain(|name| name.contains('.') || !self.is_identifier(name));
+        names.retain(|name| !matches!(*name, "w" | "jw" | "jomega"));
+        names.sort_unstable();
+        latex::Names::new(names.into_iter().chain(words))
+    }
+
+    /// Replaces unknown names with subscripts in the manner of LaTeX (`R_1`) by the names that they are.
+    fn settle_subscripts(&self, expression: &mut Expression) -> Result<(), Diagnostic> {
+        let mut unknown = false;
+        visit_names(expression, &mut |name, _| {
+            unknown |= name.contains('_') && !self.known.contains_key(name);
+        });
+        if !unknown {
+            return Ok(());
+        }
+        self.settle_with(&self.latex_names(), expression)
+    }
+
+    fn settle_with(
+        &self,
+        names: &latex::Names,
+        expression: &mut Expression,
+    ) -> Result<(), Diagnostic> {
+        match &mut expression.kind {
+            ExpressionKind::Name(name) if name.contains('_') && !self.known.contains_key(name) => {
+                match names.meaning(&latex::Name::of(name)) {
+                    latex::Meaning::One(meant) => *name = meant.to_owned(),
+                    latex::Meaning::Several(several) => {
+                        let message = format!("`{name}` has {} readings", several.len());
+                        let list: Vec<String> =
+                            several.iter().map(|name| format!("`{name}`")).collect();
+                        return Err(Diagnostic::error("latex", expression.span, message)
+                            .help(format!("write one of {}", list.join(", "))));
+                    }
+                    latex::Meaning::Nothing => {}
+                }
+                Ok(())
+            }
+            ExpressionKind::Number(_) | ExpressionKind::Name(_) | ExpressionKind::Call(..) => {
+                Ok(())
+            }
+            ExpressionKind::Sum(parts)
+            | ExpressionKind::Product(parts)
+            | ExpressionKind::Parallel(parts) => {
+                parts.iter_mut().try_for_each(|part| self.settle_with(names, part))
+            }
+            ExpressionKind::Power(inner, _) | ExpressionKind::Negative(inner) => {
+                self.settle_with(names, inner)
             }
         }
     }
@@ -577,7 +629,10 @@ pub(crate) fn complete_with(
     let mut formulas = Formulas::of_claim(circuit, target.of_noise);
     formulas.abbreviate(abbreviations);
     let expression = match draft.expression {
-        Some(expression) => expression,
+        Some(mut expression) => {
+            formulas.settle_subscripts(&mut expression).map_err(|fault| vec![fault])?;
+            expression
+        }
         None => formulas.read(&text, draft.span.start)?,
     };
     let (formula, under_root) = formulas.resolve_with_root(&expression)?;

@@ -152,11 +152,12 @@ fn latex_left(circuit: &Circuit, text: &str) -> Option<String> {
     names.extend(["w0", "w0^2", "f0", "Q", "dc", "hf"].map(str::to_owned));
     names.extend((1..=9).flat_map(|number| [format!("p{number}"), format!("z{number}")]));
     let table = latex::Names::new(names.iter().map(String::as_str));
-    let key = latex::left_side(text);
-    match table.meaning(&latex::Name(key)) {
+    let meaning = |text: &str| match table.meaning(&latex::Name(latex::left_side(text))) {
         latex::Meaning::One(name) => Some(name.to_owned()),
         _ => None,
-    }
+    };
+    // The source behind the bar says nothing new where there is only one.
+    meaning(text).or_else(|| meaning(text.split_once("\\big|")?.0))
 }
 
 /// The displayed formulas of a document.

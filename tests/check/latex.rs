@@ -166,7 +166,7 @@ fn doubts_are_errors_with_both_readings() {
     check(OPAMP, r"H = \frac{R_3}{R_1}", &["`R_3`"]);
     check(OPAMP, r"H = \frac{R_2}{R_1", &["ends too early"]);
     check(OPAMP, r"H = \sin{R_2}", &["`\\sin`"]);
-    check(OPAMP, r"H = -A_0 R_2 \parallel R_1 / R_1 + \frac{1}{2}", &["two readings"]);
+    check(OPAMP, r"H = -\frac{A_0 R_2 \parallel R_1}{R_1}", &["two readings"]);
     let devices = "in > voltage Vin > ground\nbjt Q1: base in, collector out, emitter ground, gm, rpi\n\
                    mosfet M1: gate in, drain out, source ground, gm\nout > RC > ground\nask H = V(out)/Vin\n";
     check(devices, r"H = -g_{m1} R_C + \frac{1}{2}", &["`Q1.gm`", "`M1.gm`"]);

@@ -41,9 +41,11 @@ impl Bench {
                 continue;
             }
             let answer = analysis::answer(&self.circuit, ask, &Options::default());
-            for entry in answer.unwrap_or_else(|error| panic!("{}: {error}", ask.name)) {
+            let answer = answer.unwrap_or_else(|error| panic!("{}: {error}", ask.name));
+            let several = answer.len() > 1;
+            for entry in answer {
                 let name = match &entry.source {
-                    Some(source) if ask.is_superposition() => format!("{}.{source}", entry.name),
+                    Some(source) if several => format!("{}.{source}", entry.name),
                     _ => entry.name.clone(),
                 };
                 self.entries.insert(name, entry);

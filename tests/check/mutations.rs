@@ -28,7 +28,7 @@ const MISTAKES: [Mistake; 6] = [
 ];
 
 /// How many mistakes are made in each formula.
-const EACH: usize = 11;
+const EACH: usize = 13;
 
 struct Mutant {
     mistake: Mistake,

@@ -102,6 +102,3 @@ fn syntax_fault(text: &str, offset: usize, error: &pest::error::Error<Rule>) -> 
         "a formula holds names with subscripts, `\\frac`, `\\sqrt`, `\\cdot`, `\\parallel`, powers, and pairs of parentheses or braces",
     )
 }
-
-#[cfg(test)]
-mod tests;

@@ -17,6 +17,13 @@ pub(crate) struct Names {
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub(crate) struct Name(pub(crate) String);
 
+impl Name {
+    /// A name as it is typed.
+    pub(crate) fn of(text: &str) -> Self {
+        Self(flattened(text))
+    }
+}
+
 /// What a name may stand for.
 pub(crate) enum Meaning<'a> {
     One(&'a str),

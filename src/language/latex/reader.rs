@@ -190,12 +190,10 @@ impl Reader<'_> {
             factors.extend(behind);
             Expression { span, ..product(factors) }
         };
-        let is_plain = groups.iter().all(|group| group.len() == 1 && group[0].parts.len() == 1);
-        let is_tight = groups.iter().all(|group| {
-            group.iter().all(|operand| operand.parts.len() == 1)
-                && group[1..].iter().all(|operand| operand.join == Join::Thin)
-        });
-        if is_plain || is_tight {
+        // Letters that touch, and thin spaces, bind more tightly than the bars.
+        let is_tight =
+            groups.iter().all(|group| group[1..].iter().all(|operand| operand.join == Join::Thin));
+        if is_tight {
             return Ok(products_first());
         }
         let (first, second) = (products_first(), bars_first());

@@ -143,14 +143,18 @@ fn replace(value: &Value, path: &[usize], by: Value) -> Value {
 
 /// Terms of a missing sum, and symbols in its formula, that still count as a single change.
 const LONGEST: usize = 4;
+/// Places that are tried.
+const MOST_PLACES: usize = 12;
 
 /// A sum of several terms that one of the claim's sums lacks; the shortest one.
 pub(super) fn missing_sum(formula: &Value, exact: &Fraction) -> Option<Repair> {
     let parts = Parts::new(formula);
     let mut best: Option<(usize, Repair)> = None;
-    let sums =
-        parts.list.iter().enumerate().filter(|(_, part)| matches!(part.value, Value::Sum(_)));
-    for (index, part) in sums {
+    let places = parts.list.iter().enumerate().filter(|(_, part)| {
+        let parent = part.parent.map(|parent| parts.list[parent].value);
+        matches!(part.value, Value::Sum(_)) || matches!(parent, None | Some(Value::Power(_, -1)))
+    });
+    for (index, part) in places.take(MOST_PLACES) {
         let Some(wanted) = parts.exactly(index, exact) else { continue };
         let Ok(own) = fraction_of(part.value) else { continue };
         let rest = &wanted - &own;
