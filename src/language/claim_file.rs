@@ -156,8 +156,11 @@ fn latex_left(circuit: &Circuit, text: &str) -> Option<String> {
         latex::Meaning::One(name) => Some(name.to_owned()),
         _ => None,
     };
-    // The source behind the bar says nothing new where there is only one.
-    meaning(text).or_else(|| meaning(text.split_once("\\big|")?.0))
+    // Behind a bar stands the source; it says nothing new where there is only one.
+    match text.split_once("\\big|") {
+        None => meaning(text),
+        Some((whole, source)) => meaning(&format!("{source}{whole}")).or_else(|| meaning(whole)),
+    }
 }
 
 /// The displayed formulas of a document.
