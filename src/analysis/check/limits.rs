@@ -15,8 +15,8 @@ use super::residues::Point;
 use super::values::variables;
 use crate::algebra::{Fraction, Polynomial, Var};
 use crate::analysis::limits::fraction_limit;
-use crate::circuit::{Circuit, Claim, Limit, LimitTo, SymbolId, SymbolRole};
-use crate::elimination::{symbol_of, variable_of};
+use crate::circuit::{Circuit, Claim, Limit, LimitTo, SymbolId, SymbolRole, Value};
+use crate::elimination::{fraction_of, symbol_of, variable_of};
 
 /// One condition of an idealisation; several are taken in their order.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -44,23 +44,37 @@ pub(super) fn search(
     exact: &Fraction,
     claimed: &Fraction,
 ) -> Vec<Vec<Step>> {
-    let symbols = circuit.symbols.len() + claim.extra.len();
-    let Some(point) = Point::random(symbols, 0x0c1a_1000) else { return Vec::new() };
-    let Some(target) = point.fraction(claimed) else { return Vec::new() };
-    let mut left_out: Vec<Var> = variables(exact)
-        .filter(|&variable| !claimed.numerator().contains(variable))
-        .filter(|&variable| !claimed.denominator().contains(variable))
-        .filter(|&variable| may_vary(circuit, variable))
-        .collect();
-    left_out.sort_unstable();
-    left_out.dedup();
-    if left_out.is_empty() {
-        return Vec::new();
-    }
-    let problem = Problem { circuit, exact, claimed, left_out, point, target };
+    let Some(problem) = Problem::new(circuit, claim, exact, claimed) else { return Vec::new() };
     let whole = problem.projection(exact);
     let found = problem.limits(&whole, MOST_STEPS, &[]);
     if found.is_empty() { problem.matched(&whole) } else { found }
+}
+
+/// The first of some changed claims that is right in a limit, with the limits; elements are not matched.
+pub(super) fn first_in_limit<T>(
+    circuit: &Circuit,
+    claim: &Claim,
+    exact: &Fraction,
+    claimed: &Fraction,
+    changed: impl Iterator<Item = (T, Value)>,
+) -> Option<(T, Value, Vec<Step>)> {
+    let mut problem = Problem::new(circuit, claim, exact, claimed)?;
+    let whole = problem.projection(exact);
+    for (what, value) in changed {
+        let Some(target) = problem.point.value(&value).filter(|&target| target != 0) else {
+            continue;
+        };
+        problem.target = target;
+        if !problem.is_promising(&whole) {
+            continue;
+        }
+        let Ok(claimed) = fraction_of(&value) else { continue };
+        let changed = Problem { claimed: &claimed, ..problem.clone() };
+        if let Some(steps) = changed.limits(&whole, MOST_STEPS, &[]).into_iter().next() {
+            return Some((what, value, steps));
+        }
+    }
+    None
 }
 
 /// Whether a variable is `s` or a symbol of the circuit: no constant goes to a limit.
@@ -82,6 +96,7 @@ struct State {
     below: Terms,
 }
 
+#[derive(Clone)]
 struct Problem<'a> {
     circuit: &'a Circuit,
     exact: &'a Fraction,
@@ -91,7 +106,28 @@ struct Problem<'a> {
     target: u64,
 }
 
-impl Problem<'_> {
+impl<'a> Problem<'a> {
+    /// None where the claim leaves nothing out.
+    fn new(
+        circuit: &'a Circuit,
+        claim: &Claim,
+        exact: &'a Fraction,
+        claimed: &'a Fraction,
+    ) -> Option<Self> {
+        let symbols = circuit.symbols.len() + claim.extra.len();
+        let point = Point::random(symbols, 0x0c1a_1000)?;
+        let target = point.fraction(claimed)?;
+        let mut left_out: Vec<Var> = variables(exact)
+            .filter(|&variable| !claimed.numerator().contains(variable))
+            .filter(|&variable| !claimed.denominator().contains(variable))
+            .filter(|&variable| may_vary(circuit, variable))
+            .collect();
+        left_out.sort_unstable();
+        left_out.dedup();
+        let whole = Self { circuit, exact, claimed, left_out, point, target };
+        (!whole.left_out.is_empty()).then_some(whole)
+    }
+
     fn projection(&self, fraction: &Fraction) -> State {
         State {
             above: self.project(fraction.numerator()),

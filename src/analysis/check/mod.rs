@@ -135,7 +135,7 @@ pub fn judge(
     if unit.is_none() {
         judgement.verdict = Verdict::UnitError;
         judgement.exact = subject.fraction().cloned();
-        judgement.explain(claim);
+        judgement.explain(circuit, claim);
         return Ok(judgement);
     }
     if let (Some(exact), Some(claimed)) = (subject.fraction(), &claimed) {
@@ -150,14 +150,14 @@ pub fn judge(
         if nearness.worst <= nearness.within {
             judgement.verdict = Verdict::Equal;
         } else {
-            judgement.explain(claim);
+            judgement.explain(circuit, claim);
         }
         judgement.nearness = Some(nearness);
         return Ok(judgement);
     }
     judgement.limits = subject.limits(circuit, claim);
     if judgement.limits.is_empty() {
-        judgement.explain(claim);
+        judgement.explain(circuit, claim);
     } else {
         judgement.verdict = Verdict::EqualInLimit;
     }
@@ -172,10 +172,10 @@ impl Judgement {
     }
 
     /// Says why a claim is wrong.
-    fn explain(&mut self, claim: &Claim) {
+    fn explain(&mut self, circuit: &Circuit, claim: &Claim) {
         let (Some(exact), Some(claimed)) = (&self.exact, &self.claimed) else { return };
         self.differences = compare::differences(claimed, exact);
-        self.repair = repair::nearest(claim, exact, self.squared, &self.symbols);
+        self.repair = repair::nearest(circuit, claim, exact, self.squared, &self.symbols);
         if subject::depends_on_s(exact) || subject::depends_on_s(claimed) {
             self.right = Some(compare::right(claimed, exact));
         }

@@ -93,7 +93,7 @@ impl<'a> Search<'a> {
                 let formula = parts.replaced(index, by);
                 let leaves = leaves(parts.list[index].value);
                 let cost = cost + leaves.min(99);
-                found.push(Candidate { cost, repair: Repair { change, formula } });
+                found.push(Candidate { cost, repair: Repair::new(change, formula) });
             }
         }
     }
@@ -276,7 +276,7 @@ impl<'a> Search<'a> {
         };
         let mut try_it = |cost: u32, change: Change, formula: Value| {
             if is_right(&formula) {
-                found.push(Candidate { cost, repair: Repair { change, formula } });
+                found.push(Candidate { cost, repair: Repair::new(change, formula) });
             }
         };
         let symbols: Vec<SymbolId> =

@@ -8,10 +8,12 @@
 //! The cheapest change that exact algebra confirms is the repair.
 
 mod candidates;
+mod in_limit;
 mod needed;
 
+use super::Step;
 use crate::algebra::Fraction;
-use crate::circuit::{Claim, Number, Symbol, SymbolId, SymbolRole, Value};
+use crate::circuit::{Circuit, Claim, Number, Symbol, SymbolId, SymbolRole, Value};
 use crate::elimination::fraction_of;
 
 /// A single change.
@@ -107,6 +109,14 @@ pub struct Repair {
     pub change: Change,
     /// The whole formula afterwards.
     pub formula: Value,
+    /// In which limit that is right; empty where it is right as it stands.
+    pub limits: Vec<Step>,
+}
+
+impl Repair {
+    fn new(change: Change, formula: Value) -> Self {
+        Self { change, formula, limits: Vec::new() }
+    }
 }
 
 /// A change that is to be confirmed; the cheaper, the likelier it is what went wrong.
@@ -122,6 +132,7 @@ const TRIED: usize = 12;
 ///
 /// `exact` is the square of what is right where `squared` is set.
 pub(super) fn nearest(
+    circuit: &Circuit,
     claim: &Claim,
     exact: &Fraction,
     squared: bool,
@@ -139,7 +150,9 @@ pub(super) fn nearest(
         fraction_of(&candidate.repair.formula).is_ok_and(|fraction| fraction == *exact)
     };
     let first = found.into_iter().take(TRIED).find(is_right).map(|candidate| candidate.repair);
-    first.or_else(|| needed::missing_sum(&claim.formula, exact))
+    first
+        .or_else(|| needed::missing_sum(&claim.formula, exact))
+        .or_else(|| in_limit::first(circuit, claim, exact))
 }
 
 /// Where the square is known: a factor, or an inverted ratio.
@@ -153,11 +166,11 @@ fn of_square(claim: &Claim, exact: &Fraction, symbols: &[Symbol]) -> Option<Repa
     let part = claim.formula.clone();
     if square == *exact {
         let formula = Value::Negative(Box::new(part.clone()));
-        return Some(Repair { change: Change::Sign { part }, formula });
+        return Some(Repair::new(Change::Sign { part }, formula));
     }
     if square.recip().as_ref() == Some(exact) {
         let formula = Value::Power(Box::new(part.clone()), -1);
-        return Some(Repair { change: Change::Inverted { part }, formula });
+        return Some(Repair::new(Change::Inverted { part }, formula));
     }
     let ratio = exact.checked_div(&square)?;
     let number =
@@ -166,7 +179,7 @@ fn of_square(claim: &Claim, exact: &Fraction, symbols: &[Symbol]) -> Option<Repa
         let factor = number(power);
         if fraction_of(&factor).ok().map(|f| f.pow(2)).as_ref() == Some(&ratio) {
             let formula = Value::Product(vec![factor.clone(), part.clone()]);
-            return Some(Repair { change: Change::Factor { part, factor }, formula });
+            return Some(Repair::new(Change::Factor { part, factor }, formula));
         }
     }
     let pi = symbols.iter().position(|symbol| symbol.role == SymbolRole::Pi)?;
@@ -175,7 +188,7 @@ fn of_square(claim: &Claim, exact: &Fraction, symbols: &[Symbol]) -> Option<Repa
         let factor = Value::Product(vec![number(power), Value::Power(Box::new(pi.clone()), power)]);
         if fraction_of(&factor).ok().map(|f| f.pow(2)).as_ref() == Some(&ratio) {
             let formula = Value::Product(vec![factor.clone(), part.clone()]);
-            return Some(Repair { change: Change::Turns { part, factor }, formula });
+            return Some(Repair::new(Change::Turns { part, factor }, formula));
         }
     }
     None

@@ -166,7 +166,7 @@ pub(super) fn missing_sum(formula: &Value, exact: &Fraction) -> Option<Repair> {
             let term = value_of(&rest);
             let formula = parts.replaced(index, with_term(part.value, term.clone()));
             let change = Change::MissingTerm { term, part: part.value.clone() };
-            best = Some((length, Repair { change, formula }));
+            best = Some((length, Repair::new(change, formula)));
         }
     }
     best.map(|(_, repair)| repair)

@@ -91,6 +91,8 @@ pub struct RepairObject {
     description: String,
     /// The whole formula afterwards.
     formula: String,
+    /// In which limit that is right; empty where it is right as it stands.
+    limits: Vec<String>,
 }
 
 /// What a wrong claim gets right.
@@ -238,6 +240,7 @@ fn repair(
         kind: of.change.kind(),
         description: words::change(&of.change, checked.circuit, &quoted),
         formula: words::times_root(text(&of.formula), root.as_deref()),
+        limits: of.limits.iter().map(|step| words::step_text(checked.circuit, step)).collect(),
     }
 }
 

@@ -39,7 +39,14 @@ pub fn heading(checked: &Checked<'_>) -> String {
         true => String::new(),
         false => format!(" of {}", claim.answer),
     };
-    format!("claim {}{line}: {}{owner} {relation} {text}", checked.index, claim.name)
+    let within = match &claim.relation {
+        Relation::Equal => String::new(),
+        Relation::About(within) => {
+            let percent = within * BigRational::from_integer(100.into());
+            format!(" within {} %", number::shortest(&percent))
+        }
+    };
+    format!("claim {}{line}: {}{owner} {relation} {text}{within}", checked.index, claim.name)
 }
 
 /// The verdict and the reasons; `look` marks pieces of it.
@@ -78,6 +85,9 @@ pub fn summary(verdicts: &[Verdict]) -> String {
     let noun = if verdicts.len() == 1 { "claim" } else { "claims" };
     format!("{} {noun}: {}", verdicts.len(), parts.join(", "))
 }
+
+/// Coefficients of a wrong claim that are shown; JSON has all.
+const MOST_SHOWN: usize = 3;
 
 /// Columns before the reasons.
 const INDENT: usize = 20;
@@ -140,7 +150,13 @@ impl Writer<'_> {
             };
             let sentence = words::change(&repair.change, checked.circuit, &text);
             let formula = words::times_root(text(&repair.formula), root.as_deref());
-            self.fact("repair", &sentence);
+            let steps = repair.limits.iter().map(|step| words::step_text(checked.circuit, step));
+            let steps: Vec<String> = steps.collect();
+            let when = match steps.is_empty() {
+                true => String::new(),
+                false => format!("; then it is right in the limit {}", steps.join(", ")),
+            };
+            self.fact("repair", &format!("{sentence}{when}"));
             self.fact("", &format!("{} = {formula}", checked.claim.name));
         }
         if let Some(right) = judgement.right.as_ref().filter(|_| checked.units.is_none()) {
@@ -179,8 +195,11 @@ impl Writer<'_> {
         if self.style.quiet || !judgement.has_powers() {
             return;
         }
-        for difference in &judgement.differences {
+        for difference in judgement.differences.iter().take(MOST_SHOWN) {
             self.difference(difference, names, letters);
+        }
+        if let Some(more) = judgement.differences.len().checked_sub(MOST_SHOWN).filter(|&n| n > 0) {
+            self.fact("", &format!("and {more} other coefficients"));
         }
     }
 
@@ -240,7 +259,10 @@ impl Writer<'_> {
         }
         let mut text = if facts.is_empty() { "nothing".to_owned() } else { facts.join(", ") };
         if right.poles.0 != right.poles.1 {
-            let _ = write!(text, "; it has {} poles, there are {}", right.poles.0, right.poles.1);
+            let noun = if right.poles.0 == 1 { "pole" } else { "poles" };
+            let verb = if right.poles.1 == 1 { "is" } else { "are" };
+            let (claimed, exact) = right.poles;
+            let _ = write!(text, "; the claim has {claimed} {noun}, there {verb} {exact}");
         }
         text
     }
