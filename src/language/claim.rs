@@ -18,6 +18,7 @@ use crate::circuit::{
 };
 use num_traits::Zero;
 use rustc_hash::FxHashMap;
+use std::collections::BTreeMap;
 
 /// Resolves the names of an expression.
 ///
@@ -85,7 +86,7 @@ impl<'c> Formulas<'c> {
     }
 
     /// Adds names that stand for values, where they are free.
-    fn abbreviate(&mut self, abbreviations: &FxHashMap<String, Value>) {
+    fn abbreviate(&mut self, abbreviations: &BTreeMap<String, Value>) {
         for (name, value) in abbreviations {
             self.known.entry(name.clone()).or_insert_with(|| value.clone());
         }
@@ -614,7 +615,7 @@ pub(crate) fn complete(
     text: String,
     line: u32,
 ) -> Result<Claim, Vec<Diagnostic>> {
-    complete_with(circuit, draft, text, line, &FxHashMap::default())
+    complete_with(circuit, draft, text, line, &BTreeMap::new())
 }
 
 /// As [`complete`], with names that stand for values.
@@ -623,7 +624,7 @@ pub(crate) fn complete_with(
     draft: ClaimDraft,
     text: String,
     line: u32,
-    abbreviations: &FxHashMap<String, Value>,
+    abbreviations: &BTreeMap<String, Value>,
 ) -> Result<Claim, Vec<Diagnostic>> {
     let target = claim_target::find(circuit, &draft.name).map_err(|fault| vec![fault])?;
     let mut formulas = Formulas::of_claim(circuit, target.of_noise);
@@ -667,7 +668,7 @@ pub(crate) fn abbreviation(
     circuit: &Circuit,
     text: &str,
     span: Span,
-    abbreviations: &FxHashMap<String, Value>,
+    abbreviations: &BTreeMap<String, Value>,
 ) -> Result<Value, Vec<Diagnostic>> {
     let mut formulas = Formulas::of_claim(circuit, false);
     formulas.abbreviate(abbreviations);

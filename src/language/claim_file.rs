@@ -4,8 +4,9 @@
 //! a LaTeX document (`\[ … \]`), as `derive --format latex` prints them. There a formula whose left side
 //! is no result is an abbreviation for those behind it.
 
+use std::collections::BTreeMap;
+
 use num_traits::Zero;
-use rustc_hash::FxHashMap;
 
 use super::claim::{self, complete};
 use super::claim_target;
@@ -22,10 +23,15 @@ use crate::circuit::{Circuit, Claim, Number, Value};
 /// # Errors
 /// What cannot be read or is unknown; spans are places in `text`.
 pub(super) fn one(circuit: &mut Circuit, text: &str) -> Result<Claim, Vec<Diagnostic>> {
-    let source = Source::new(text);
+    let source = Source::new(&with_sign(text));
     let start = source.text.len() - source.text.trim_start().len();
     let end = source.text.trim_end().len().max(start);
     statement(circuit, &source, &(start..end), 0)
+}
+
+/// With the sign for `\approx`, spaces behind it, so that every place stays where it is.
+fn with_sign(text: &str) -> String {
+    text.replace("\\approx", "≈    ")
 }
 
 /// Reads a file of claims.
@@ -34,9 +40,9 @@ pub(super) fn one(circuit: &mut Circuit, text: &str) -> Result<Claim, Vec<Diagno
 /// Everything that cannot be read or is unknown.
 pub(super) fn all(circuit: &mut Circuit, text: &str) -> Result<Vec<Claim>, Vec<Diagnostic>> {
     if text.contains("\\[") {
-        return document(circuit, text);
+        return document(circuit, &with_sign(text));
     }
-    let source = Source::new(text);
+    let source = Source::new(&with_sign(text));
     let (mut claims, mut faults) = (Vec::new(), Vec::new());
     for line in source.logical_lines() {
         let number = source.line(source.span(line.clone()).start);
@@ -166,7 +172,7 @@ fn latex_left(circuit: &Circuit, text: &str) -> Option<String> {
 /// The displayed formulas of a document.
 fn document(circuit: &Circuit, text: &str) -> Result<Vec<Claim>, Vec<Diagnostic>> {
     let (mut claims, mut faults) = (Vec::new(), Vec::new());
-    let mut abbreviations: FxHashMap<String, Value> = FxHashMap::default();
+    let mut abbreviations: BTreeMap<String, Value> = BTreeMap::new();
     let mut rest = 0;
     while let Some(open) = text[rest..].find("\\[") {
         let start = rest + open + 2;

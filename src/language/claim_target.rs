@@ -35,6 +35,8 @@ pub(crate) fn find(circuit: &Circuit, name: &Name) -> Result<Target, Diagnostic>
         circuit.asks.iter().flat_map(|ask| answers_of(circuit, ask)).collect();
     let exact = |wanted: &str| answers.iter().find(|answer| answer.name == wanted);
     let text = name.text.as_str();
+    // `H(s)` is the function `H`.
+    let text = ["(s)", "(f)"].iter().find_map(|end| text.strip_suffix(end)).unwrap_or(text);
     if let Some(answer) = exact(text) {
         return Ok(target(answer, Property::Function));
     }

@@ -162,6 +162,7 @@ fn is_undone(
 }
 
 #[test]
+#[expect(clippy::print_stdout, reason = "the share is a measurement")]
 fn single_mistakes_are_judged_and_mended() {
     let mut draw = Draw::new(7);
     let (mut judged, mut undone, mut misses) = (0, 0, Vec::new());

@@ -115,8 +115,7 @@ fn reference(
         !exact.is_zero() && claimed * scale.numerator() == exact * scale.denominator()
     };
     for side in [1, 0] {
-        for power in 0..truth[side].len() {
-            let exact = &truth[side][power];
+        for (power, exact) in truth[side].iter().enumerate() {
             if exact.len() == 1
                 && equal(side, power)
                 && let Some(unit) = Fraction::from(exact.clone()).recip()

@@ -9,6 +9,8 @@
 //! by term. So a candidate has to keep a term in which that holds already, and nearly all are
 //! discarded at once. What passes is confirmed by the exact limit of the fraction.
 
+use std::cell::Cell;
+
 use rustc_hash::FxHashSet;
 
 use super::residues::Point;
@@ -29,8 +31,10 @@ pub enum Step {
     Proportional([SymbolId; 4]),
 }
 
-/// States that one search may meet.
-const MOST_STATES: usize = 20_000;
+/// Terms that one search may touch: a bound by work, never by the clock.
+const MOST_WORK: usize = 1_000_000;
+/// Sets of matched elements that are continued.
+const MOST_SETS: usize = 400;
 /// Conditions of one set at most.
 const MOST_STEPS: usize = 6;
 /// Matched elements of one set at most, and limits beside them.
@@ -47,7 +51,11 @@ pub(super) fn search(
     let Some(problem) = Problem::new(circuit, claim, exact, claimed) else { return Vec::new() };
     let whole = problem.projection(exact);
     let found = problem.limits(&whole, MOST_STEPS, &[]);
-    if found.is_empty() { problem.matched(&whole) } else { found }
+    let mut found = if found.is_empty() { problem.matched(&whole) } else { found };
+    // Alone, a limit of `s` says most; among others, one of elements does.
+    let of_s = |step: &Step| matches!(step, Step::Limit(Limit { symbol: None, .. }));
+    found.sort_by_key(|set| set.len() > 1 && set.iter().any(of_s));
+    found
 }
 
 /// The first of some changed claims that is right in a limit, with the limits; elements are not matched.
@@ -104,6 +112,8 @@ struct Problem<'a> {
     left_out: Vec<Var>,
     point: Point,
     target: u64,
+    /// Terms touched so far.
+    work: Cell<usize>,
 }
 
 impl<'a> Problem<'a> {
@@ -124,7 +134,8 @@ impl<'a> Problem<'a> {
             .collect();
         left_out.sort_unstable();
         left_out.dedup();
-        let whole = Self { circuit, exact, claimed, left_out, point, target };
+        let work = Cell::new(0);
+        let whole = Self { circuit, exact, claimed, left_out, point, target, work };
         (!whole.left_out.is_empty()).then_some(whole)
     }
 
@@ -169,6 +180,13 @@ impl<'a> Problem<'a> {
         }
         sums.retain(|(_, residue)| *residue != 0);
         sums
+    }
+
+    /// Counts the terms of a state; false once the bound is passed.
+    fn may_touch(&self, state: &State) -> bool {
+        let work = self.work.get() + state.above.len() + state.below.len();
+        self.work.set(work);
+        work <= MOST_WORK
     }
 
     /// Whether the state is the claim, whatever the symbols that are left.
@@ -217,7 +235,7 @@ impl<'a> Problem<'a> {
             return None;
         }
         let below = power(&state.below)?;
-        let Some(above) = power(&state.above) else { return None };
+        let above = power(&state.above)?;
         let grows = match to {
             LimitTo::Infinity => above > below,
             LimitTo::Zero => above < below,
@@ -240,7 +258,6 @@ impl<'a> Problem<'a> {
     /// The least sets of limits from a state on, `before` being taken already.
     fn limits(&self, start: &State, most: usize, before: &[Step]) -> Vec<Vec<Step>> {
         let mut level: Vec<(Vec<(usize, LimitTo)>, State)> = vec![(Vec::new(), start.clone())];
-        let mut states = 0;
         for _ in 0..most {
             let mut next = Vec::new();
             let mut found: Vec<Vec<Step>> = Vec::new();
@@ -251,8 +268,10 @@ impl<'a> Problem<'a> {
                         continue;
                     }
                     for to in [LimitTo::Infinity, LimitTo::Zero] {
+                        if !self.may_touch(state) {
+                            return found;
+                        }
                         let Some(state) = self.limit(state, index, to) else { continue };
-                        states += 1;
                         let mut taken = taken.clone();
                         taken.push((index, to));
                         if self.is_target(&state) {
@@ -266,9 +285,6 @@ impl<'a> Problem<'a> {
                             }
                         }
                     }
-                }
-                if states > MOST_STATES {
-                    return found;
                 }
             }
             if !found.is_empty() {
@@ -310,6 +326,9 @@ impl<'a> Problem<'a> {
             let mut next = Vec::new();
             for (before, state) in &level {
                 for step in self.matches(before, matches == 1) {
+                    if !self.may_touch(state) {
+                        return best;
+                    }
                     let state = self.substituted(state, &step);
                     let mut steps = before.clone();
                     steps.push(step);
@@ -332,7 +351,7 @@ impl<'a> Problem<'a> {
                             best.push(set);
                         }
                     }
-                    if next.len() < MOST_STATES / 20
+                    if next.len() < MOST_SETS
                         && !matches!(steps.last(), Some(Step::Proportional(_)))
                     {
                         next.push((steps, state));
@@ -349,11 +368,11 @@ impl<'a> Problem<'a> {
         let replaced = |symbol: SymbolId| {
             before.iter().any(|step| matches!(step, Step::Matched(a, _) if *a == symbol))
         };
-        let last = before.iter().filter_map(|step| match step {
+        let mut last = before.iter().filter_map(|step| match step {
             Step::Matched(a, _) => Some(*a),
             _ => None,
         });
-        let last = last.last();
+        let last = last.next_back();
         let left_out: Vec<SymbolId> =
             self.left_out.iter().filter_map(|&variable| symbol_of(variable)).collect();
         let mut steps = Vec::new();

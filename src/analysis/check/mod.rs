@@ -153,6 +153,7 @@ pub fn judge(
             judgement.explain(circuit, claim);
         }
         judgement.nearness = Some(nearness);
+        judgement.deviation = deviation::worst(circuit, claim, &subject, &values);
         return Ok(judgement);
     }
     judgement.limits = subject.limits(circuit, claim);

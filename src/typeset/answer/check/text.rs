@@ -163,7 +163,9 @@ impl Writer<'_> {
             let right = self.right(right);
             self.fact("right", &right);
         }
-        if let Some(deviation) = &judgement.deviation {
+        if let Some(deviation) =
+            judgement.deviation.as_ref().filter(|_| judgement.nearness.is_none())
+        {
             let worst = self.worst(deviation);
             self.fact("worst", &worst);
         }
