@@ -8,6 +8,7 @@
 //! May use: [`crate::circuit`], [`crate::algebra`], [`crate::elimination`], [`crate::numeric`].
 
 mod answer;
+pub mod check;
 mod closed_form;
 mod error;
 mod feedback;

@@ -18,6 +18,8 @@ pub(crate) enum Command {
     Derive(Derive),
     /// Poles and zeros, and which elements set each
     Roots(Roots),
+    /// Every claim against the exact result: equal, equal in a limit, or where it is wrong
+    Check(super::check::Check),
     /// The circuit as understood: nodes, elements, values, what the graph says, and a picture
     Inspect(Inspect),
     /// The JSON Schema of what a command prints under `--format json`

@@ -1,6 +1,7 @@
 //! Why a run ended early: one type for files, questions and the work itself.
 
 use cofactor::analysis::AnalysisError;
+use cofactor::analysis::check::CheckError;
 use cofactor::analysis::roots::RootsError;
 use cofactor::language::{Diagnostic, line_and_column};
 use cofactor::typeset::json;
@@ -71,6 +72,16 @@ impl Failure {
             code: error.code(),
             message: format!("{question}: {error}"),
             help: error.help().map(str::to_owned),
+            exit: error.exit_code(),
+        }
+    }
+
+    /// A claim that cannot be judged.
+    pub(crate) fn check(claim: &str, error: &CheckError) -> Self {
+        Self::Plain {
+            code: error.code(),
+            message: format!("{claim}: {error}"),
+            help: error.help(),
             exit: error.exit_code(),
         }
     }

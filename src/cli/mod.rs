@@ -5,12 +5,13 @@
 //! | exit code | meaning |
 //! | --- | --- |
 //! | 0 | done |
-//! | 1 | a witness disagrees |
+//! | 1 | a claim is false, or a witness disagrees |
 //! | 2 | the command line or the file is wrong |
 //! | 3 | the circuit has no unique solution; the answer, a limit or a set of parameters does not exist |
 //! | 4 | a work bound was reached; what was found before was printed |
 
 mod args;
+mod check;
 mod derive;
 mod failure;
 mod input;
@@ -46,6 +47,10 @@ pub(crate) fn run() -> ExitCode {
             Command::Roots(roots) => {
                 let messages = Messages::new(&roots.output.output());
                 finish(&messages, roots::run(&roots, &messages))
+            }
+            Command::Check(check) => {
+                let messages = Messages::new(&check.output);
+                finish(&messages, check::run(&check, &messages))
             }
             Command::Inspect(inspect) => {
                 let messages = Messages::new(&inspect.output());

@@ -1,6 +1,7 @@
 //! A whole answer: the formula in its shape, with units, numbers, behaviour at the ends of the
 //! frequency axis and the evidence, as text or for JSON.
 
+pub mod check;
 mod evidence;
 mod json;
 mod latex;
