@@ -18,6 +18,7 @@ mod notice;
 mod numbers;
 mod port;
 mod posed;
+pub mod response;
 mod return_ratio;
 pub mod roots;
 mod two_port;

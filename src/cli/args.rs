@@ -18,6 +18,8 @@ pub(crate) enum Command {
     Derive(Derive),
     /// Poles and zeros, and which elements set each
     Roots(Roots),
+    /// Magnitude, phase and delay over the band, and answers over time: table, CSV or picture
+    Response(super::response::Response),
     /// The circuit as understood: nodes, elements, values, what the graph says, and a picture
     Inspect(Inspect),
 }

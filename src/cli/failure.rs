@@ -1,6 +1,7 @@
 //! Why a run ended early: one type for files, questions and the work itself.
 
 use cofactor::analysis::AnalysisError;
+use cofactor::analysis::response::ResponseError;
 use cofactor::analysis::roots::RootsError;
 use cofactor::language::{Diagnostic, line_and_column};
 use cofactor::typeset::json;
@@ -71,6 +72,16 @@ impl Failure {
             code: error.code(),
             message: format!("{question}: {error}"),
             help: error.help().map(str::to_owned),
+            exit: error.exit_code(),
+        }
+    }
+
+    /// A function without curves.
+    pub(crate) fn response(question: &str, error: &ResponseError) -> Self {
+        Self::Plain {
+            code: error.code(),
+            message: format!("{question}: {error}"),
+            help: error.help(),
             exit: error.exit_code(),
         }
     }

@@ -16,6 +16,7 @@ mod failure;
 mod input;
 mod inspect;
 mod messages;
+mod response;
 mod roots;
 
 use std::io::Write;
@@ -45,6 +46,10 @@ pub(crate) fn run() -> ExitCode {
             Command::Roots(roots) => {
                 let messages = Messages::new(&roots.output.output());
                 finish(&messages, roots::run(&roots, &messages))
+            }
+            Command::Response(response) => {
+                let messages = Messages::new(&response.output());
+                finish(&messages, response::run(&response, &messages))
             }
             Command::Inspect(inspect) => {
                 let messages = Messages::new(&inspect.output());

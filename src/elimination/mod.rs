@@ -43,6 +43,7 @@ pub use at_limit::InfiniteLimit;
 pub use error::EliminationError;
 pub use nested::{Nested, NestedFactor, NestedSum};
 pub use passes::gradient::Gradient;
+pub(crate) use passes::numbers::{Scaled, scaled_integer};
 pub use value::{DividesByZero, fraction_of, symbol_of, variable_of};
 
 /// What the work may cost.

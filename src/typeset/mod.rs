@@ -30,12 +30,14 @@ mod latex_name;
 mod linear;
 pub mod number;
 pub mod plain;
+pub mod plot;
 #[cfg(test)]
 mod random;
 pub mod screen;
 pub mod shape;
 pub mod svg;
 mod symbol;
+mod visible;
 
 pub use formula::{Formula, Letter, View};
 pub use linear::Dialect;

@@ -4,8 +4,10 @@
 mod evidence;
 mod json;
 mod latex;
+pub mod response;
 pub mod roots;
 mod sections;
+mod table;
 mod text;
 
 pub use evidence::evidence;

@@ -3,7 +3,6 @@
 mod json;
 mod latex;
 mod map;
-mod table;
 mod text;
 mod words;
 
