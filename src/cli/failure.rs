@@ -51,6 +51,12 @@ impl Failure {
         Self::plain("cannot-write", format!("the results cannot be written: {error}"), None)
     }
 
+    /// A file that cannot be written.
+    pub(crate) fn file(name: &str, error: &std::io::Error) -> Self {
+        let message = format!("`{name}` cannot be written: {error}");
+        Self::plain("cannot-write", message, Some("give a place where files may be made"))
+    }
+
     /// A work bound that was reached.
     pub(crate) fn bound(code: &'static str, message: String, help: &str) -> Self {
         Self::Plain { code, message, help: Some(help.to_owned()), exit: 4 }

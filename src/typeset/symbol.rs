@@ -24,6 +24,8 @@ pub enum Style {
     Identifier,
     /// LaTeX, mathematics mode.
     Latex,
+    /// MathML.
+    MathMl,
     /// As in the source, with Greek letters for their names.
     Unicode,
 }
@@ -35,6 +37,7 @@ pub struct SymbolName {
     ascii: String,
     identifier: String,
     latex: String,
+    mathml: String,
     unicode: String,
 }
 
@@ -45,6 +48,7 @@ impl SymbolName {
             ascii: ascii_name(source),
             identifier,
             latex: super::latex_name::latex_name(source),
+            mathml: super::mathml_name::mathml_name(source),
             unicode: unicode_name(source),
         }
     }
@@ -57,6 +61,7 @@ impl SymbolName {
             Style::Ascii => &self.ascii,
             Style::Identifier => &self.identifier,
             Style::Latex => &self.latex,
+            Style::MathMl => &self.mathml,
             Style::Unicode => &self.unicode,
         }
     }
@@ -137,17 +142,25 @@ impl SymbolTable {
     #[must_use]
     pub fn letter(&self, letter: Letter, style: Style) -> Cow<'_, str> {
         match letter {
-            Letter::S if self.of_frequency => "f".into(),
-            Letter::S => "s".into(),
-            Letter::Frequency => "f".into(),
+            Letter::S | Letter::Frequency => {
+                let is_s = letter == Letter::S && !self.of_frequency;
+                match (is_s, style) {
+                    (true, Style::MathMl) => "<mi>s</mi>".into(),
+                    (false, Style::MathMl) => "<mi>f</mi>".into(),
+                    (true, _) => "s".into(),
+                    (false, _) => "f".into(),
+                }
+            }
             Letter::Pi => match style {
                 Style::Source | Style::Ascii | Style::Identifier => "pi".into(),
                 Style::Latex => "\\pi".into(),
+                Style::MathMl => "<mi>π</mi>".into(),
                 Style::Unicode => "π".into(),
             },
             Letter::Symbol(index) => match (self.get(index), style) {
                 (Some(name), _) => name.styled(style).into(),
                 (None, Style::Latex) => format!("x_{{{index}}}").into(),
+                (None, Style::MathMl) => indexed("x", u64::from(index)).into(),
                 (None, _) => format!("x{index}").into(),
             },
             Letter::Definition(index) => {
@@ -160,11 +173,17 @@ impl SymbolTable {
                     Style::Latex => {
                         format!("\\mathrm{{{}}}_{{{number}}}", self.definition_stem).into()
                     }
+                    Style::MathMl => indexed(&self.definition_stem, number).into(),
                     _ => format!("{}{number}", self.definition_stem).into(),
                 }
             }
         }
     }
+}
+
+/// A letter with a number below, in MathML.
+fn indexed(stem: &str, number: u64) -> String {
+    format!("<msub><mi>{stem}</mi><mn>{number}</mn></msub>")
 }
 
 /// The name with Greek letters spelt out, and hexadecimal codes for other letters.

@@ -16,10 +16,10 @@ pub use time::{TimePlot, time};
 use super::svg::{Anchor, Picture};
 
 /// Width of every plot.
-const WIDTH: f64 = 640.0;
+const WIDTH: f64 = 660.0;
 /// Edges of the panels.
-const LEFT: f64 = 74.0;
-const RIGHT: f64 = 622.0;
+const LEFT: f64 = 84.0;
+const RIGHT: f64 = 626.0;
 /// Below the title and the key.
 const TOP: f64 = 62.0;
 
@@ -52,7 +52,11 @@ fn sheet(identifier: &str, height: f64, title: &str, description: &str) -> Pictu
         "fill:none;stroke:#0b5394;stroke-width:2.2;stroke-linejoin:round",
         "stroke:#7fbcf5",
     );
-    picture.rule(".envelope", "fill:#0b5394;fill-opacity:.16;stroke:none", "fill:#7fbcf5");
+    picture.rule(
+        ".envelope",
+        "fill:#0b5394;fill-opacity:.16;stroke:#0b5394;stroke-width:.6",
+        "fill:#7fbcf5;stroke:#7fbcf5",
+    );
     picture.rule(
         ".asymptote",
         "fill:none;stroke:#5c5c5c;stroke-width:1.2;stroke-dasharray:7 4",
@@ -96,7 +100,7 @@ fn key(picture: &mut Picture, signs: &[(Sign, String)]) {
             }
         }
         picture.text("", [x, y + 4.5], Anchor::Start, words);
-        x += 7.0 * words.chars().count() as f64 + 18.0;
+        x += 6.7 * words.chars().count() as f64 + 18.0;
     }
 }
 

@@ -84,7 +84,7 @@ pub(crate) fn label(entry: &Entry) -> String {
 }
 
 /// The unit of the upper quantity of a ratio when the lower one is 1.
-fn time_unit(ask: &Ask, entry: &Entry) -> Unit {
+pub(crate) fn time_unit(ask: &Ask, entry: &Entry) -> Unit {
     match ask.transfers().first().map(|transfer| transfer.numerator) {
         Some(Probe::Voltage(..)) => Unit::VOLT,
         Some(Probe::Current(_)) => Unit::AMPERE,

@@ -4,7 +4,7 @@ mod json;
 mod latex;
 mod map;
 mod text;
-mod words;
+pub(crate) mod words;
 
 pub use json::{ROOTS_SCHEMA, Roots, RootsResult, results};
 pub use latex::latex;
