@@ -186,7 +186,7 @@ fn remarks(loaded: &Loaded) -> Vec<Notice> {
     let notice = |warning: cofactor::typeset::json::Warning| Notice {
         code: "text",
         message: warning.message,
-        line: warning.line.and_then(|line| u32::try_from(line).ok()).unwrap_or(0),
+        line: warning.line.unwrap_or(0),
     };
     warnings.map(notice).collect()
 }

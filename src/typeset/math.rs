@@ -24,6 +24,7 @@ pub(crate) enum Sign {
     Approximately,
     MuchGreater,
     Comma,
+    Colon,
 }
 
 /// Sets formulas with these names.
@@ -124,6 +125,7 @@ impl Math {
             Sign::Comma => {
                 (",\\quad ", "<mo separator=\"true\">,</mo><mspace width=\"1em\"></mspace>", ", ")
             }
+            Sign::Colon => (":\\quad ", "<mo>:</mo><mspace width=\"0.6em\"></mspace>", ": "),
         };
         Self { latex: latex.into(), mathml: mathml.into(), plain: plain.into() }
     }

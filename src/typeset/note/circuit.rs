@@ -1,7 +1,7 @@
 //! The circuit: drawing, elements, parameters, limits.
 
-use super::Material;
 use super::document::{Blocks, Cell, Inline, Table, code, text};
+use super::{Material, words};
 use crate::circuit::{Class, Law, NodeId, SymbolRole};
 use crate::typeset::drawing::{MOST_ELEMENTS, draw};
 use crate::typeset::inspect::{Values, class_word, listing, nominal};
@@ -51,11 +51,7 @@ fn elements(blocks: &mut Blocks, material: &Material<'_>) {
             },
         };
         let tolerance = symbol.and_then(|symbol| symbol.tolerance.as_ref());
-        let tolerance =
-            tolerance.map(|tolerance| match tolerance.text.starts_with(['+', '-', '−']) {
-                true => tolerance.text.clone(),
-                false => format!("± {}", tolerance.text),
-            });
+        let tolerance = tolerance.map(words::tolerance);
         let ends = if is_mutual {
             [Cell::text("–"), Cell::text("–")]
         } else {

@@ -118,11 +118,26 @@ impl Blocks {
         self.all.push(Block::Equation(math));
     }
 
-    /// A table; none without rows.
-    pub(super) fn table(&mut self, table: Table) {
-        if !table.rows.is_empty() {
-            self.all.push(Block::Table(table));
+    /// A table without its empty columns; none without rows.
+    pub(super) fn table(&mut self, mut table: Table) {
+        if table.rows.is_empty() {
+            return;
         }
+        let is_empty = |cell: &Cell| match cell.content.as_slice() {
+            [] => true,
+            [Inline::Text(words)] => words.is_empty(),
+            _ => false,
+        };
+        let columns = 0..table.head.len();
+        let kept: Vec<bool> = columns
+            .map(|column| {
+                table.rows.iter().any(|row| row.get(column).is_some_and(|c| !is_empty(c)))
+            })
+            .collect();
+        let keep = |column: usize| kept.get(column).copied().unwrap_or(true);
+        retain(&mut table.head, keep);
+        table.rows.iter_mut().for_each(|row| retain(row, keep));
+        self.all.push(Block::Table(table));
     }
 
     pub(super) fn listing(&mut self, text: &str) {
@@ -138,4 +153,13 @@ impl Blocks {
         let picture = picture.named(&format!("figure-{name}"));
         self.all.push(Block::Figure(Figure { name, picture, caption }));
     }
+}
+
+/// Keeps the items whose place is kept.
+fn retain<T>(items: &mut Vec<T>, keep: impl Fn(usize) -> bool) {
+    let mut place = 0;
+    items.retain(|_| {
+        place += 1;
+        keep(place - 1)
+    });
 }

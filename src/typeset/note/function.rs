@@ -170,8 +170,7 @@ fn where_list(blocks: &mut Blocks, material: &Material<'_>, entry: &Entry, names
             None => item.push(text(format!(", in {}, without a number", symbol.unit))),
         }
         if let Some(tolerance) = &symbol.tolerance {
-            let plus_minus = if tolerance.text.starts_with(['+', '-', '−']) { "" } else { "± " };
-            item.push(text(format!(" {plus_minus}{}", tolerance.text)));
+            item.push(text(format!(" {}", words::tolerance(tolerance))));
         }
         items.push(item);
     }

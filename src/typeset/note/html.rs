@@ -1,5 +1,5 @@
 //! A note as one HTML page: MathML Core, inline SVG, styles for screens light and dark and for paper; no
-//! script, nothing fetched. A content policy in the page forbids both, whatever the text holds.
+//! script, nothing fetched. It is well-formed XML too. A content policy in the page forbids both, whatever the text holds.
 
 use std::fmt::Write;
 
@@ -14,11 +14,11 @@ pub fn page(document: &Document) -> String {
     let title = text(&document.title);
     let _ = write!(
         out,
-        "<!DOCTYPE html>\n<html lang=\"en\">\n<head>\n<meta charset=\"utf-8\">\n<meta \
+        "<!DOCTYPE html>\n<html lang=\"en\">\n<head>\n<meta charset=\"utf-8\"/>\n<meta \
          http-equiv=\"Content-Security-Policy\" content=\"default-src 'none'; style-src \
-         'unsafe-inline'\">\n<meta name=\"viewport\" content=\"width=device-width, \
-         initial-scale=1\">\n<meta name=\"color-scheme\" content=\"light \
-         dark\">\n<title>{title}</title>\n<style>{STYLE}</style>\n</head>\n<body>\n<main>\n<h1>{title}</h1>\n"
+         'unsafe-inline'\"/>\n<meta name=\"viewport\" content=\"width=device-width, \
+         initial-scale=1\"/>\n<meta name=\"color-scheme\" content=\"light \
+         dark\"/>\n<title>{title}</title>\n<style>{STYLE}</style>\n</head>\n<body>\n<main>\n<h1>{title}</h1>\n"
     );
     let mut blocks = document.blocks.iter();
     // The contents stand behind what opens the note.
@@ -98,16 +98,15 @@ fn table(out: &mut String, table: &Table) -> std::fmt::Result {
          <caption>{caption}</caption>\n<thead>\n<tr>"
     );
     for head in &table.head {
-        let _ = write!(out, "<th scope=\"col\">{}</th>", inlines(head));
+        let _ = write!(out, "<th scope=\"col\">{}</th>", header(head));
     }
     out.push_str("</tr>\n</thead>\n<tbody>\n");
     for row in &table.rows {
         out.push_str("<tr>");
         for (index, cell) in row.iter().enumerate() {
-            let content = inlines(&cell.content);
             let _ = match index {
-                0 => write!(out, "<th scope=\"row\">{content}</th>"),
-                _ => write!(out, "<td{}>{content}</td>", classes(cell)),
+                0 => write!(out, "<th scope=\"row\">{}</th>", header(&cell.content)),
+                _ => write!(out, "<td{}>{}</td>", classes(cell), inlines(&cell.content)),
             };
         }
         out.push_str("</tr>\n");
@@ -138,6 +137,18 @@ fn inlines(content: &[Inline]) -> String {
     content.iter().map(one).collect()
 }
 
+/// The heading of a row or a column: formulas bear their name in words, by which cells are announced.
+fn header(content: &[Inline]) -> String {
+    let one = |inline: &Inline| match inline {
+        Inline::Math(math) => {
+            let words = text(&math.plain);
+            format!("<math role=\"math\" aria-label=\"{words}\">{}</math>", math.mathml)
+        }
+        other => inlines(std::slice::from_ref(other)),
+    };
+    content.iter().map(one).collect()
+}
+
 fn mathematics(math: &Math, display: bool) -> String {
     let block = if display { " display=\"block\"" } else { "" };
     format!("<math{block} alttext=\"{}\">{}</math>", text(&math.plain), math.mathml)
@@ -161,11 +172,11 @@ code{overflow-wrap:anywhere}
 pre{overflow-x:auto;padding:.8rem;border:1px solid #cfd6da;background:#f4f6f6;line-height:1.4}
 pre code{font-size:1em;overflow-wrap:normal}
 math{font-family:'Latin Modern Math','STIX Two Math','Cambria Math',math;font-size:1.08em}
-.wide{overflow-x:auto;max-width:100%}
-.formula{margin:.9rem 0;padding:.15rem 0}
+.wide{overflow-x:auto;overflow-y:hidden;max-width:100%}
+.formula{margin:.7rem 0;padding:.3rem 0}
 .formula math{margin:0;text-align:left}
 .rows mtd{text-align:left;padding:.12em 0}
-table{border-collapse:collapse;font-size:.92rem;margin:.4rem 0}
+table{border-collapse:collapse;min-width:min(36rem,100%);font-size:.92rem;margin:.4rem 0}
 caption{text-align:left;font-size:.92rem;color:#46535a;padding:.3rem 0}
 th,td{border-bottom:1px solid #cfd6da;padding:.25rem .6rem;text-align:left;vertical-align:baseline}
 thead th{border-bottom:2px solid #8a979e;white-space:nowrap}

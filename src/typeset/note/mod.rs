@@ -83,7 +83,7 @@ pub fn document(material: &Material<'_>) -> Document {
 mod words {
     use num_rational::BigRational;
 
-    use crate::circuit::Unit;
+    use crate::circuit::{Tolerance, Unit};
     use crate::typeset::number::{self, Medium};
 
     /// A value with its unit and a prefix.
@@ -108,6 +108,12 @@ mod words {
         let text = format!("{value:.places$}");
         let is_zero = text.trim_start_matches('-').chars().all(|c| matches!(c, '0' | '.'));
         if is_zero { text.trim_start_matches('-').to_owned() } else { text.replace('-', "−") }
+    }
+
+    /// `± 1 %`, `−20 % +80 %`.
+    pub(super) fn tolerance(tolerance: &Tolerance) -> String {
+        let text = tolerance.text.replace('-', "−");
+        if text.starts_with(['+', '−']) { text } else { format!("± {text}") }
     }
 
     /// A unit, empty for none.

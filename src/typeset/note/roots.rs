@@ -287,16 +287,15 @@ fn approximated(
                     square_root(q_squared, &polynomial),
                 ]);
             }
-            Math::row([vec![Math::text(&format!("{name}: "))], parts].concat())
+            Math::row([vec![Math::name(name), Math::sign(Sign::Colon)], parts].concat())
         }
     };
     blocks.equation(math);
-    let mut said = if exact {
-        vec![text(format!("{name} exactly"))]
-    } else {
-        let error = words::rounded(100.0 * found.relative_error, 2);
-        vec![text(format!("{name} within {error} % at the nominal values"))]
-    };
+    if exact && found.conditions.is_empty() {
+        return;
+    }
+    let error = words::rounded(100.0 * found.relative_error, 2);
+    let mut said = vec![text(format!("within {error} % at the nominal values"))];
     for (index, condition) in found.conditions.iter().enumerate() {
         said.push(text(if index == 0 { ", while " } else { ", " }));
         let [large, small] = phrases::sides(condition, letters);
@@ -329,7 +328,7 @@ pub(super) fn section_lines(sections: &[Section], setter: Setter<'_>) -> Vec<Inl
             0 => "constant: ".to_owned(),
             order => format!("{kind}, order {order}: "),
         };
-        let mut parts = vec![Math::text(&title)];
+        let mut parts = vec![Math::text(title.trim_end_matches(": ")), Math::sign(Sign::Colon)];
         for (index, quantity) in section.quantities.iter().enumerate() {
             if index > 0 {
                 parts.push(Math::sign(Sign::Comma));

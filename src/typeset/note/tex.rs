@@ -38,7 +38,7 @@ pub fn source(document: &Document) -> String {
     let title = text(&document.title);
     let _ = writeln!(
         out,
-        "\\begin{{document}}\n{{\\LARGE\\sffamily\\bfseries {title}\\par}}\\bigskip\n"
+        "\\begin{{document}}\n{{\\LARGE\\sffamily\\bfseries {title}\\par}}\\bigskip\n\\raggedright\n"
     );
     for block in &document.blocks {
         write_block(&mut out, block);
@@ -90,18 +90,18 @@ fn write_block(out: &mut String, block: &Block) {
 }
 
 /// Characters beside each other on a line, at the size of tables.
-const LINE: usize = 96;
+const LINE: usize = 80;
 
 fn table(out: &mut String, table: &Table) -> std::fmt::Result {
     let lengths = lengths(table);
     let whole: usize = lengths.iter().map(|length| length + 3).sum();
-    let columns = table.head.len().max(1);
     let is_right =
         |column: usize| table.rows.iter().all(|row| row.get(column).is_some_and(|c| c.right));
+    let size = if whole > LINE { "\\footnotesize" } else { "\\small" };
     let mut format = String::new();
     for (column, &length) in lengths.iter().enumerate() {
         // Long columns share what is left of the line.
-        if whole > LINE && length > 22 {
+        if whole > LINE && length > 15 {
             let part = (length as f64 / whole as f64).clamp(0.14, 0.5);
             let _ = write!(format, ">{{\\raggedright\\arraybackslash}}p{{{part:.2}\\linewidth}}");
         } else {
@@ -110,8 +110,8 @@ fn table(out: &mut String, table: &Table) -> std::fmt::Result {
     }
     let _ = write!(
         out,
-        "{{\\small\\setlength{{\\tabcolsep}}{{4pt}}\\setlength{{\\LTleft}}{{0pt}}\n\\begin{{longtable}}{{{format}}}\n\
-         \\multicolumn{{{columns}}}{{@{{}}p{{\\linewidth}}@{{}}}}{{\\sffamily {}}}\\\\[3pt]\n",
+        "\n{{\\small\\sffamily {}}}\\nopagebreak\n{{{size}\\setlength{{\\tabcolsep}}{{3pt}}\\setlength{{\\LTleft}}{{0pt}}\
+         \\setlength{{\\LTpre}}{{3pt}}\n\\begin{{longtable}}{{{format}}}\n",
         inlines(&table.caption)
     );
     let heads: Vec<String> = table.head.iter().map(|head| inlines(head)).collect();
@@ -120,8 +120,7 @@ fn table(out: &mut String, table: &Table) -> std::fmt::Result {
     let _ = writeln!(out, "{heads} \\\\ \\hline \\endfirsthead\n{heads} \\\\ \\hline \\endhead");
     for row in &table.rows {
         let cells: Vec<String> = row.iter().map(cell).collect();
-        // Braces keep a bracket of the next row from being read as an argument.
-        let _ = writeln!(out, "{} \\\\{{}}", cells.join(" & "));
+        let _ = writeln!(out, "{} \\\\", cells.join(" & "));
     }
     writeln!(out, "\\hline\n\\end{{longtable}}}}")
 }
@@ -129,6 +128,7 @@ fn table(out: &mut String, table: &Table) -> std::fmt::Result {
 fn cell(cell: &Cell) -> String {
     let content = inlines(&cell.content);
     match cell.heat {
+        // A bracket or a star behind the end of a row would be read as its argument.
         0 => format!("{{}}{content}"),
         heat if heat > 0 => format!("\\cellcolor{{up{heat}}}{content}"),
         heat => format!("\\cellcolor{{down{}}}{content}", -heat),

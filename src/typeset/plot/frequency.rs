@@ -84,9 +84,9 @@ impl FrequencyPlot<'_> {
     }
 
     fn signs(&self) -> Vec<(Sign, String)> {
-        let mut signs = vec![(Sign::Curve(Kind::Exact), "exact, nominal values".to_owned())];
+        let mut signs = vec![(Sign::Curve(Kind::Exact), "exact".to_owned())];
         if let Some(Envelope { trials, .. }) = self.envelope {
-            let words = format!("{trials} circuits within tolerances");
+            let words = format!("{trials} within tolerances");
             signs.push((Sign::Curve(Kind::Envelope), words));
         }
         signs

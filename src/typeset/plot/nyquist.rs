@@ -54,7 +54,7 @@ pub fn nyquist(identifier: &str, plot: &FrequencyPlot<'_>) -> Picture {
     picture.text("", [(LEFT + RIGHT) / 2.0, bottom + 37.0], Anchor::Middle, "real part");
     picture.upright_text("", [14.0, (TOP + bottom) / 2.0], Anchor::Middle, "imaginary part");
     picture.begin_clip([LEFT, TOP], [side, side]);
-    let limit = |place: f64| place.clamp(-1e5, 1e5);
+    let limit = |place: f64| place.clamp(-3e3, 3e3);
     let place = |value: &Complex<f64>| [limit(x.place(value.re)), limit(y.place(value.im))];
     let mirror: Vec<[f64; 2]> = values.iter().map(|value| place(&value.conj())).collect();
     picture.path("mirror", &mirror);

@@ -33,7 +33,7 @@ pub fn time(identifier: &str, plot: &TimePlot<'_>) -> Picture {
     );
     let panel_height = [TOP, 300.0];
     let mut picture = sheet(identifier, panel_height[1] + 48.0, plot.title, &words);
-    key(&mut picture, &[(Sign::Curve(Kind::Exact), "exact, nominal values".to_owned())]);
+    key(&mut picture, &[(Sign::Curve(Kind::Exact), "exact".to_owned())]);
     // The line of 0 is a reference.
     let with_zero = [shown[0].min(0.0), shown[1].max(0.0)];
     let across = scale::from_start([first[0], last[0]], "s", 7);
