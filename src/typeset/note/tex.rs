@@ -22,6 +22,7 @@ const PREAMBLE: &str = "\\documentclass[11pt,a4paper]{article}
 \\setlength{\\parindent}{0pt}
 \\setlength{\\parskip}{5pt plus 2pt}
 \\setlength{\\emergencystretch}{3em}
+\\renewcommand{\\arraystretch}{1.18}
 \\allowdisplaybreaks
 \\pagestyle{plain}
 \\definecolor{up1}{HTML}{FDF0E1}\\definecolor{up2}{HTML}{F9D5AE}\\definecolor{up3}{HTML}{F3B273}
