@@ -25,7 +25,7 @@ mod survey;
 mod two_port;
 
 pub use answer::{Entry, answer};
-pub use closed_form::{Closed, ClosedForm, total};
+pub use closed_form::{ClosedForm, Length};
 pub use error::AnalysisError;
 pub use limits::limit_text;
 pub use noise::{BandNoise, Contributor, Noise, TotalNoise};
@@ -34,7 +34,7 @@ pub use numbers::NumericForm;
 pub use survey::{Numbers, Survey, survey};
 
 use crate::circuit::{Circuit, ElementId, Transfer};
-use crate::elimination::{Elimination, Limits, TermCounts};
+use crate::elimination::{Elimination, Limits};
 use crate::numeric::Report;
 use posed::Posed;
 
@@ -70,8 +70,8 @@ pub struct Check {
 pub struct Derivation {
     /// The formula, in lowest terms, with the circuit's limits taken.
     pub form: ClosedForm,
-    /// How many terms it has expanded, by powers of `s`.
-    pub counts: TermCounts,
+    /// How many terms it has expanded.
+    pub length: Length,
     /// The formula with the nominal values put in, where all are known and that is affordable.
     pub numeric: Option<NumericForm>,
     /// What the witnesses say of the function, before limits are taken.

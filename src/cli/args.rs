@@ -40,6 +40,9 @@ pub(crate) struct Derive {
     /// How formulas are written; by default the shortest that one would write by hand
     #[arg(long, value_enum)]
     pub(crate) shape: Option<ShapeName>,
+    /// Say below each answer what its symbols are: unit, value, tolerance
+    #[arg(long = "where")]
+    pub(crate) legend: bool,
     /// Split every ratio around this dependent source: ideal gain, return ratio, feed-through
     #[arg(long, value_name = "SOURCE")]
     pub(crate) feedback: Option<String>,

@@ -3,7 +3,7 @@
 use std::sync::mpsc;
 use std::time::{Duration, Instant};
 
-use cofactor::analysis::{self, ClosedForm, Entry, Options, total};
+use cofactor::analysis::{self, ClosedForm, Entry, Options};
 use cofactor::circuit::{Ask, Circuit, ElementId, Law};
 use cofactor::language::{Severity, line_and_column};
 use cofactor::typeset::answer::{self, Answer, TextStyle};
@@ -148,9 +148,18 @@ impl Printer<'_> {
                     text.push('\n');
                 }
                 text.push_str(&answer::text(&answer, style));
+                if self.arguments.legend {
+                    text.push_str(&answer::legend_text(&answer, style));
+                }
                 write_results(&text)?;
             }
-            Format::Latex => write_results(&answer::latex(&answer))?,
+            Format::Latex => {
+                let mut text = answer::latex(&answer);
+                if self.arguments.legend {
+                    text.push_str(&answer::legend_latex(&answer));
+                }
+                write_results(&text)?;
+            }
         }
         self.printed += 1;
         Ok(())
@@ -163,15 +172,13 @@ impl Printer<'_> {
         }
         for entry in entries {
             if let ClosedForm::Nested(_) = entry.form {
-                let about = if entry.counts.exact { "" } else { "up to " };
+                let about = if entry.length.exact { "" } else { "up to " };
                 return Err(Failure::bound(
                     "terms",
                     format!(
                         "{}: this shape needs the expansion, which has {about}{} terms, more than \
                          the {} that `--max-terms` allows",
-                        entry.name,
-                        total(&entry.counts),
-                        self.arguments.max_terms
+                        entry.name, entry.length.terms, self.arguments.max_terms
                     ),
                     "use the nested shape, allow more terms, or put numbers in with `--keep`",
                 ));

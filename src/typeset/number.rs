@@ -127,7 +127,8 @@ fn prefix(thousands: i64) -> Option<&'static str> {
     prefixes.get(usize::try_from(thousands + 5).ok()?).copied()
 }
 
-fn ascii_unit(unit: &str) -> String {
+/// A unit (with its prefix) in ASCII: `kohm`.
+pub(crate) fn ascii_unit(unit: &str) -> String {
     unit.chars()
         .map(|c| match c {
             'Ω' => "ohm".to_owned(),

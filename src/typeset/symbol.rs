@@ -9,9 +9,12 @@
 
 use std::borrow::Cow;
 use std::collections::BTreeSet;
+use std::sync::OnceLock;
 
 use super::Letter;
 use super::greek;
+use super::latex_name::latex_name;
+use super::mathml_name::mathml_name;
 
 /// How names are written.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -34,22 +37,23 @@ pub enum Style {
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct SymbolName {
     source: String,
-    ascii: String,
     identifier: String,
-    latex: String,
-    mathml: String,
-    unicode: String,
+    // Made when first asked for: a large circuit has thousands of names, of which one style is printed.
+    ascii: OnceLock<String>,
+    latex: OnceLock<String>,
+    mathml: OnceLock<String>,
+    unicode: OnceLock<String>,
 }
 
 impl SymbolName {
     fn new(source: &str, identifier: String) -> Self {
         Self {
             source: source.to_owned(),
-            ascii: ascii_name(source),
             identifier,
-            latex: super::latex_name::latex_name(source),
-            mathml: super::mathml_name::mathml_name(source),
-            unicode: unicode_name(source),
+            ascii: OnceLock::new(),
+            latex: OnceLock::new(),
+            mathml: OnceLock::new(),
+            unicode: OnceLock::new(),
         }
     }
 
@@ -58,11 +62,11 @@ impl SymbolName {
     pub fn styled(&self, style: Style) -> &str {
         match style {
             Style::Source => &self.source,
-            Style::Ascii => &self.ascii,
             Style::Identifier => &self.identifier,
-            Style::Latex => &self.latex,
-            Style::MathMl => &self.mathml,
-            Style::Unicode => &self.unicode,
+            Style::Ascii => self.ascii.get_or_init(|| ascii_name(&self.source)),
+            Style::Latex => self.latex.get_or_init(|| latex_name(&self.source)),
+            Style::MathMl => self.mathml.get_or_init(|| mathml_name(&self.source)),
+            Style::Unicode => self.unicode.get_or_init(|| unicode_name(&self.source)),
         }
     }
 }

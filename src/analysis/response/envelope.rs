@@ -6,6 +6,7 @@
 use std::f64::consts::TAU;
 
 use num_complex::Complex;
+use num_traits::ToPrimitive;
 
 use super::{Point, scaled};
 use crate::algebra::Univariate;
@@ -57,6 +58,8 @@ pub fn envelope(
         return Ok(None);
     }
     let nominal = Nominal::new(circuit, entry)?;
+    let frequencies: Vec<Complex<f64>> =
+        points.iter().map(|point| Complex::new(0.0, TAU * point.hz)).collect();
     let mut random = Random::new(seed);
     let start = |point: &Point| Range {
         hz: point.hz,
@@ -66,31 +69,29 @@ pub fn envelope(
     let mut ranges: Vec<Range> = points.iter().map(start).collect();
     for _ in 0..trials {
         let drawn = toleranced.draw(&mut random);
-        let circuit: Drawn<'_> = match (nominal.parts(), nominal.elimination()) {
+        let values: Vec<Value> = match (nominal.parts(), nominal.elimination()) {
             (None, Some(elimination)) => {
                 let mut floats = nominal.floats().to_vec();
                 for (symbol, value) in &drawn {
-                    floats[symbol.0 as usize] =
-                        num_traits::ToPrimitive::to_f64(value).unwrap_or(f64::NAN);
+                    floats[symbol.0 as usize] = value.to_f64().unwrap_or(f64::NAN);
                 }
-                Box::new(move |s| elimination.value_at(s, &floats).into())
+                elimination.values_at(&frequencies, &floats).into_iter().map(Value::from).collect()
             }
             _ => {
                 let [above, below] = nominal.coefficients(&drawn).map(|part| Floating::new(&part));
-                Box::new(move |s| {
+                let at = |s: &Complex<f64>| {
                     let quotient = above.at(s.im).divided_by(below.at(s.im));
                     Value { decades: quotient.log10(), phase: arg(quotient.value()) }
-                })
+                };
+                frequencies.iter().map(at).collect()
             }
         };
-        for (range, point) in ranges.iter_mut().zip(points) {
-            range.take(point, circuit(Complex::new(0.0, TAU * point.hz)));
+        for ((range, point), value) in ranges.iter_mut().zip(points).zip(values) {
+            range.take(point, value);
         }
     }
     Ok(Some(Envelope { trials, seed, ranges }))
 }
-
-type Drawn<'a> = Box<dyn Fn(Complex<f64>) -> Value + 'a>;
 
 struct Value {
     decades: f64,

@@ -4,6 +4,7 @@
 mod evidence;
 mod json;
 mod latex;
+mod legend;
 pub mod response;
 pub mod roots;
 mod sections;
@@ -13,6 +14,7 @@ mod text;
 pub use evidence::evidence;
 pub use json::{results, symbols, warning};
 pub use latex::latex;
+pub use legend::{legend_latex, legend_text};
 pub use text::{TextStyle, text};
 
 use super::shape::{Layered, Lettering, Shape, write};

@@ -9,7 +9,7 @@ use super::document::{Block, Blocks, Inline, code, text};
 use super::{Material, roots, words};
 use crate::algebra::Var;
 use crate::analysis::response::{Corner, Curves, Excitation, TimeCurve};
-use crate::analysis::{ClosedForm, Entry, Numbers, NumericForm, Survey, total};
+use crate::analysis::{ClosedForm, Entry, Numbers, NumericForm, Survey};
 use crate::circuit::{Ask, Question, Symbol, Unit};
 use crate::elimination::symbol_of;
 use crate::typeset::answer::response::{View, closed_form, label, plot, time_plot, time_unit};
@@ -104,8 +104,8 @@ fn formula(
         said.push(text(format!(" Limits taken: {}.", entry.limits.join(", "))));
     }
     if let ClosedForm::Nested(_) = entry.form {
-        let count = total(&entry.counts).to_string();
-        let about = if entry.counts.exact { "" } else { "at most " };
+        let count = entry.length.terms.to_string();
+        let about = if entry.length.exact { "" } else { "at most " };
         let size = match count.len() {
             ..=12 => count,
             length => {
@@ -214,8 +214,9 @@ fn numeric(blocks: &mut Blocks, entry: &Entry, setter: Setter<'_>, left: &Math) 
 
 /// Behaviour at the ends of the frequency axis.
 fn ends(blocks: &mut Blocks, entry: &Entry, setter: Setter<'_>, left: &Math) {
-    let depends = entry.counts.numerator.len().max(entry.counts.denominator.len()) > 1;
-    if !depends || entry.noise.is_some() {
+    let ClosedForm::Expanded(fraction) = &entry.form else { return };
+    let degree = fraction.numerator().degree(Var::S).max(fraction.denominator().degree(Var::S));
+    if degree == 0 || entry.noise.is_some() {
         return;
     }
     let Some(ends) = asymptotes(&entry.form, lettering_of(&entry.symbols)) else { return };
