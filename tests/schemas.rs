@@ -98,9 +98,8 @@ fn outputs_are_as_their_schemas_say() {
 #[test]
 fn targets_and_faults_are_as_their_schemas_say() {
     let file = "examples/anti-alias.circuit";
-    let moved = run(&[
-        "roots", file, "H", "--move", "w0 = 1 kHz", "--with", "C1", "--format", "json",
-    ]);
+    let moved =
+        run(&["roots", file, "H", "--move", "w0 = 1 kHz", "--with", "C1", "--format", "json"]);
     check(&schema("roots"), &moved.stdout, "--move");
     let errors = schema("error");
     for arguments in [
@@ -118,9 +117,7 @@ fn targets_and_faults_are_as_their_schemas_say() {
 #[test]
 fn a_schema_refuses_what_it_does_not_describe() {
     let errors = schema("error");
-    let error = |line: Value| {
-        json!({"error": {"code": "syntax", "message": "m", "line": line, "column": 1, "help": null}})
-    };
+    let error = |line: Value| json!({"error": {"code": "syntax", "message": "m", "line": line, "column": 1, "help": null}});
     assert!(errors.is_valid(&error(json!(1))));
     assert!(!errors.is_valid(&error(json!(0))));
     assert!(!errors.is_valid(&json!({"error": {"code": "syntax"}})));

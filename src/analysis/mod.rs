@@ -19,8 +19,10 @@ mod notice;
 mod numbers;
 mod port;
 mod posed;
+pub mod response;
 mod return_ratio;
 pub mod roots;
+mod survey;
 mod two_port;
 
 pub use answer::{Entry, answer};
@@ -30,6 +32,7 @@ pub use limits::limit_text;
 pub use noise::{BandNoise, Contributor, Noise, TotalNoise};
 pub use notice::Notice;
 pub use numbers::NumericForm;
+pub use survey::{Numbers, Survey, survey};
 
 use crate::circuit::{Circuit, ElementId, Transfer};
 use crate::elimination::{Elimination, Limits};

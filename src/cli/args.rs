@@ -3,6 +3,7 @@
 use std::path::PathBuf;
 
 use clap::{Args, Parser, Subcommand, ValueEnum};
+use cofactor::typeset::shape::Shape;
 
 /// Exact, closed-form answers about linear circuits.
 #[derive(Debug, Parser)]
@@ -20,10 +21,18 @@ pub(crate) enum Command {
     Roots(Roots),
     /// Every claim against the exact result: equal, equal in a limit, or where it is wrong
     Check(super::check::Check),
-    /// The circuit as understood: nodes, elements, values, what the graph says, and a picture
-    Inspect(Inspect),
     /// The JSON Schema of what a command prints under `--format json`
     Schema(super::schema::Schema),
+    /// Magnitude, phase and delay over the band, and answers over time: table, CSV or picture
+    Response(super::response::Response),
+    /// A design note: drawing, formulas, tables, plots and evidence in one document
+    Note(super::note::Note),
+    /// The circuit as understood: nodes, elements, values, what the graph says, and a picture
+    Inspect(Inspect),
+    /// What a shell needs to complete command lines
+    Completions(super::paper::Completions),
+    /// A page for `man`
+    Manual(super::paper::Manual),
 }
 
 #[derive(Debug, Args)]
@@ -229,6 +238,20 @@ pub(crate) enum ShapeName {
     Sections,
     /// Named sub-expressions
     Nested,
+}
+
+impl ShapeName {
+    /// The shape of that name.
+    pub(crate) fn shape(self) -> Shape {
+        match self {
+            Self::Powers => Shape::Powers,
+            Self::Bode => Shape::Bode,
+            Self::Product => Shape::Product,
+            Self::ByElement => Shape::ByElement,
+            Self::Sections => Shape::Sections,
+            Self::Nested => Shape::Nested,
+        }
+    }
 }
 
 fn seconds(text: &str) -> Result<f64, String> {

@@ -20,15 +20,7 @@ use super::{STACK, width, write_results};
 /// Runs the command; the exit code is 0, or 1 when a witness disagrees.
 pub(crate) fn run(arguments: &Derive, messages: &Messages) -> Result<u8, Failure> {
     let loaded = input::load(&arguments.input, messages)?;
-    let shape = match arguments.shape {
-        None => Shape::Compact,
-        Some(ShapeName::Powers) => Shape::Powers,
-        Some(ShapeName::Bode) => Shape::Bode,
-        Some(ShapeName::Product) => Shape::Product,
-        Some(ShapeName::ByElement) => Shape::ByElement,
-        Some(ShapeName::Sections) => Shape::Sections,
-        Some(ShapeName::Nested) => Shape::Nested,
-    };
+    let shape = arguments.shape.map_or(Shape::Compact, ShapeName::shape);
     let feedback = match &arguments.feedback {
         Some(name) => Some(dependent_source(&loaded.circuit, name)?),
         None => None,

@@ -43,6 +43,7 @@ pub use at_limit::InfiniteLimit;
 pub use error::EliminationError;
 pub use nested::{Nested, NestedFactor, NestedSum};
 pub use passes::gradient::Gradient;
+pub(crate) use passes::numbers::{Scaled, scaled_integer};
 pub use value::{DividesByZero, fraction_of, symbol_of, variable_of};
 
 /// What the work may cost.
@@ -278,7 +279,7 @@ impl Elimination {
             self.weights.iter().map(|weight| numbers::Coefficients::new(weight, symbols)).collect();
         let ring = numbers::ComplexNumbers;
         let at = |&s: &Complex<f64>| {
-            let s = numbers::Scaled::new(s, 0);
+            let s = Scaled::new(s, 0);
             let weights: Vec<_> = coefficients.iter().map(|weight| weight.at(s)).collect();
             let values = passes::values(&ring, &self.diagram, &weights);
             let root = |link| passes::at(&ring, &values, link);

@@ -96,6 +96,21 @@ impl Scaled {
         Self { mantissa: -self.mantissa, exponent: self.exponent }
     }
 
+    /// The quotient.
+    pub(crate) fn divided_by(self, other: Self) -> Self {
+        Self::new(self.mantissa / other.mantissa, self.exponent - other.exponent)
+    }
+
+    /// The logarithm of the size to base ten; −∞ for 0.
+    pub(crate) fn log10(self) -> f64 {
+        libm::log10(self.mantissa.norm()) + f64::from(self.exponent) * std::f64::consts::LOG10_2
+    }
+
+    /// The plain number; overflows to infinity and underflows to 0 as a double does.
+    pub(crate) fn value(self) -> Complex<f64> {
+        self.over(Self::new(Complex::new(1.0, 0.0), 0))
+    }
+
     /// The quotient as a plain number; overflows to infinity and underflows to 0 as a double does.
     pub(crate) fn over(self, other: Self) -> Complex<f64> {
         let quotient = self.mantissa / other.mantissa;
