@@ -18,6 +18,8 @@ pub(crate) enum Command {
     Derive(Derive),
     /// Poles and zeros, and which elements set each
     Roots(Roots),
+    /// Shorter formulas with a stated error over the band and the tolerances
+    Simplify(super::simplify::Arguments),
     /// The circuit as understood: nodes, elements, values, what the graph says, and a picture
     Inspect(Inspect),
 }
@@ -217,7 +219,7 @@ pub(crate) enum ShapeName {
     Nested,
 }
 
-fn seconds(text: &str) -> Result<f64, String> {
+pub(crate) fn seconds(text: &str) -> Result<f64, String> {
     match text.parse::<f64>() {
         Ok(value) if value.is_finite() && value > 0.0 => Ok(value),
         _ => Err("a number of seconds above 0 is needed".to_owned()),

@@ -17,6 +17,7 @@ mod input;
 mod inspect;
 mod messages;
 mod roots;
+mod simplify;
 
 use std::io::Write;
 use std::process::ExitCode;
@@ -45,6 +46,10 @@ pub(crate) fn run() -> ExitCode {
             Command::Roots(roots) => {
                 let messages = Messages::new(&roots.output.output());
                 finish(&messages, roots::run(&roots, &messages))
+            }
+            Command::Simplify(arguments) => {
+                let messages = Messages::new(&arguments.output);
+                finish(&messages, simplify::run(&arguments, &messages))
             }
             Command::Inspect(inspect) => {
                 let messages = Messages::new(&inspect.output());

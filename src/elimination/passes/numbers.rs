@@ -70,8 +70,18 @@ impl Scaled {
         Self { mantissa: Complex::new(1.0, 0.0), exponent }
     }
 
-    fn negative(self) -> Self {
+    pub(crate) fn negative(self) -> Self {
         Self { mantissa: -self.mantissa, exponent: self.exponent }
+    }
+
+    /// The real part as m·2^e.
+    pub(crate) fn real_parts(self) -> (f64, i32) {
+        (self.mantissa.re, self.exponent)
+    }
+
+    /// log2 of the size.
+    pub(crate) fn log2(self) -> f64 {
+        self.mantissa.norm().log2() + f64::from(self.exponent)
     }
 
     /// The quotient as a plain number; overflows to infinity and underflows to 0 as a double does.
