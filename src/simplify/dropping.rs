@@ -69,10 +69,10 @@ struct Offer {
 pub(crate) fn drop(target: &Target, now: &mut Reduced, share: f64, watch: &mut dyn Watch) {
     let coarse = target.coarse(RANKING_POINTS);
     let mut refused = Vec::new();
-    let symbols = now.elimination.variables().len();
+    let before = now.elimination.variables().len();
     while !watch.expired() {
         let left = now.elimination.variables().len();
-        watch.progress("leaving elements out", symbols - left, symbols);
+        watch.progress("leaving elements out", before - left, before);
         let mut offers = offers(&coarse, &now.elimination);
         offers.retain(|offer| {
             offer.used <= share && !refused.contains(&(offer.dropped.symbol, offer.dropped.to))
@@ -99,7 +99,7 @@ pub(crate) fn drop(target: &Target, now: &mut Reduced, share: f64, watch: &mut d
     }
 }
 
-/// Merges symbols of one unit and nearly one value as long as no more than `share` of the goal is
+/// Merges matched symbols of nearly one value as long as no more than `share` of the goal is
 /// used, the cheapest pair first.
 pub(crate) fn merge(
     target: &Target,
@@ -135,24 +135,44 @@ pub(crate) fn merge(
     }
 }
 
-/// Pairs of symbols with one unit and nearly one value: the second may stand in the place of the first.
+/// Whether two symbols are the same parameter of two devices. Two elements that happen to have one
+/// value are not matched: whoever means that writes `R2 = R1`.
+fn are_matched(a: &Symbol, b: &Symbol) -> bool {
+    let parameter = |symbol: &Symbol| symbol.name.rsplit_once('.').map(|(_, last)| last.to_owned());
+    let devices = [a, b].iter().all(|symbol| symbol.role == SymbolRole::DeviceParameter);
+    devices && a.unit == b.unit && parameter(a) == parameter(b)
+}
+
+/// Pairs of matched symbols with nearly one value, of devices with nearly one bias: the
+/// second may stand in the place of the first.
 pub(crate) fn alike(
     symbols: &[Symbol],
     values: &[f64],
     present: &[SymbolId],
 ) -> Vec<(SymbolId, SymbolId)> {
     let mut pairs = Vec::new();
+    let near = |a: usize, b: usize| (values[a] / values[b] - 1.0).abs() <= ALIKE;
     for &from in present {
         for &into in present.iter().filter(|&&into| into != from) {
             let [a, b] = [from, into].map(|id| &symbols[id.0 as usize]);
-            let ratio = values[from.0 as usize] / values[into.0 as usize];
-            let parameters = a.role != SymbolRole::Pi && b.role != SymbolRole::Pi;
-            if parameters && a.unit == b.unit && (ratio - 1.0).abs() <= ALIKE {
+            let biased_alike = || match [a, b].map(|symbol| transconductance(symbols, symbol)) {
+                [Some(a), Some(b)] => near(a, b),
+                _ => true,
+            };
+            if are_matched(a, b) && near(from.0 as usize, into.0 as usize) && biased_alike() {
                 pairs.push((from, into));
             }
         }
     }
     pairs
+}
+
+/// The transconductance of the device that a parameter belongs to, as an index of the symbols.
+fn transconductance(symbols: &[Symbol], of: &Symbol) -> Option<usize> {
+    let (device, _) = of.name.rsplit_once('.')?;
+    symbols.iter().position(|symbol| {
+        symbol.name.strip_prefix(device).is_some_and(|parameter| parameter == ".gm")
+    })
 }
 
 /// The offers that are taken together: the first, and more while their costs add up to little.

@@ -4,6 +4,10 @@
 //! parallel is left out, or two symbols of nearly the same value become one. What is left is written
 //! anew when that is shorter.
 
+use std::cell::RefCell;
+
+use rustc_hash::FxHashMap;
+
 use super::Watch;
 use super::dropping::alike;
 use super::goal::Goal;
@@ -22,8 +26,13 @@ use num_traits::{ToPrimitive, Zero};
 const REWRITTEN: u64 = 60;
 /// The cost of a step counts at least this, so that among free ones the longest goes first.
 const FREE: f64 = 1e-3;
-/// Points at which steps are ranked.
+/// Points at which steps are ranked, for long formulas and for short ones.
+const FEW_POINTS: usize = 10;
 const RANKING_POINTS: usize = 30;
+/// Merges that are written anew in each round.
+const MERGES: usize = 3;
+/// Formulas up to this length count as short.
+const SHORT: u64 = 80;
 
 /// A formula and what it costs.
 #[derive(Clone, Debug)]
@@ -46,6 +55,8 @@ pub(crate) struct Context<'a> {
     pub(crate) goal: &'a Goal,
     /// In Hz.
     pub(crate) band: (f64, f64),
+    /// What has been written already: plans meet on the way.
+    pub(crate) known: &'a RefCell<FxHashMap<Fraction, Formula>>,
 }
 
 impl Context<'_> {
@@ -89,6 +100,17 @@ impl Context<'_> {
         near(&above, &numeric.numerator) && near(&below, &numeric.denominator)
     }
 
+    /// The fraction in compact form.
+    pub(crate) fn compact(&self, fraction: &Fraction) -> Formula {
+        if let Some(known) = self.known.borrow().get(fraction) {
+            return known.clone();
+        }
+        let formula = compact(fraction, self.letters);
+        self.known.borrow_mut().insert(fraction.clone(), formula.clone());
+        formula
+    }
+
+    /// The nominal value of a variable.
     pub(crate) fn value(&self, variable: Var) -> Number {
         let symbol = variable.0.checked_sub(1).and_then(|index| self.symbols.get(index as usize));
         if self.letters.pi == Some(variable) {
@@ -100,7 +122,7 @@ impl Context<'_> {
 
 /// Writes a fraction.
 pub(crate) fn written(target: &Target, context: Context<'_>, fraction: &Fraction) -> Written {
-    measured(target, compact(fraction, context.letters), Vec::new())
+    measured(target, context.compact(fraction), Vec::new())
 }
 
 pub(crate) fn measured(target: &Target, formula: Formula, merged: Vec<(u32, u32)>) -> Written {
@@ -126,13 +148,14 @@ pub(crate) fn polish(
     steps: &mut Vec<Written>,
     watch: &mut dyn Watch,
 ) -> Written {
-    let coarse = target.coarse(RANKING_POINTS);
+    let [few, coarse] = [FEW_POINTS, RANKING_POINTS].map(|points| target.coarse(points));
     let length = start.length;
     let mut now = start;
     let mut refused: Vec<Formula> = Vec::new();
     while !watch.expired() {
         watch.progress("shortening", (length - now.length) as usize, length as usize);
-        let Some(next) = next(&coarse, context, &now, manner, &refused) else { break };
+        let ranking = if now.length > SHORT { &few } else { &coarse };
+        let Some(next) = next(ranking, context, &now, manner, &refused) else { break };
         let settled = settled(target, context, &next, manner.rewrite);
         match settled.filter(|settled| settled.used <= manner.share) {
             Some(better) => {
@@ -171,18 +194,30 @@ fn next(
         offer(measured(coarse, formula, now.merged.clone()));
     }
     if manner.rewrite && now.length <= REWRITTEN {
-        for (from, to) in alike(context.symbols, coarse.nominal(), &symbols(&now.formula)) {
-            let mut merged = now.merged.clone();
-            merged.push((from.0, to.0));
-            let candidate = measured(coarse, renamed(&now.formula, from.0, to.0), merged);
-            if candidate.used <= manner.share
-                && let Some(fraction) = fraction(&candidate.formula, context.letters)
-            {
-                offer(measured(coarse, compact(&fraction, context.letters), candidate.merged));
+        for candidate in merges(coarse, context, now, manner.share) {
+            if let Some(fraction) = fraction(&candidate.formula, context.letters) {
+                offer(measured(coarse, context.compact(&fraction), candidate.merged));
             }
         }
     }
     best.map(|(_, written)| written)
+}
+
+/// The formulas with one symbol in the place of another that use least of the goal; not written anew yet.
+fn merges(coarse: &Target, context: Context<'_>, now: &Written, share: f64) -> Vec<Written> {
+    let pairs = alike(context.symbols, coarse.nominal(), &symbols(&now.formula));
+    let mut merges: Vec<Written> = pairs
+        .into_iter()
+        .map(|(from, into)| {
+            let mut merged = now.merged.clone();
+            merged.push((from.0, into.0));
+            measured(coarse, renamed(&now.formula, from.0, into.0), merged)
+        })
+        .filter(|candidate| candidate.used <= share)
+        .collect();
+    merges.sort_by(|a, b| a.used.total_cmp(&b.used).then(a.merged.cmp(&b.merged)));
+    merges.truncate(MERGES);
+    merges
 }
 
 /// The formula at all points, or what it is when written anew, if that is shorter; none where it may not
@@ -204,6 +239,6 @@ fn settled(
     if !rewrite {
         return Some(plain);
     }
-    let anew = measured(target, compact(&fraction, context.letters), next.merged.clone());
+    let anew = measured(target, context.compact(&fraction), next.merged.clone());
     Some(if anew.length < plain.length { anew } else { plain })
 }

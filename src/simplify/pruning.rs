@@ -2,7 +2,7 @@
 
 use crate::algebra::{Fraction, Polynomial, Var};
 use crate::circuit::SymbolId;
-use crate::typeset::shape::Lettering;
+use crate::typeset::shape::{Lettering, ordered_product};
 use crate::typeset::{Formula, Letter, View};
 
 /// The formulas with one operand of one sum or parallel left out.
@@ -34,7 +34,7 @@ fn rebuild(formula: &Formula, mut operands: Vec<Formula>) -> Formula {
     match formula.view() {
         View::Number(_) | View::Letter(_) => formula.clone(),
         View::Sum(_) => Formula::sum(operands),
-        View::Product(_) => Formula::product(operands),
+        View::Product(_) => ordered_product(operands),
         View::Parallel(_) => Formula::parallel(operands),
         View::Power(_, exponent) => Formula::power(operands.swap_remove(0), exponent as i32),
         View::Negative(_) => operands.swap_remove(0).negative(),

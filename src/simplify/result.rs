@@ -1,5 +1,7 @@
 //! From a result of the exact analysis to a shorter formula with everything that is to be said of it.
 
+use std::cell::RefCell;
+
 use num_bigint::BigUint;
 
 use super::Watch;
@@ -9,18 +11,17 @@ use super::goal::Goal;
 use super::polish::{Context, Manner, Written, polish};
 use super::program::Program;
 use super::pruning;
-use super::roots::{self, ExactRoots, Figure};
+use super::roots::{self, ExactRoots, Figure, FigureKind};
 use super::samples::{self, MOST_CORNERS};
-use super::search::{Found, search};
+use super::search::{Found, glance, search};
 use super::sweep::{self, Grid};
 use super::target::{Target, Worst};
-use crate::algebra::Fraction;
+use crate::algebra::{Fraction, Var};
 use crate::analysis::{ClosedForm, Entry, Notice, total};
 use crate::circuit::{LimitTo, SymbolId, SymbolRole};
 use crate::elimination::{Elimination, symbol_of};
 use crate::typeset::Formula;
 use crate::typeset::answer::lettering_of;
-use crate::typeset::shape::compact;
 
 /// Points of the search, and of the measure at the nominal values and at a corner.
 const SEARCH_POINTS: usize = 61;
@@ -32,6 +33,8 @@ const SEARCH_CORNERS: usize = 8;
 const ROUNDS: usize = 5;
 /// Node visits that the corners may take.
 const VISITS: usize = 60_000_000;
+/// The second pole is looked for up to this many times the upper end of the band.
+const WIDER: f64 = 4.0;
 /// How much coarser than the goal the chain of formulas goes on.
 const COARSEST: f64 = 6.0;
 /// Formulas of the chain that are told.
@@ -150,6 +153,7 @@ pub fn simplify(
         numeric: entry.numeric.as_ref(),
         goal,
         band,
+        known: &RefCell::default(),
     };
     if exact.is_zero() {
         return Ok(nothing(goal, band));
@@ -234,7 +238,7 @@ impl Work<'_> {
             target.extend(self.exact, hertz, corners);
         }
         let fraction = expanded.ok_or(SimplifyError::NothingFound)?;
-        let formula = compact(fraction, self.context.letters);
+        let formula = self.context.compact(fraction);
         let measured = self.measure(&formula);
         let written = super::polish::measured(&target, formula, Vec::new());
         let found = Found { written, dropped: Vec::new(), merged: Vec::new() };
@@ -320,7 +324,6 @@ impl Work<'_> {
             let (above, below) = (numeric.numerator.first()?, numeric.denominator.first()?);
             if below.is_zero() { None } else { (above / below).to_f64() }
         });
-        let top = self.context.band.1;
         Ok(Simplified {
             terms_before: total(&self.entry.counts),
             terms_after: fraction.numerator().len() + fraction.denominator().len(),
@@ -330,7 +333,7 @@ impl Work<'_> {
             corners: measured.corners,
             band: self.context.band,
             goal: *self.context.goal,
-            figures: roots::figures(&fraction, self.context.roots, dc, top, self.context),
+            figures: self.figures(&fraction, dc, watch),
             steps,
             is_exact,
             stopped,
@@ -338,6 +341,26 @@ impl Work<'_> {
             fraction,
             formula,
         })
+    }
+
+    /// The figures; where the formula has one pole only, the second from a look beyond the band.
+    fn figures(&self, fraction: &Fraction, dc: Option<f64>, watch: &mut dyn Watch) -> Vec<Figure> {
+        let (from, to) = self.context.band;
+        let mut figures = roots::figures(fraction, self.context.roots, dc, to, self.context);
+        let first = |figure: &Figure| figure.kind == FigureKind::Pole(1);
+        let only = fraction.denominator().degree(Var::S) == 1;
+        let more = self.context.roots.sides.as_ref().is_some_and(|sides| sides[1].len() > 1);
+        let place = figures.iter().position(first).filter(|_| only && more && !watch.expired());
+        let Some(place) = place else { return figures };
+        let context = Context { band: (from, WIDER * to), ..self.context };
+        let grid = Grid { band: context.band, points: SEARCH_POINTS, marked: Vec::new() };
+        let samples = vec![self.nominal.clone()];
+        let target = Target::new(*context.goal, self.exact, &grid.hertz(), samples);
+        if let Some(wider) = glance(&target, context, self.exact, watch) {
+            let second = roots::second_pole(&wider, self.context.roots, to, context);
+            figures.splice(place + 1..place + 1, second);
+        }
+        figures
     }
 
     /// Every symbol that is gone, and what that alone changes.
@@ -434,8 +457,8 @@ impl Work<'_> {
                 notices.push(Notice {
                     code: "right-half-plane-zeros",
                     message: format!(
-                        "the exact function has {before} zeros in the right half plane, the \
-                         simplified one {after}; over the band that is within the error"
+                        "zeros in the right half plane: {before} in the exact function, {after} in \
+                         the simplified one; over the band that is within the error"
                     ),
                     line: 0,
                 });

@@ -5,19 +5,23 @@ use num_traits::ToPrimitive;
 
 use super::polish::Context;
 use super::program::Program;
-use super::pruning::prunings;
+use super::pruning::{fraction, prunings, renamed, symbols};
 use crate::algebra::{Fraction, Polynomial, Univariate, Var};
 use crate::analysis::NumericForm;
 use crate::analysis::roots::find;
 use crate::typeset::Formula;
-use crate::typeset::shape::compact;
 
 type C = Complex<f64>;
 
 /// Neighbouring coefficients this far apart make a root of its own.
 const APART: f64 = 4.0;
 /// How far the short formula of a root may be from the exact root.
-const ROOT_ERROR: f64 = 0.10;
+const ROOT_ERROR: f64 = 0.15;
+/// Two values this close count as one in a figure that becomes shorter by this many symbols.
+const SAME: f64 = 0.05;
+const MUCH: u64 = 3;
+/// Beyond this error the number is not told.
+const BELIEVED: f64 = 0.3;
 /// Roots up to this many times the upper end of the band are told.
 const BEYOND: f64 = 10.0;
 
@@ -139,7 +143,7 @@ pub(crate) fn figures(
     let mut figures = Vec::new();
     let (Some(n0), Some(d0)) = (above.first(), below.first()) else { return figures };
     let finite = !n0.is_zero() && !d0.is_zero();
-    if finite {
+    if finite && above.len().max(below.len()) > 1 {
         figures.extend(figure(FigureKind::DcGain, n0, d0, exact_dc, context));
     }
     let sides = exact.sides.as_ref();
@@ -151,10 +155,26 @@ pub(crate) fn figures(
     if let (true, Some(first), Some(d1)) = (finite, first, below.get(1)) {
         let exact = exact_dc.zip(first.exact).map(|(gain, pole)| gain.abs() * pole);
         let product = figure(FigureKind::GainBandwidth, n0, d1, exact, context);
-        let has_gain = figures[0].value.abs() > 1.0;
+        let has_gain =
+            |figure: &Figure| figure.kind == FigureKind::DcGain && figure.value.abs() > 1.0;
+        let has_gain = figures.first().is_some_and(has_gain);
         figures.extend(product.filter(|_| has_gain));
     }
     figures
+}
+
+/// The second pole of a fraction, where it stands apart.
+pub(crate) fn second_pole(
+    fraction: &Fraction,
+    exact: &ExactRoots,
+    top_hz: f64,
+    context: Context<'_>,
+) -> Option<Figure> {
+    let below = fraction.denominator().coefficients(Var::S);
+    let sides = exact.sides.as_ref();
+    let top = BEYOND * top_hz * std::f64::consts::TAU;
+    let poles = of_side(&below, sides.map(|s| s[1].as_slice()), top, context, true);
+    poles.into_iter().find(|figure| figure.kind == FigureKind::Pole(2))
 }
 
 /// The roots of one side, each from two neighbouring coefficients.
@@ -181,13 +201,13 @@ fn of_side(
         };
         let alone = at + 2 >= of.len()
             || values[at + 1] * values[at + 1] > APART * (values[at] * values[at + 2]).abs();
-        let size =
-            |index: usize| exact.as_ref().and_then(|roots| roots.get(index)).map(|r| r.norm());
+        let nearest = |size: f64| exact.as_ref().and_then(|roots| nearest(roots, size));
         let (kind, low, high, wanted) = if alone {
-            (kind_of(false), at, at + 1, size(at))
+            let size = (values[at] / values[at + 1]).abs();
+            (kind_of(false), at, at + 1, nearest(size))
         } else {
-            let both = size(at).zip(size(at + 1)).map(|(a, b)| a * b);
-            (kind_of(true), at, at + 2, both)
+            let size = (values[at] / values[at + 2]).abs().sqrt();
+            (kind_of(true), at, at + 2, nearest(size).map(|size| size * size))
         };
         let found = figure(kind, &of[low], &of[high], wanted, context);
         let in_sight =
@@ -196,6 +216,12 @@ fn of_side(
         at = high;
     }
     figures
+}
+
+/// The size of the root that is nearest to this size by its logarithm.
+fn nearest(roots: &[C], size: f64) -> Option<f64> {
+    let apart = |root: &C| (root.norm() / size).ln().abs();
+    roots.iter().min_by(|a, b| apart(a).total_cmp(&apart(b))).map(|root| root.norm())
 }
 
 fn number(of: &Polynomial, context: Context<'_>) -> f64 {
@@ -210,27 +236,59 @@ fn figure(
     exact: Option<f64>,
     context: Context<'_>,
 ) -> Option<Figure> {
-    let mut formula = compact(&Fraction::new(a, b)?, context.letters);
+    let mut formula = context.compact(&Fraction::new(a, b)?);
     if kind != FigureKind::DcGain && formula.is_negative() {
         formula = formula.negative();
     }
-    let symbols = super::samples::nominal(context.symbols);
-    let value = |formula: &Formula| Program::new(formula).value(&symbols, C::ZERO).re;
+    let values = super::samples::nominal(context.symbols);
+    let value = |formula: &Formula| Program::new(formula).value(&values, C::ZERO).re;
     if kind != FigureKind::DcGain && value(&formula) < 0.0 {
         formula = formula.negative();
     }
     let wanted = exact.unwrap_or_else(|| value(&formula));
     let error = |formula: &Formula| (value(formula) / wanted - 1.0).abs();
     loop {
+        let shorter = |next: &Formula| next.symbols() < formula.symbols();
         let next = prunings(&formula)
             .into_iter()
-            .filter(|next| next.symbols() < formula.symbols() && error(next) <= ROOT_ERROR)
+            .filter(|next| shorter(next) && error(next) <= ROOT_ERROR)
             .min_by(|a, b| error(a).total_cmp(&error(b)));
-        match next {
+        let next = next.or_else(|| merged(&formula, &values, context));
+        match next.filter(|next| error(next) <= ROOT_ERROR) {
             Some(next) => formula = next,
             None => break,
         }
     }
     let value = value(&formula);
-    value.is_finite().then_some(Figure { kind, formula, value, exact })
+    // A root or a gain beyond the band can be far from the truth while the function in it is not.
+    let holds = value.is_finite() && (value / wanted - 1.0).abs() <= BELIEVED;
+    holds.then_some(Figure { kind, formula, value, exact })
+}
+
+/// The formula with two symbols of one unit and the same value taken for one, where that makes it much
+/// shorter: a figure is told for its meaning, and what cancels between matched parts hides it.
+fn merged(formula: &Formula, values: &[f64], context: Context<'_>) -> Option<Formula> {
+    let present = symbols(formula);
+    let mut best: Option<Formula> = None;
+    for &from in &present {
+        for &into in present.iter().filter(|&&into| into != from) {
+            let [a, b] = [from, into].map(|id| &context.symbols[id.0 as usize]);
+            let ratio = values[from.0 as usize] / values[into.0 as usize];
+            if a.role != b.role || a.unit != b.unit || (ratio - 1.0).abs() > SAME {
+                continue;
+            }
+            let Some(of) = fraction(&renamed(formula, from.0, into.0), context.letters) else {
+                continue;
+            };
+            let next = context.compact(&of);
+            let next = if next.is_negative() { next.negative() } else { next };
+            let length = best
+                .as_ref()
+                .map_or((formula.symbols() + 1).saturating_sub(MUCH), |best| best.symbols());
+            if next.symbols() < length {
+                best = Some(next);
+            }
+        }
+    }
+    best
 }

@@ -33,6 +33,9 @@ const PLANS: [Plan; 7] = [
     Plan { drop: 0.03, merge: 0.06, again: 0.1 },
 ];
 
+/// The plan by which more is found out about a function than its formula holds.
+const WIDER: Plan = Plan { drop: 0.4, merge: 0.6, again: 0.8 };
+
 /// Terms of the exact function up to which it is itself shortened, nothing left out before.
 const SMALL: usize = 400;
 /// Terms of a fraction up to which it is written without picking terms before.
@@ -55,7 +58,7 @@ pub(crate) fn search(
     steps: &mut Vec<Written>,
     watch: &mut dyn Watch,
 ) -> Option<Found> {
-    let mut search = Search { target, context, best: None, steps };
+    let mut search = Search { target, context, best: None, started: Vec::new(), steps };
     if let Some(fraction) = expanded.filter(|of| terms(of) <= SMALL) {
         search.take(fraction, &Reduced::nothing(exact), watch);
     }
@@ -82,10 +85,30 @@ pub(crate) fn search(
     search.best
 }
 
+/// One quick look at a function, as a fraction that is within the goal of the target; for its roots.
+pub(crate) fn glance(
+    target: &Target,
+    context: Context<'_>,
+    exact: &Elimination,
+    watch: &mut dyn Watch,
+) -> Option<Fraction> {
+    let mut reduced = Reduced::nothing(exact);
+    dropping::drop(target, &mut reduced, WIDER.drop, watch);
+    dropping::merge(target, context.symbols, &mut reduced, WIDER.merge, watch);
+    dropping::drop(target, &mut reduced, WIDER.again, watch);
+    let start = terms::fraction(target, &reduced.elimination, 1.0, true, watch)?;
+    let start = written(target, context, &start);
+    let manner = Manner { share: 1.0, rewrite: true };
+    let end = polish(target, context, start, manner, &mut Vec::new(), watch);
+    pruning::fraction(&end.formula, context.letters)
+}
+
 struct Search<'a> {
     target: &'a Target,
     context: Context<'a>,
     best: Option<Found>,
+    /// Fractions that were shortened already.
+    started: Vec<Fraction>,
     steps: &'a mut Vec<Written>,
 }
 
@@ -105,6 +128,10 @@ impl Search<'_> {
 
     /// Shortens a fraction and keeps the result if it is the best so far.
     fn take(&mut self, fraction: &Fraction, reduced: &Reduced, watch: &mut dyn Watch) {
+        if self.started.contains(fraction) {
+            return;
+        }
+        self.started.push(fraction.clone());
         let start = written(self.target, self.context, fraction);
         if start.used > 1.0 {
             return;

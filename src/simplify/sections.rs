@@ -5,7 +5,6 @@ use num_traits::ToPrimitive;
 use super::polish::Context;
 use crate::algebra::{Fraction, Polynomial, Var};
 use crate::typeset::Formula;
-use crate::typeset::shape::compact;
 
 /// c₁²/(c₀·c₂) above which a quadratic falls into two sections: its roots are about that far apart.
 const APART: f64 = 4.0;
@@ -20,7 +19,7 @@ pub(crate) fn split(fraction: &Fraction, context: Context<'_>) -> Option<Formula
     if below.len() - d < 3 && above.len() - n < 3 {
         return None;
     }
-    let gain = compact(&Fraction::new(&above[n], &below[d])?, context.letters);
+    let gain = context.compact(&Fraction::new(&above[n], &below[d])?);
     let power = n as i32 - d as i32;
     let above = sections(&above[n..], context)?;
     let below = sections(&below[d..], context)?;
@@ -34,7 +33,7 @@ fn sections(of: &[Polynomial], context: Context<'_>) -> Option<Vec<Formula>> {
         of.evaluate(|variable| context.value(variable)).to_f64().unwrap_or(f64::NAN)
     };
     let ratio = |high: usize, low: usize| -> Option<Formula> {
-        Some(compact(&Fraction::new(&of[high], &of[low])?, context.letters))
+        Some(context.compact(&Fraction::new(&of[high], &of[low])?))
     };
     let mut sections = Vec::new();
     let mut at = 0;

@@ -338,3 +338,77 @@ fn factors(weight: &Polynomial, symbols: &[f64]) -> Vec<Factor> {
         })
         .collect()
 }
+
+#[cfg(test)]
+mod tests {
+    use pretty_assertions::assert_eq;
+
+    use super::Side;
+    use crate::algebra::{Polynomial, Var};
+    use crate::circuit::{NodeId, Quantity};
+    use crate::elimination::testing::Bench;
+    use crate::elimination::{Elimination, Limits};
+
+    /// A ladder with a dependent source, so that terms have both signs.
+    fn network() -> (Elimination, Vec<f64>) {
+        let mut bench = Bench::new();
+        let source = bench.voltage("V1", "in", "0");
+        let nodes = ["in", "a", "b", "c", "d"];
+        for (index, pair) in nodes.windows(2).enumerate() {
+            bench.part(&format!("R{index}"), pair[0], pair[1]);
+            bench.part(&format!("C{index}"), pair[1], "0");
+        }
+        let (a, b): (NodeId, NodeId) = (bench.node("a"), bench.node("c"));
+        bench.controlled("g1", "d", "b", Quantity::Voltage(a, b));
+        let transfer = bench.gain("d", source);
+        let elimination = Elimination::new(&bench.circuit, &transfer, &Limits::default());
+        let values = (0..bench.circuit.symbols.len()).map(|k| 1.0 + 0.7 * k as f64).collect();
+        (elimination.expect("a solution"), values)
+    }
+
+    #[test]
+    fn terms_come_by_size_and_all_of_them() {
+        let (elimination, values) = network();
+        let (numerator, denominator) = elimination.expand();
+        let mut largest = elimination.largest_terms(&values);
+        for (side, expanded) in [(Side::Numerator, numerator), (Side::Denominator, denominator)] {
+            let (low, high) = largest.powers(side).expect("a function");
+            let mut all = Vec::new();
+            for power in low..=high {
+                let mut last = f64::INFINITY;
+                let mut rank = 0;
+                while let Some(term) = largest.term(side, power, rank) {
+                    assert!(term.log2 <= last + 1e-12, "{side:?} s^{power} rank {rank}");
+                    last = term.log2;
+                    let s_power = term.powers.iter().find(|p| p.0 == Var::S).map_or(0, |p| p.1);
+                    assert_eq!(s_power, power);
+                    all.push((term.powers, term.coefficient));
+                    rank += 1;
+                }
+            }
+            assert_eq!(all.len(), expanded.len());
+            assert_eq!(Polynomial::from_terms(all), expanded);
+        }
+    }
+
+    #[test]
+    fn limits_of_symbols_are_those_of_the_diagram() {
+        use crate::circuit::LimitTo;
+        use crate::elimination::variable_of;
+        use num_complex::Complex;
+
+        let (elimination, values) = network();
+        let s = Complex::new(0.0, 0.3);
+        let (value, extremes) = elimination.at_values(&values).extremes(s);
+        assert!((value - elimination.value_at(s, &values)).norm() < 1e-12);
+        assert!(!extremes.is_empty());
+        for one in extremes {
+            for (to, told) in [(LimitTo::Zero, one.at_zero), (LimitTo::Infinity, one.at_infinity)] {
+                let limit = elimination.at_limit(variable_of(one.symbol), to).expect("finite");
+                let exact = limit.value_at(s, &values);
+                let told = told.expect("a value");
+                assert!((told - exact).norm() < 1e-9 * exact.norm().max(1e-3), "{one:?} {to:?}");
+            }
+        }
+    }
+}

@@ -9,6 +9,8 @@ use crate::typeset::answer::{TextStyle, evidence};
 use crate::typeset::number::Medium;
 use crate::typeset::screen::Characters;
 
+/// Longer formulas of figures are left to JSON and LaTeX.
+const LONGEST: u64 = 12;
 /// Symbols that are named one by one.
 const NAMED: usize = 12;
 
@@ -90,17 +92,16 @@ impl Writer<'_> {
     }
 
     fn worst(&self, worst: &Worst) -> String {
-        let (db, deg) = (bound(worst.db), bound(worst.deg));
-        let at = |value: f64, hz: f64| {
-            if value > 0.0 { format!(" at {}", self.hertz(hz)) } else { String::new() }
+        let part = |value: f64, least: f64, unit: &str, hz: f64| {
+            if value < least {
+                return format!("below {least}{unit}");
+            }
+            format!("{}{unit} at {}", rounded(bound(value), 3, self.medium()), self.hertz(hz))
         };
-        let medium = self.medium();
         format!(
-            "{} dB{}, {}°{}",
-            rounded(db, 3, medium),
-            at(db, worst.db_hz),
-            rounded(deg, 3, medium),
-            at(deg, worst.deg_hz)
+            "{}, {}",
+            part(worst.db, 0.001, " dB", worst.db_hz),
+            part(worst.deg, 0.01, "°", worst.deg_hz)
         )
     }
 
@@ -143,15 +144,16 @@ impl Writer<'_> {
 
     fn length(&self) -> String {
         let simplified = self.answer.simplified;
+        let symbols = if length(&simplified.formula) == 1 { "symbol" } else { "symbols" };
         let terms = if simplified.terms_after == 1 { "term" } else { "terms" };
         if simplified.is_exact {
             return format!(
-                "{} symbols: nothing shorter was found within the goal, this is the exact formula",
+                "{} {symbols}: nothing shorter was found within the goal, this is the exact formula",
                 length(&simplified.formula)
             );
         }
         format!(
-            "{} symbols, {} {terms}; the exact function has {} different symbols and {} terms",
+            "{} {symbols}, {} {terms}; the exact function has {} different symbols and {} terms",
             length(&simplified.formula),
             simplified.terms_after,
             simplified.symbols_before,
@@ -180,6 +182,9 @@ impl Writer<'_> {
             None => String::new(),
         };
         let value = show(figure.value);
+        if figure.formula.symbols() > LONGEST {
+            return format!("{value}{exact}");
+        }
         let value = if value == formula { String::new() } else { format!("{joint}{value}") };
         format!("{formula}{what}{value}{exact}")
     }
