@@ -47,7 +47,7 @@ fn row(cells: usize) -> Result<(), Box<dyn Error>> {
     let circuit = language::read(&amplifier(cells)).circuit.ok_or("the circuit is wrong")?;
     let start = Instant::now();
     let entry = analysis::answer(&circuit, &circuit.asks[0], &Options::default())?.swap_remove(0);
-    let found = simplify(&entry, BAND, &Goal::default(), false, &mut Unwatched)?;
+    let found = simplify(&circuit, &entry, BAND, &Goal::default(), false, &mut Unwatched)?;
     let seconds = start.elapsed().as_secs_f64();
     let diagram = entry.elimination.as_ref().map_or(0, |elimination| elimination.diagram_size());
     println!(

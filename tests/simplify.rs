@@ -57,7 +57,8 @@ impl Case {
 
     fn shortened(&self, goal: &Goal) -> (Simplified, SimplifyResult) {
         let simplified =
-            simplify(&self.entry, self.band, goal, false, &mut Unwatched).expect("a formula");
+            simplify(&self.circuit, &self.entry, self.band, goal, false, &mut Unwatched)
+                .expect("a formula");
         let told = result(&Answer { entry: &self.entry, simplified: &simplified });
         (simplified, told)
     }
@@ -238,11 +239,12 @@ fn the_error_of_random_circuits_is_never_exceeded() {
         };
         let case = Case { band: band(&circuit), entry: answers.swap_remove(0), circuit };
         let goal = [goal(0.5, 5.0), goal(1.0, 10.0), goal(3.0, 20.0)][seed as usize % 3];
-        let simplified = match simplify(&case.entry, case.band, &goal, false, &mut Unwatched) {
-            Ok(simplified) => simplified,
-            Err(SimplifyError::NotFinite) => continue,
-            Err(error) => panic!("{error}: {text}"),
-        };
+        let simplified =
+            match simplify(&case.circuit, &case.entry, case.band, &goal, false, &mut Unwatched) {
+                Ok(simplified) => simplified,
+                Err(SimplifyError::NotFinite) => continue,
+                Err(error) => panic!("{error}: {text}"),
+            };
         if case.entry.elimination.as_ref().is_none_or(|elimination| elimination.is_zero()) {
             continue;
         }

@@ -72,8 +72,9 @@ pub(crate) fn run(arguments: &Arguments, messages: &Messages) -> Result<u8, Fail
         for entry in &entries(&loaded.circuit, ask)? {
             passed &= entry.passed();
             let band = band(&loaded.circuit, ask);
-            let simplified = simplify(entry, band, &goal, arguments.steps, &mut clock)
-                .map_err(|error| failure(&entry.name, &error));
+            let simplified =
+                simplify(&loaded.circuit, entry, band, &goal, arguments.steps, &mut clock)
+                    .map_err(|error| failure(&entry.name, &error));
             clock.clear();
             let simplified = simplified?;
             stopped |= simplified.stopped;

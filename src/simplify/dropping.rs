@@ -7,14 +7,13 @@
 //! use little of what is left, and each time the whole is measured against the exact function.
 
 use super::Watch;
+use super::matched::Matched;
 use super::target::{C, Candidate, Target, Worst};
-use crate::circuit::{LimitTo, Symbol, SymbolId, SymbolRole};
+use crate::circuit::{LimitTo, SymbolId};
 use crate::elimination::{Elimination, symbol_of, variable_of};
 
 /// Points of the sweep that ranks.
 const RANKING_POINTS: usize = 24;
-/// Two values this close may be taken for one.
-const ALIKE: f64 = 0.3;
 /// Of what is left of the goal, the part that a batch may use by the estimate.
 const BATCH_SHARE: f64 = 0.3;
 
@@ -103,18 +102,19 @@ pub(crate) fn drop(target: &Target, now: &mut Reduced, share: f64, watch: &mut d
 /// used, the cheapest pair first.
 pub(crate) fn merge(
     target: &Target,
-    symbols: &[Symbol],
+    matched: &Matched,
     now: &mut Reduced,
     share: f64,
     watch: &mut dyn Watch,
 ) {
     let coarse = target.coarse(RANKING_POINTS);
     while !watch.expired() {
-        watch.progress("taking equal what nearly is", now.merged.len(), symbols.len());
         let present = now.elimination.variables().iter().filter_map(|&v| symbol_of(v));
         let present: Vec<SymbolId> = present.collect();
-        let mut offers: Vec<(f64, SymbolId, SymbolId)> = alike(symbols, target.nominal(), &present)
-            .into_iter()
+        let (done, left) = (now.merged.len(), present.len());
+        watch.progress("taking equal what nearly is", done, done + left);
+        let mut offers: Vec<(f64, SymbolId, SymbolId)> = matched
+            .among(&present)
             .map(|(from, into)| {
                 let renamed = now.elimination.renamed(variable_of(from), variable_of(into));
                 (coarse.used(&renamed), from, into)
@@ -133,46 +133,6 @@ pub(crate) fn merge(
         now.merged.push(Merged { from, into, change });
         (now.elimination, now.used) = (renamed, used);
     }
-}
-
-/// Whether two symbols are the same parameter of two devices. Two elements that happen to have one
-/// value are not matched: whoever means that writes `R2 = R1`.
-fn are_matched(a: &Symbol, b: &Symbol) -> bool {
-    let parameter = |symbol: &Symbol| symbol.name.rsplit_once('.').map(|(_, last)| last.to_owned());
-    let devices = [a, b].iter().all(|symbol| symbol.role == SymbolRole::DeviceParameter);
-    devices && a.unit == b.unit && parameter(a) == parameter(b)
-}
-
-/// Pairs of matched symbols with nearly one value, of devices with nearly one bias: the
-/// second may stand in the place of the first.
-pub(crate) fn alike(
-    symbols: &[Symbol],
-    values: &[f64],
-    present: &[SymbolId],
-) -> Vec<(SymbolId, SymbolId)> {
-    let mut pairs = Vec::new();
-    let near = |a: usize, b: usize| (values[a] / values[b] - 1.0).abs() <= ALIKE;
-    for &from in present {
-        for &into in present.iter().filter(|&&into| into != from) {
-            let [a, b] = [from, into].map(|id| &symbols[id.0 as usize]);
-            let biased_alike = || match [a, b].map(|symbol| transconductance(symbols, symbol)) {
-                [Some(a), Some(b)] => near(a, b),
-                _ => true,
-            };
-            if are_matched(a, b) && near(from.0 as usize, into.0 as usize) && biased_alike() {
-                pairs.push((from, into));
-            }
-        }
-    }
-    pairs
-}
-
-/// The transconductance of the device that a parameter belongs to, as an index of the symbols.
-fn transconductance(symbols: &[Symbol], of: &Symbol) -> Option<usize> {
-    let (device, _) = of.name.rsplit_once('.')?;
-    symbols.iter().position(|symbol| {
-        symbol.name.strip_prefix(device).is_some_and(|parameter| parameter == ".gm")
-    })
 }
 
 /// The offers that are taken together: the first, and more while their costs add up to little.

@@ -16,6 +16,7 @@ pub mod answer;
 mod dropping;
 mod error;
 mod goal;
+mod matched;
 mod polish;
 mod program;
 mod pruning;

@@ -9,10 +9,10 @@ use std::cell::RefCell;
 use rustc_hash::FxHashMap;
 
 use super::Watch;
-use super::dropping::alike;
 use super::goal::Goal;
+use super::matched::Matched;
 use super::program::Program;
-use super::pruning::{fraction, prunings, renamed, symbols};
+use super::pruning::{fraction, parts, prunings, renamed, symbols};
 use super::roots::{self, ExactRoots};
 use super::target::Target;
 use crate::algebra::{Fraction, Polynomial, Var};
@@ -26,6 +26,8 @@ use num_traits::{ToPrimitive, Zero};
 const REWRITTEN: u64 = 60;
 /// The cost of a step counts at least this, so that among free ones the longest goes first.
 const FREE: f64 = 1e-3;
+/// An operand of a sum counts as this part of a symbol.
+const PART: f64 = 0.2;
 /// Points at which steps are ranked, for long formulas and for short ones.
 const FEW_POINTS: usize = 10;
 const RANKING_POINTS: usize = 30;
@@ -39,10 +41,25 @@ const SHORT: u64 = 80;
 pub(crate) struct Written {
     pub(crate) formula: Formula,
     pub(crate) length: u64,
+    /// Operands of its sums and parallels.
+    pub(crate) parts: u64,
     /// Of the goal.
     pub(crate) used: f64,
     /// Symbols that stand for others: (the one that is gone, the one that is written).
     pub(crate) merged: Vec<(u32, u32)>,
+}
+
+impl Written {
+    /// What counts: the symbols, and among formulas with as many of them the operands of sums.
+    pub(crate) fn size(&self) -> (u64, u64) {
+        (self.length, self.parts)
+    }
+
+    /// How much shorter another formula is, in symbols.
+    fn saves(&self, other: &Self) -> f64 {
+        let fewer = |a: u64, b: u64| a as f64 - b as f64;
+        fewer(self.length, other.length) + PART * fewer(self.parts, other.parts).max(0.0)
+    }
 }
 
 /// What a formula is held against besides magnitude and phase.
@@ -50,6 +67,8 @@ pub(crate) struct Written {
 pub(crate) struct Context<'a> {
     pub(crate) symbols: &'a [Symbol],
     pub(crate) letters: Lettering<'a>,
+    /// Symbols that may be taken for one.
+    pub(crate) matched: &'a Matched,
     pub(crate) roots: &'a ExactRoots,
     pub(crate) numeric: Option<&'a NumericForm>,
     pub(crate) goal: &'a Goal,
@@ -127,7 +146,7 @@ pub(crate) fn written(target: &Target, context: Context<'_>, fraction: &Fraction
 
 pub(crate) fn measured(target: &Target, formula: Formula, merged: Vec<(u32, u32)>) -> Written {
     let used = target.used(&Program::new(&formula));
-    Written { length: formula.symbols(), used, formula, merged }
+    Written { length: formula.symbols(), parts: parts(&formula), used, formula, merged }
 }
 
 /// How a formula is shortened.
@@ -180,12 +199,12 @@ fn next(
     let mut best: Option<(f64, Written)> = None;
     let mut offer = |candidate: Written| {
         if candidate.used > manner.share
-            || candidate.length >= now.length
+            || candidate.size() >= now.size()
             || refused.contains(&candidate.formula)
         {
             return;
         }
-        let cost = (candidate.used - now.used).max(FREE) / (now.length - candidate.length) as f64;
+        let cost = (candidate.used - now.used).max(FREE) / now.saves(&candidate);
         if best.as_ref().is_none_or(|(least, _)| cost < *least) {
             best = Some((cost, candidate));
         }
@@ -205,9 +224,9 @@ fn next(
 
 /// The formulas with one symbol in the place of another that use least of the goal; not written anew yet.
 fn merges(coarse: &Target, context: Context<'_>, now: &Written, share: f64) -> Vec<Written> {
-    let pairs = alike(context.symbols, coarse.nominal(), &symbols(&now.formula));
-    let mut merges: Vec<Written> = pairs
-        .into_iter()
+    let mut merges: Vec<Written> = context
+        .matched
+        .among(&symbols(&now.formula))
         .map(|(from, into)| {
             let mut merged = now.merged.clone();
             merged.push((from.0, into.0));
@@ -240,5 +259,5 @@ fn settled(
         return Some(plain);
     }
     let anew = measured(target, context.compact(&fraction), next.merged.clone());
-    Some(if anew.length < plain.length { anew } else { plain })
+    Some(if anew.size() < plain.size() { anew } else { plain })
 }

@@ -29,6 +29,19 @@ pub(crate) fn prunings(formula: &Formula) -> Vec<Formula> {
     found
 }
 
+/// How many operands the sums and parallels of a formula have.
+pub(crate) fn parts(formula: &Formula) -> u64 {
+    let mut count = 0;
+    let mut pending = vec![formula];
+    while let Some(formula) = pending.pop() {
+        if let View::Sum(operands) | View::Parallel(operands) = formula.view() {
+            count += operands.len() as u64;
+        }
+        pending.extend(formula.operands());
+    }
+    count
+}
+
 /// The same operation on other operands.
 fn rebuild(formula: &Formula, mut operands: Vec<Formula>) -> Formula {
     match formula.view() {

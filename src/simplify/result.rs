@@ -8,17 +8,18 @@ use super::Watch;
 use super::dropping::{self, Dropped};
 use super::error::SimplifyError;
 use super::goal::Goal;
+use super::matched::Matched;
 use super::polish::{Context, Manner, Written, polish};
 use super::program::Program;
 use super::pruning;
 use super::roots::{self, ExactRoots, Figure, FigureKind};
 use super::samples::{self, MOST_CORNERS};
-use super::search::{Found, glance, search};
+use super::search::{Found, base, glance, search};
 use super::sweep::{self, Grid};
 use super::target::{Target, Worst};
 use crate::algebra::{Fraction, Var};
 use crate::analysis::{ClosedForm, Entry, Notice, total};
-use crate::circuit::{LimitTo, SymbolId, SymbolRole};
+use crate::circuit::{Circuit, LimitTo, SymbolId, SymbolRole};
 use crate::elimination::{Elimination, symbol_of};
 use crate::typeset::Formula;
 use crate::typeset::answer::lettering_of;
@@ -26,11 +27,15 @@ use crate::typeset::answer::lettering_of;
 /// Points of the search, and of the measure at the nominal values and at a corner.
 const SEARCH_POINTS: usize = 61;
 const DENSE_POINTS: usize = 601;
-const CORNER_POINTS: usize = 121;
+const CORNER_POINTS: usize = 81;
+/// Corners whose error at the points is that near to the largest are searched between the points.
+const NEAR: f64 = 0.95;
 /// Corners that the search looks at from the beginning.
 const SEARCH_CORNERS: usize = 8;
 /// Searches, each with what the one before failed at.
 const ROUNDS: usize = 5;
+/// Node visits that the dense grid may take.
+const DENSE_VISITS: usize = 2_000_000;
 /// Node visits that the corners may take.
 const VISITS: usize = 60_000_000;
 /// The second pole is looked for up to this many times the upper end of the band.
@@ -131,6 +136,7 @@ pub struct Step {
 /// # Errors
 /// Missing nominal values, a result that is no function of the circuit, and nothing found.
 pub fn simplify(
+    circuit: &Circuit,
     entry: &Entry,
     band: (f64, f64),
     goal: &Goal,
@@ -145,10 +151,13 @@ pub fn simplify(
     if !missing.is_empty() {
         return Err(SimplifyError::NoValues(missing));
     }
+    let nominal = samples::nominal(&entry.symbols);
+    let matched = Matched::new(circuit, &entry.symbols, &nominal);
     let roots = ExactRoots::new(entry.numeric.as_ref());
     let context = Context {
         symbols: &entry.symbols,
         letters: lettering_of(&entry.symbols),
+        matched: &matched,
         roots: &roots,
         numeric: entry.numeric.as_ref(),
         goal,
@@ -158,7 +167,7 @@ pub fn simplify(
     if exact.is_zero() {
         return Ok(nothing(goal, band));
     }
-    Work { entry, exact, context, nominal: samples::nominal(&entry.symbols) }.run(chain, watch)
+    Work { entry, exact, context, nominal }.run(chain, watch)
 }
 
 fn missing(entry: &Entry, exact: &Elimination) -> Vec<String> {
@@ -223,9 +232,10 @@ impl Work<'_> {
             ClosedForm::Expanded(fraction) => Some(fraction),
             ClosedForm::Nested(_) => None,
         };
+        let base = base(&target, self.exact, watch);
         for _ in 0..ROUNDS {
             let mut steps = Vec::new();
-            let found = search(&target, self.context, self.exact, expanded, &mut steps, watch);
+            let found = search(&target, self.context, &base, expanded, &mut steps, watch);
             let Some(found) = found else { break };
             let measured = self.measure(&found.written.formula);
             let (hertz, corners) = &measured.failures;
@@ -243,6 +253,11 @@ impl Work<'_> {
         let written = super::polish::measured(&target, formula, Vec::new());
         let found = Found { written, dropped: Vec::new(), merged: Vec::new() };
         self.result(&target, found, measured, Vec::new(), chain, watch)
+    }
+
+    /// Points of the dense grid: fewer where each costs much.
+    fn dense(&self) -> usize {
+        (DENSE_VISITS / self.exact.diagram_size().max(1)).clamp(DENSE_POINTS / 3, DENSE_POINTS)
     }
 
     fn marks(&self) -> Vec<f64> {
@@ -264,7 +279,7 @@ impl Work<'_> {
             .and_then(|fraction| roots::of_fraction(&fraction, self.context));
         marked.extend(own.iter().flatten().flatten().flat_map(|root| roots::marks(*root)));
         let mut failures = (Vec::new(), Vec::new());
-        let grid = Grid { band: self.context.band, points: DENSE_POINTS, marked: marked.clone() };
+        let grid = Grid { band: self.context.band, points: self.dense(), marked: marked.clone() };
         let worst = sweep::worst(self.exact, &program, &self.nominal, &grid);
         let blame = |worst: &Worst, hertz: &mut Vec<f64>| {
             if worst.db > goal.magnitude_db {
@@ -273,7 +288,6 @@ impl Work<'_> {
             if worst.deg > goal.phase_deg {
                 hertz.push(worst.deg_hz);
             }
-            goal.used(worst.deviation()) > 1.0
         };
         blame(&worst, &mut failures.0);
         let visits = self.exact.diagram_size() * 2 * CORNER_POINTS;
@@ -281,10 +295,10 @@ impl Work<'_> {
         let grid = Grid { points: CORNER_POINTS, marked, ..grid };
         let mut over = Worst::default();
         let mut worst_corner = (1.0, None);
-        for corner in &corners.samples {
+        for corner in self.worst_corners(&program, &corners.samples, &grid) {
             let here = sweep::worst(self.exact, &program, corner, &grid);
             let used = goal.used(here.deviation());
-            if blame(&here, &mut Vec::new()) && used > worst_corner.0 {
+            if used > worst_corner.0 {
                 worst_corner = (used, Some((here, corner.clone())));
             }
             over.merge(&here);
@@ -300,6 +314,28 @@ impl Work<'_> {
             worst: over,
         });
         Measured { worst, corners, failures }
+    }
+
+    /// The corners that are among the worst at the points of the grid, by magnitude or by phase.
+    fn worst_corners<'c>(
+        &self,
+        program: &Program,
+        corners: &'c [Vec<f64>],
+        grid: &Grid,
+    ) -> Vec<&'c Vec<f64>> {
+        let each: Vec<Worst> = corners
+            .iter()
+            .map(|corner| sweep::at_points(self.exact, program, corner, grid))
+            .collect();
+        let mut all = Worst::default();
+        each.iter().for_each(|worst| all.merge(worst));
+        let near = |worst: &Worst| worst.db >= NEAR * all.db || worst.deg >= NEAR * all.deg;
+        corners
+            .iter()
+            .zip(&each)
+            .filter(|(_, worst)| near(worst))
+            .map(|(corner, _)| corner)
+            .collect()
     }
 
     fn result(
@@ -438,7 +474,7 @@ impl Work<'_> {
             .filter(|(index, step)| keep(*index, step))
             .map(|(_, step)| {
                 let grid =
-                    Grid { band: self.context.band, points: DENSE_POINTS, marked: self.marks() };
+                    Grid { band: self.context.band, points: self.dense(), marked: self.marks() };
                 let program = Program::new(&step.formula);
                 let worst = sweep::worst(self.exact, &program, &self.nominal, &grid);
                 let within = self.context.goal.used(worst.deviation()) <= 1.0;

@@ -79,6 +79,10 @@ impl ExactRoots {
 /// Points about a root, in Hz.
 pub(crate) fn marks(root: C) -> Vec<f64> {
     let (size, width) = (root.norm(), root.re.abs());
+    // Nothing turns sharply at a root that is well damped.
+    if 2.0 * width > size {
+        return Vec::new();
+    }
     [0.0, 0.3, 1.0, 3.0]
         .into_iter()
         .flat_map(|times| [size - times * width, size + times * width])

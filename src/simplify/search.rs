@@ -23,6 +23,9 @@ struct Plan {
     again: f64,
 }
 
+/// The share that every plan uses first.
+const BASE: f64 = 0.03;
+
 const PLANS: [Plan; 7] = [
     Plan { drop: 0.2, merge: 0.5, again: 0.6 },
     Plan { drop: 0.4, merge: 0.6, again: 0.8 },
@@ -41,6 +44,10 @@ const SMALL: usize = 400;
 /// Terms of a fraction up to which it is written without picking terms before.
 const WRITABLE: usize = 500;
 
+/// The same once there is a formula of at most so many symbols.
+const WORTH: usize = 250;
+const SHORT: u64 = 40;
+
 /// A formula that meets the goal at the points of the search.
 #[derive(Clone, Debug)]
 pub(crate) struct Found {
@@ -49,21 +56,26 @@ pub(crate) struct Found {
     pub(crate) merged: Vec<Merged>,
 }
 
-/// The shortest formula that is found; stages on the way go to `steps`.
+/// What every plan begins with: the function without what hardly matters.
+pub(crate) fn base(target: &Target, exact: &Elimination, watch: &mut dyn Watch) -> Reduced {
+    let mut base = Reduced::nothing(exact);
+    dropping::drop(target, &mut base, BASE, watch);
+    base
+}
+
+/// The shortest formula that is found from a base; stages on the way go to `steps`.
 pub(crate) fn search(
     target: &Target,
     context: Context<'_>,
-    exact: &Elimination,
+    base: &Reduced,
     expanded: Option<&Fraction>,
     steps: &mut Vec<Written>,
     watch: &mut dyn Watch,
 ) -> Option<Found> {
     let mut search = Search { target, context, best: None, started: Vec::new(), steps };
     if let Some(fraction) = expanded.filter(|of| terms(of) <= SMALL) {
-        search.take(fraction, &Reduced::nothing(exact), watch);
+        search.take(fraction, &Reduced { dropped: Vec::new(), ..base.clone() }, watch);
     }
-    let mut base = Reduced::nothing(exact);
-    dropping::drop(target, &mut base, PLANS[6].drop, watch);
     let mut done: Vec<Reduced> = Vec::new();
     for plan in PLANS {
         if watch.expired() {
@@ -71,7 +83,7 @@ pub(crate) fn search(
         }
         let mut reduced = base.clone();
         dropping::drop(target, &mut reduced, plan.drop, watch);
-        dropping::merge(target, context.symbols, &mut reduced, plan.merge, watch);
+        dropping::merge(target, context.matched, &mut reduced, plan.merge, watch);
         dropping::drop(target, &mut reduced, plan.again, watch);
         let same =
             |other: &Reduced| other.dropped == reduced.dropped && other.merged == reduced.merged;
@@ -92,9 +104,9 @@ pub(crate) fn glance(
     exact: &Elimination,
     watch: &mut dyn Watch,
 ) -> Option<Fraction> {
-    let mut reduced = Reduced::nothing(exact);
+    let mut reduced = base(target, exact, watch);
     dropping::drop(target, &mut reduced, WIDER.drop, watch);
-    dropping::merge(target, context.symbols, &mut reduced, WIDER.merge, watch);
+    dropping::merge(target, context.matched, &mut reduced, WIDER.merge, watch);
     dropping::drop(target, &mut reduced, WIDER.again, watch);
     let start = terms::fraction(target, &reduced.elimination, 1.0, true, watch)?;
     let start = written(target, context, &start);
@@ -121,7 +133,11 @@ impl Search<'_> {
             self.take(&fraction, reduced, watch);
         }
         let whole = terms::fraction(self.target, &reduced.elimination, share, false, watch);
-        if let Some(fraction) = whole.filter(|fraction| terms(fraction) <= WRITABLE) {
+        let worth = |fraction: &Fraction| {
+            let short = self.best.as_ref().is_some_and(|best| best.written.length <= SHORT);
+            terms(fraction) <= if short { WORTH } else { WRITABLE }
+        };
+        if let Some(fraction) = whole.filter(worth) {
             self.take(&fraction, reduced, watch);
         }
     }
@@ -145,7 +161,7 @@ impl Search<'_> {
     }
 
     fn keep(&mut self, written: Written, dropped: &[Dropped], merged: &[Merged]) {
-        let key = |written: &Written| (written.length, written.used);
+        let key = |written: &Written| (written.size(), written.used);
         let better = self.best.as_ref().is_none_or(|best| key(&written) < key(&best.written));
         let allowed = || {
             pruning::fraction(&written.formula, self.context.letters)

@@ -71,7 +71,7 @@ impl Pair<'_> {
     }
 }
 
-/// The largest deviations at these values of the symbols.
+/// The largest deviations at these values of the symbols, searched for between the points too.
 pub(crate) fn worst(
     exact: &Elimination,
     candidate: &dyn Candidate,
@@ -79,14 +79,8 @@ pub(crate) fn worst(
     grid: &Grid,
 ) -> Worst {
     let pair = Pair { exact: exact.at_values(symbols), candidate, symbols };
-    let points = divided(&pair, grid);
-    let zero = ZERO * points.iter().map(|point| point.exact.norm()).fold(0.0, f64::max);
+    let Measured { points, deviations, zero, mut worst } = measured(&pair, grid);
     let deviation = |point: &Point| apart(point.value, point.exact, zero);
-    let deviations: Vec<Deviation> = points.iter().map(deviation).collect();
-    let mut worst = Worst::default();
-    for (point, deviation) in points.iter().zip(&deviations) {
-        worst.take(*deviation, point.hz);
-    }
     for part in [|d: &Deviation| d.db, |d: &Deviation| d.deg] {
         for index in maxima(&deviations, part) {
             let low = points[index.saturating_sub(1)].hz;
@@ -97,6 +91,37 @@ pub(crate) fn worst(
         }
     }
     worst
+}
+
+/// The largest deviations at the points alone.
+pub(crate) fn at_points(
+    exact: &Elimination,
+    candidate: &dyn Candidate,
+    symbols: &[f64],
+    grid: &Grid,
+) -> Worst {
+    let pair = Pair { exact: exact.at_values(symbols), candidate, symbols };
+    measured(&pair, grid).worst
+}
+
+struct Measured {
+    points: Vec<Point>,
+    deviations: Vec<Deviation>,
+    /// Up to here a value is 0.
+    zero: f64,
+    worst: Worst,
+}
+
+fn measured(pair: &Pair<'_>, grid: &Grid) -> Measured {
+    let points = divided(pair, grid);
+    let zero = ZERO * points.iter().map(|point| point.exact.norm()).fold(0.0, f64::max);
+    let deviations: Vec<Deviation> =
+        points.iter().map(|point| apart(point.value, point.exact, zero)).collect();
+    let mut worst = Worst::default();
+    for (point, deviation) in points.iter().zip(&deviations) {
+        worst.take(*deviation, point.hz);
+    }
+    Measured { points, deviations, zero, worst }
 }
 
 /// The points of the grid and more where the functions change fast.
