@@ -27,6 +27,8 @@ pub(crate) enum Command {
     Response(super::response::Response),
     /// A design note: drawing, formulas, tables, plots and evidence in one document
     Note(super::note::Note),
+    /// Shorter formulas with a stated error over the band and the tolerances
+    Simplify(super::simplify::Arguments),
     /// The circuit as understood: nodes, elements, values, what the graph says, and a picture
     Inspect(Inspect),
     /// What a shell needs to complete command lines
@@ -254,7 +256,7 @@ impl ShapeName {
     }
 }
 
-fn seconds(text: &str) -> Result<f64, String> {
+pub(crate) fn seconds(text: &str) -> Result<f64, String> {
     match text.parse::<f64>() {
         Ok(value) if value.is_finite() && value > 0.0 => Ok(value),
         _ => Err("a number of seconds above 0 is needed".to_owned()),

@@ -22,6 +22,7 @@ mod paper;
 mod response;
 mod roots;
 mod schema;
+mod simplify;
 
 use std::io::Write;
 use std::process::ExitCode;
@@ -67,6 +68,10 @@ pub(crate) fn run() -> ExitCode {
                 finish(&Messages::plain(), paper::completions(&completions))
             }
             Command::Manual(manual) => finish(&Messages::plain(), paper::manual(&manual)),
+            Command::Simplify(arguments) => {
+                let messages = Messages::new(&arguments.output);
+                finish(&messages, simplify::run(&arguments, &messages))
+            }
             Command::Inspect(inspect) => {
                 let messages = Messages::new(&inspect.output());
                 finish(&messages, inspect::run(&inspect, &messages))

@@ -11,6 +11,7 @@
 //! Imai & Tani 1995; Knuth, TAOCP 4A, 7.1.4).
 
 mod at_limit;
+mod at_values;
 mod choice;
 mod diagram;
 mod error;
@@ -40,9 +41,11 @@ use passes::{coefficients, count, gradient, numbers};
 use system::System;
 
 pub use at_limit::InfiniteLimit;
+pub use at_values::{AtValues, Extremes};
 pub use error::EliminationError;
 pub use nested::{Nested, NestedFactor, NestedSum};
 pub use passes::gradient::Gradient;
+pub use passes::largest::{LargestTerms, Side, SizedTerm};
 pub(crate) use passes::numbers::{Scaled, scaled_integer};
 pub use value::{DividesByZero, fraction_of, symbol_of, variable_of};
 
@@ -330,6 +333,24 @@ impl Elimination {
     ) -> Option<[Vec<BigInt>; 2]> {
         let products = coefficients::products(&self.diagram, &self.weights);
         (products <= affordable).then(|| self.coefficients(symbol))
+    }
+
+    /// The terms of each coefficient, to be had one by one, the largest at these symbol values first.
+    pub fn largest_terms(&self, symbols: &[f64]) -> LargestTerms<'_> {
+        let roots = [self.numerator, self.denominator];
+        LargestTerms::new(&self.diagram, &self.weights, roots, symbols)
+    }
+
+    /// The function with one symbol in the place of another.
+    ///
+    /// # Cost
+    /// That of a copy; terms of the result can meet.
+    #[must_use]
+    pub fn renamed(&self, from: Var, to: Var) -> Self {
+        let name = |variable: Var| if variable == from { to } else { variable };
+        let weights: Vec<Polynomial> =
+            self.weights.iter().map(|weight| weight.renamed(name)).collect();
+        Self { symbols: symbols_of(&weights), weights, distinct: false, ..self.clone() }
     }
 
     /// The diagram as named sub-expressions.

@@ -92,23 +92,35 @@ impl Scaled {
         Self { mantissa: Complex::ONE, exponent }
     }
 
-    fn negative(self) -> Self {
+    pub(crate) fn negative(self) -> Self {
         Self { mantissa: -self.mantissa, exponent: self.exponent }
     }
 
     /// The quotient.
     pub(crate) fn divided_by(self, other: Self) -> Self {
-        Self::new(self.mantissa / other.mantissa, self.exponent - other.exponent)
+        Self { mantissa: self.mantissa / other.mantissa, exponent: self.exponent - other.exponent }
+            .normal()
     }
 
     /// The logarithm of the size to base ten; −∞ for 0.
     pub(crate) fn log10(self) -> f64 {
-        libm::log10(self.mantissa.norm()) + f64::from(self.exponent) * std::f64::consts::LOG10_2
+        libm::log10(self.mantissa.norm())
+            + f64::from(self.exponent) * f64::from(STEP) * std::f64::consts::LOG10_2
     }
 
     /// The plain number; overflows to infinity and underflows to 0 as a double does.
     pub(crate) fn value(self) -> Complex<f64> {
         self.over(Self::new(Complex::new(1.0, 0.0), 0))
+    }
+
+    /// The real part as m·2^e.
+    pub(crate) fn real_parts(self) -> (f64, i32) {
+        (self.mantissa.re, self.exponent * STEP)
+    }
+
+    /// log2 of the size.
+    pub(crate) fn log2(self) -> f64 {
+        libm::log2(self.mantissa.norm()) + f64::from(self.exponent) * f64::from(STEP)
     }
 
     /// The quotient as a plain number; overflows to infinity and underflows to 0 as a double does.

@@ -15,6 +15,7 @@ pub use bode::bode;
 pub(crate) use bode::ratio;
 pub use by_element::by_element;
 pub use compact::compact;
+pub(crate) use compact::product as ordered_product;
 pub use nested::{Layered, nested};
 pub use powers::powers;
 pub use product::product;
