@@ -17,7 +17,8 @@ pub use model::{
 };
 pub use name::compare_names;
 pub use question::{
-    Ask, Claim, Drive, Limit, LimitTo, ParameterSet, Probe, Question, Transfer, TwoPort,
+    Ask, Claim, Drive, Limit, LimitTo, ParameterSet, Probe, Property, Question, Relation, Transfer,
+    TwoPort,
 };
 pub use unit::Unit;
 pub use value::{Number, Value};

@@ -1,6 +1,6 @@
 //! What is asked of a circuit, resolved: nodes and elements are known, the driving source is chosen.
 
-use super::{ElementId, NodeId, SymbolId, Unit, Value};
+use super::{Circuit, ElementId, NodeId, Number, Symbol, SymbolId, Unit, Value};
 
 /// A question of the file or of the command line.
 #[derive(Clone, Debug)]
@@ -100,19 +100,71 @@ impl ParameterSet {
     }
 }
 
-/// A hand-derived formula for the answer of that name.
+/// A hand-derived formula for an answer, or for something about it.
 #[derive(Clone, Debug)]
 pub struct Claim {
-    /// The name of the question, or of a two-port's entry (`P.z21`).
+    /// As written: `H`, `P.z21`, `H.p1`, `H(0)`.
     pub name: String,
+    /// The result it is about: a question's name, a two-port's entry (`P.z21`), or a source's share
+    /// of a superposition (`Vbus.Vbat`).
+    pub answer: String,
+    /// What of that result is claimed.
+    pub property: Property,
+    /// Whether it is said to be equal or about equal.
+    pub relation: Relation,
     /// The formula, resolved.
     pub formula: Value,
+    /// The claim is the formula times the square root of this.
+    pub under_root: Option<Value>,
+    /// Symbols of the formula that the circuit does not have, numbered behind the circuit's: π,
+    /// constants of nature, ω.
+    pub extra: Vec<Symbol>,
     /// The formula as written.
     pub text: String,
     /// The line of the file, from 1; 0 for the command line.
     pub line: u32,
     /// The first byte of the formula and one past its last, in the file.
     pub span: (usize, usize),
+}
+
+/// What of a result a claim is about. Poles and zeros are numbered from 1 by their size.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub enum Property {
+    /// The function itself.
+    Function,
+    /// A pole, in 1/s.
+    Pole(u32),
+    /// A zero, in 1/s.
+    Zero(u32),
+    /// |p|, in 1/s; of the first pair of poles where none is named.
+    NaturalFrequency(Option<u32>),
+    /// The square of that.
+    NaturalFrequencySquared(Option<u32>),
+    /// |p|/2π, in hertz.
+    NaturalHertz(Option<u32>),
+    /// |p|/(2·|Re p|) of a pair of poles.
+    Quality(Option<u32>),
+    /// The value at s = 0.
+    DcGain,
+    /// The value at s = ∞.
+    HighFrequencyGain,
+}
+
+/// How a claim relates to what is exact.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum Relation {
+    /// `=`: identical for all values.
+    Equal,
+    /// `~` or `≈`: at the nominal values, at the ends of the tolerances and over the band the relative
+    /// deviation is at most this.
+    About(Number),
+}
+
+impl Claim {
+    /// The symbols that the formula's numbers stand for: the circuit's and those behind them.
+    pub fn symbols(&self, circuit: &Circuit) -> Vec<Symbol> {
+        circuit.symbols.iter().chain(&self.extra).cloned().collect()
+    }
 }
 
 /// A limit that is taken in every result, exactly.

@@ -3,6 +3,7 @@
 use std::path::PathBuf;
 
 use clap::{Args, Parser, Subcommand, ValueEnum};
+use cofactor::typeset::shape::Shape;
 
 /// Exact, closed-form answers about linear circuits.
 #[derive(Debug, Parser)]
@@ -18,10 +19,22 @@ pub(crate) enum Command {
     Derive(Derive),
     /// Poles and zeros, and which elements set each
     Roots(Roots),
-    /// The circuit as understood: nodes, elements, values, what the graph says, and a picture
-    Inspect(Inspect),
+    /// Every claim against the exact result: equal, equal in a limit, or where it is wrong
+    Check(super::check::Check),
     /// The JSON Schema of what a command prints under `--format json`
     Schema(super::schema::Schema),
+    /// Magnitude, phase and delay over the band, and answers over time: table, CSV or picture
+    Response(super::response::Response),
+    /// A design note: drawing, formulas, tables, plots and evidence in one document
+    Note(super::note::Note),
+    /// Shorter formulas with a stated error over the band and the tolerances
+    Simplify(super::simplify::Arguments),
+    /// The circuit as understood: nodes, elements, values, what the graph says, and a picture
+    Inspect(Inspect),
+    /// What a shell needs to complete command lines
+    Completions(super::paper::Completions),
+    /// A page for `man`
+    Manual(super::paper::Manual),
 }
 
 #[derive(Debug, Args)]
@@ -33,6 +46,9 @@ pub(crate) struct Derive {
     /// How formulas are written; by default the shortest that one would write by hand
     #[arg(long, value_enum)]
     pub(crate) shape: Option<ShapeName>,
+    /// Say below each answer what its symbols are: unit, value, tolerance
+    #[arg(long = "where")]
+    pub(crate) legend: bool,
     /// Split every ratio around this dependent source: ideal gain, return ratio, feed-through
     #[arg(long, value_name = "SOURCE")]
     pub(crate) feedback: Option<String>,
@@ -226,7 +242,21 @@ pub(crate) enum ShapeName {
     Nested,
 }
 
-fn seconds(text: &str) -> Result<f64, String> {
+impl ShapeName {
+    /// The shape of that name.
+    pub(crate) fn shape(self) -> Shape {
+        match self {
+            Self::Powers => Shape::Powers,
+            Self::Bode => Shape::Bode,
+            Self::Product => Shape::Product,
+            Self::ByElement => Shape::ByElement,
+            Self::Sections => Shape::Sections,
+            Self::Nested => Shape::Nested,
+        }
+    }
+}
+
+pub(crate) fn seconds(text: &str) -> Result<f64, String> {
     match text.parse::<f64>() {
         Ok(value) if value.is_finite() && value > 0.0 => Ok(value),
         _ => Err("a number of seconds above 0 is needed".to_owned()),

@@ -4,7 +4,8 @@ use std::io::Read;
 use std::path::Path;
 
 use cofactor::circuit::{Ask, Circuit, SymbolId};
-use cofactor::language::{self, Diagnostic, Reading, Severity};
+use cofactor::language::{self, Diagnostic, Reading, Severity, line_and_column};
+use cofactor::typeset::json;
 
 use super::args::Input;
 use super::failure::Failure;
@@ -27,6 +28,16 @@ pub(crate) struct Loaded {
 /// Reads the file and applies the options.
 pub(crate) fn load(input: &Input, messages: &Messages) -> Result<Loaded, Failure> {
     let Loaded { mut circuit, remarks, text, .. } = load_file(&input.file, messages)?;
+    apply_band_and_limits(&mut circuit, input)?;
+    let asks = questions(&circuit, input)?;
+    if let Some(keep) = &input.keep {
+        circuit = keep_symbols(&circuit, keep)?;
+    }
+    Ok(Loaded { circuit, asks, remarks, text })
+}
+
+/// Puts the band and the limits of the command line in.
+pub(crate) fn apply_band_and_limits(circuit: &mut Circuit, input: &Input) -> Result<(), Failure> {
     if let Some(band) = &input.band {
         circuit.band = Some(language::band(band).map_err(|diagnostics| Failure::Text {
             name: "--band".to_owned(),
@@ -35,18 +46,14 @@ pub(crate) fn load(input: &Input, messages: &Messages) -> Result<Loaded, Failure
         })?);
     }
     for limit in &input.limits {
-        let read = language::limit(&circuit, limit).map_err(|diagnostics| Failure::Text {
+        let read = language::limit(circuit, limit).map_err(|diagnostics| Failure::Text {
             name: "--limit".to_owned(),
             text: limit.clone(),
             diagnostics,
         })?;
         circuit.limits.push(read);
     }
-    let asks = questions(&circuit, input)?;
-    if let Some(keep) = &input.keep {
-        circuit = keep_symbols(&circuit, keep)?;
-    }
-    Ok(Loaded { circuit, asks, remarks, text })
+    Ok(())
 }
 
 /// Reads the file; the questions are its own, if it has any.
@@ -63,7 +70,21 @@ pub(crate) fn load_file(file: &Path, messages: &Messages) -> Result<Loaded, Fail
     }
 }
 
-fn read_text(path: &Path) -> std::io::Result<String> {
+/// What was said about the text, for JSON.
+pub(crate) fn warnings(loaded: &Loaded) -> Vec<json::Warning> {
+    let warning = |diagnostic: &Diagnostic| {
+        let (line, column) = line_and_column(&loaded.text, diagnostic.span.start);
+        json::Warning {
+            code: diagnostic.code.to_owned(),
+            message: diagnostic.message.clone(),
+            line: Some(line),
+            column: Some(column),
+        }
+    };
+    loaded.remarks.iter().map(warning).collect()
+}
+
+pub(crate) fn read_text(path: &Path) -> std::io::Result<String> {
     let mut bytes = Vec::new();
     if path == Path::new("-") {
         std::io::stdin().lock().take(LARGEST_FILE + 1).read_to_end(&mut bytes)?;
@@ -102,7 +123,8 @@ fn questions(circuit: &Circuit, input: &Input) -> Result<Vec<Ask>, Failure> {
         .collect()
 }
 
-fn keep_symbols(circuit: &Circuit, keep: &[String]) -> Result<Circuit, Failure> {
+/// The circuit with the numbers of all symbols but these put in.
+pub(crate) fn keep_symbols(circuit: &Circuit, keep: &[String]) -> Result<Circuit, Failure> {
     let mut kept: Vec<SymbolId> = Vec::new();
     for name in keep.iter().map(|name| name.trim()).filter(|name| !name.is_empty()) {
         match circuit.symbol(name) {

@@ -5,20 +5,25 @@
 //! | exit code | meaning |
 //! | --- | --- |
 //! | 0 | done |
-//! | 1 | a witness disagrees |
+//! | 1 | a claim is false, or a witness disagrees |
 //! | 2 | the command line or the file is wrong |
 //! | 3 | the circuit has no unique solution; the answer, a limit or a set of parameters does not exist |
 //! | 4 | a work bound was reached; what was found before was printed |
 
 mod args;
+mod check;
 mod derive;
 mod failure;
 mod input;
 mod inspect;
 mod messages;
+mod note;
+mod paper;
 mod progress;
+mod response;
 mod roots;
 mod schema;
+mod simplify;
 
 use std::io::Write;
 use std::process::ExitCode;
@@ -47,6 +52,26 @@ pub(crate) fn run() -> ExitCode {
             Command::Roots(roots) => {
                 let messages = Messages::new(&roots.output.output());
                 finish(&messages, roots::run(&roots, &messages))
+            }
+            Command::Check(check) => {
+                let messages = Messages::new(&check.output);
+                finish(&messages, check::run(&check, &messages))
+            }
+            Command::Response(response) => {
+                let messages = Messages::new(&response.output());
+                finish(&messages, response::run(&response, &messages))
+            }
+            Command::Note(note) => {
+                let messages = Messages::new(&note.output());
+                finish(&messages, note::run(&note, &messages))
+            }
+            Command::Completions(completions) => {
+                finish(&Messages::plain(), paper::completions(&completions))
+            }
+            Command::Manual(manual) => finish(&Messages::plain(), paper::manual(&manual)),
+            Command::Simplify(arguments) => {
+                let messages = Messages::new(&arguments.output);
+                finish(&messages, simplify::run(&arguments, &messages))
             }
             Command::Inspect(inspect) => {
                 let messages = Messages::new(&inspect.output());

@@ -11,6 +11,7 @@
 //! Imai & Tani 1995; Knuth, TAOCP 4A, 7.1.4).
 
 mod at_limit;
+mod at_values;
 mod choice;
 mod diagram;
 mod error;
@@ -40,9 +41,12 @@ use passes::{coefficients, count, gradient, numbers};
 use system::System;
 
 pub use at_limit::InfiniteLimit;
+pub use at_values::{AtValues, Extremes};
 pub use error::EliminationError;
 pub use nested::{Nested, NestedFactor, NestedSum};
 pub use passes::gradient::Gradient;
+pub use passes::largest::{LargestTerms, Side, SizedTerm};
+pub(crate) use passes::numbers::{Scaled, scaled_integer};
 pub use value::{DividesByZero, fraction_of, symbol_of, variable_of};
 
 /// What the work may cost.
@@ -216,6 +220,16 @@ impl Elimination {
         TermCounts { numerator, denominator, exact: self.distinct }
     }
 
+    /// How many terms there are altogether, without making them.
+    ///
+    /// # Cost
+    /// One sum of large integers for each edge of the diagram: far less than [`Self::count_terms`].
+    pub fn count_all_terms(&self) -> BigUint {
+        let weights: Vec<_> = self.weights.iter().map(|weight| weight.len() as u64).collect();
+        let roots = [self.numerator, self.denominator];
+        passes::at_links(&count::Totals, &self.diagram, &weights, &roots).into_iter().sum()
+    }
+
     /// Numerator and denominator as polynomials, terms collected; not yet in lowest terms.
     ///
     /// # Cost
@@ -256,15 +270,25 @@ impl Elimination {
     /// The value at `s` with these symbol values (by index); exponents are carried, so
     /// that large networks neither overflow nor underflow.
     pub fn value_at(&self, s: Complex<f64>, symbols: &[f64]) -> Complex<f64> {
-        let weights: Vec<_> =
-            self.weights.iter().map(|w| numbers::complex_weight(w, s, symbols)).collect();
+        self.values_at(&[s], symbols)[0]
+    }
+
+    /// The values at many frequencies, as [`Self::value_at`].
+    ///
+    /// # Cost
+    /// One pass over the diagram for each.
+    pub fn values_at(&self, frequencies: &[Complex<f64>], symbols: &[f64]) -> Vec<Complex<f64>> {
+        let coefficients: Vec<_> =
+            self.weights.iter().map(|weight| numbers::Coefficients::new(weight, symbols)).collect();
         let ring = numbers::ComplexNumbers;
-        let values = passes::values(&ring, &self.diagram, &weights);
-        passes::at(&ring, &values, self.numerator).over(passes::at(
-            &ring,
-            &values,
-            self.denominator,
-        ))
+        let at = |&s: &Complex<f64>| {
+            let s = Scaled::new(s, 0);
+            let weights: Vec<_> = coefficients.iter().map(|weight| weight.at(s)).collect();
+            let values = passes::values(&ring, &self.diagram, &weights);
+            let root = |link| passes::at(&ring, &values, link);
+            root(self.numerator).over(root(self.denominator))
+        };
+        frequencies.iter().map(at).collect()
     }
 
     /// Numerator and denominator at `s` and these symbol values (by index), each with its relative
@@ -309,6 +333,24 @@ impl Elimination {
     ) -> Option<[Vec<BigInt>; 2]> {
         let products = coefficients::products(&self.diagram, &self.weights);
         (products <= affordable).then(|| self.coefficients(symbol))
+    }
+
+    /// The terms of each coefficient, to be had one by one, the largest at these symbol values first.
+    pub fn largest_terms(&self, symbols: &[f64]) -> LargestTerms<'_> {
+        let roots = [self.numerator, self.denominator];
+        LargestTerms::new(&self.diagram, &self.weights, roots, symbols)
+    }
+
+    /// The function with one symbol in the place of another.
+    ///
+    /// # Cost
+    /// That of a copy; terms of the result can meet.
+    #[must_use]
+    pub fn renamed(&self, from: Var, to: Var) -> Self {
+        let name = |variable: Var| if variable == from { to } else { variable };
+        let weights: Vec<Polynomial> =
+            self.weights.iter().map(|weight| weight.renamed(name)).collect();
+        Self { symbols: symbols_of(&weights), weights, distinct: false, ..self.clone() }
     }
 
     /// The diagram as named sub-expressions.

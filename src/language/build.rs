@@ -15,7 +15,7 @@ use super::queries::reference_of;
 use super::source::Source;
 use super::sources::{self, Access, Term};
 use super::syntax::{
-    Content, Expression, LimitPoint, Name, Quantity, Query, Statement, StatementKind,
+    ClaimDraft, Content, Expression, LimitPoint, Name, Quantity, Query, Statement, StatementKind,
 };
 use super::units::UnitSolver;
 use crate::circuit::{
@@ -83,14 +83,6 @@ pub(crate) struct Builder<'s> {
     pub(crate) couplings: Vec<CouplingDraft>,
     pub(crate) shots: Vec<ShotDraft>,
     temperature: Option<(Number, Span)>,
-}
-
-/// A claim before its names are known.
-pub(crate) struct ClaimDraft {
-    pub(crate) name: Name,
-    pub(crate) expression: Expression,
-    /// Where the formula stands.
-    pub(crate) span: Span,
 }
 
 impl<'s> Builder<'s> {
@@ -170,9 +162,7 @@ impl<'s> Builder<'s> {
             StatementKind::Let(name, value) => self.let_name(name, value.map(|value| *value)),
             StatementKind::Band(ends) => self.band(&ends.0, &ends.1, span),
             StatementKind::Ask(query) => self.queries.push((query, span)),
-            StatementKind::Claim(name, expression, place) => {
-                self.claims.push(ClaimDraft { name, expression, span: place });
-            }
+            StatementKind::Claim(claim) => self.claims.push(*claim),
             StatementKind::Limit(name, point) => self.limits.push((name, point)),
             StatementKind::Temperature(quantity) => self.set_temperature(*quantity),
             StatementKind::Instance(name) => {
@@ -407,7 +397,8 @@ impl<'s> Builder<'s> {
             Some(Content::Expression(expression)) => Some(expression),
             _ => None,
         });
-        for expression in self.claims.iter().map(|claim| &claim.expression).chain(numbers) {
+        let claimed = self.claims.iter().filter_map(|claim| claim.expression.as_ref());
+        for expression in claimed.chain(numbers) {
             visit_names(expression, &mut |name, span| {
                 if self.definitions.find(name).is_some() {
                     note(name, span);

@@ -86,6 +86,11 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "leave `from` out",
     ),
     ("inductors", "a coupling names what is no inductor", "name two different inductors"),
+    (
+        "latex",
+        "a formula in LaTeX cannot be read, or has two readings",
+        "write names with subscripts, `\\frac`, `\\cdot`, `\\parallel`; set parentheses where two readings are offered",
+    ),
     ("limit", "a limit of what is no symbol", "name a symbol, or `s`"),
     ("meg", "`meg` was written for mega", "write `M`"),
     (
@@ -162,6 +167,11 @@ pub const CODES: &[(&str, &str, &str)] = &[
         "name a dependent source, a finite op-amp or a device's `gm`",
     ),
     ("role", "a terminal has no node or several", "write `role node` and a comma"),
+    (
+        "root",
+        "a root stands in a sum, or in a claim about a rational function",
+        "write the root as a factor, in claims about poles, zeros, `w0`, `f0` and `Q`",
+    ),
     ("rounded", "a number is irrational", "it is rounded to 30 digits; nothing is to be done"),
     (
         "s-in-value",
@@ -239,6 +249,11 @@ pub const CODES: &[(&str, &str, &str)] = &[
     ("unused", "a name is declared and never used", "remove it"),
     ("walk-end", "a walk ends at an element", "add the node at its end"),
     ("wire", "a wire has a name, a value or a parallel element", "write `a > wire > b`"),
+    (
+        "within",
+        "a claim's tolerance is 0 or belongs to `=`",
+        "write it like `claim p1 ~ -1/(R1*C1) within 5 %`",
+    ),
     ("wrong-unit", "a value is in another unit than it must be", "check the unit"),
     ("zero-divisor", "a division by zero", "check the expression"),
 ];

@@ -40,7 +40,7 @@ fn stranger(content: &str) -> Option<usize> {
             !c.is_ascii_graphic()
                 && !c.is_ascii_whitespace()
                 && !is_greek(*c)
-                && !matches!(c, '∥' | '±')
+                && !matches!(c, '∥' | '±' | '≈' | '∞')
         })
         .map(|(offset, _)| offset)
 }
@@ -141,6 +141,8 @@ fn expected(positives: &[Rule]) -> String {
             Rule::semicolon => "`;`",
             Rule::comma => "`,`",
             Rule::equals => "`=`",
+            Rule::about => "`~`",
+            Rule::within => "`within`",
             Rule::open | Rule::arguments => "`(`",
             Rule::close => "`)`",
             Rule::quote | Rule::quoted => "a title in quotes",
@@ -158,7 +160,9 @@ fn expected(positives: &[Rule]) -> String {
             | Rule::parameter
             | Rule::parameters
             | Rule::kind
+            | Rule::claim_name
             | Rule::callee => "a name",
+            Rule::latex_formula => "a formula",
             Rule::node | Rule::nodes | Rule::part | Rule::step => "a node or an element",
             Rule::quantity | Rule::figure | Rule::plus_minus | Rule::tolerance => "a quantity",
             Rule::unit => "a unit",

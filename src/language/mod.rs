@@ -12,6 +12,8 @@ mod bias;
 mod blocks;
 mod build;
 mod claim;
+mod claim_file;
+mod claim_target;
 mod codes;
 mod definitions;
 mod devices;
@@ -19,6 +21,7 @@ mod diagnostic;
 mod expand;
 mod expression;
 mod fault;
+mod latex;
 mod names;
 mod nodes;
 mod parse;
@@ -41,7 +44,7 @@ pub use diagnostic::{
     Diagnostic, Label, MOST_SHOWN, Severity, Span, line_and_column, render, render_all,
 };
 
-use crate::circuit::{Ask, Band, Circuit, Limit, Number, Unit, Value};
+use crate::circuit::{Ask, Band, Circuit, Claim, Limit, Number, Unit, Value};
 use build::Builder;
 use parse::{Reader, Rule};
 use source::Source;
@@ -126,6 +129,25 @@ pub fn limit(circuit: &Circuit, text: &str) -> Result<Limit, Vec<Diagnostic>> {
         Some((name, point)) => claim::limit(circuit, &name, point).map_err(|fault| vec![fault]),
         None => Err(faults),
     }
+}
+
+/// Reads a claim of the command line: `H = 1/(1 + s R1 C1)`, `p1 ~ -1/(R1*C1) within 5 %`.
+///
+/// Left of the relation may also stand a query; it is added to the questions of the circuit, and its
+/// text is its name.
+///
+/// # Errors
+/// What cannot be read or is unknown; spans are places in `text`.
+pub fn claim(circuit: &mut Circuit, text: &str) -> Result<Claim, Vec<Diagnostic>> {
+    claim_file::one(circuit, text)
+}
+
+/// Reads a file of claims: one on each line, or the displayed formulas of a LaTeX document.
+///
+/// # Errors
+/// Everything that cannot be read or is unknown.
+pub fn claims(circuit: &mut Circuit, text: &str) -> Result<Vec<Claim>, Vec<Diagnostic>> {
+    claim_file::all(circuit, text)
 }
 
 /// Reads an expression over the symbols of a circuit, as a claim or a printed result holds it.

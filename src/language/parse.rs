@@ -6,11 +6,12 @@
 use super::diagnostic::{Diagnostic, Span};
 use super::expression::ExpressionReader;
 use super::fault;
+use super::latex;
 use super::names::ascii_name;
 use super::quantity;
 use super::source::{self, LogicalLine, Source};
 use super::syntax::{
-    Block, Content, Device, Item, LimitPoint, Name, Part, Quantity, Query, Statement,
+    Block, ClaimDraft, Content, Device, Item, LimitPoint, Name, Part, Quantity, Query, Statement,
     StatementKind, Step,
 };
 use crate::circuit::{Number, Tolerance};
@@ -23,6 +24,9 @@ use pest::iterators::Pair;
 #[grammar = "../grammar/expression.pest"]
 #[grammar = "../grammar/circuit.pest"]
 pub(crate) struct Grammar;
+
+/// The relative deviation that `~` and `≈` allow where a claim names none, in percent.
+const DEFAULT_PERCENT: i64 = 10;
 
 /// Parentheses may be nested this deep.
 pub(crate) const DEEPEST: usize = 200;
@@ -101,6 +105,7 @@ fn line_rule(content: &str) -> Option<Rule> {
             "band" => Rule::band_line,
             "block" => Rule::block_line,
             "circuit" => Rule::title_line,
+            "claim" if latex::is_latex(content) => Rule::latex_claim_line,
             "claim" => Rule::claim_line,
             "end" => Rule::end_line,
             "let" => Rule::let_line,
@@ -173,6 +178,61 @@ impl Reader<'_> {
         Some((name, if infinite { LimitPoint::Infinity } else { LimitPoint::Zero }))
     }
 
+    /// The tokens of a claim behind its name: relation, formula, tolerance.
+    pub(crate) fn claim<'i>(
+        &mut self,
+        name: Name,
+        tokens: impl Iterator<Item = Pair<'i, Rule>>,
+    ) -> Option<ClaimDraft> {
+        let (mut expression, mut place) = (None, None);
+        let (mut about, mut within) = (None, None);
+        for token in tokens {
+            let span = self.span(&token);
+            match token.as_rule() {
+                Rule::about => about = Some(span),
+                Rule::sum => {
+                    place = Some(span);
+                    expression = Some(self.expression(token, true)?);
+                }
+                Rule::latex_formula => place = Some(span),
+                Rule::within => within = Some((self.within(token)?, span)),
+                _ => {}
+            }
+        }
+        let within = match (about, within) {
+            (None, None) => None,
+            (None, Some((_, span))) => {
+                self.faults.push(
+                    Diagnostic::error("within", span, "`=` has no tolerance")
+                        .help("write `~` in the place of `=`"),
+                );
+                return None;
+            }
+            (Some(_), Some((within, _))) => Some(within),
+            (Some(_), None) => Some(Number::new(DEFAULT_PERCENT.into(), 100.into())),
+        };
+        Some(ClaimDraft { name, within, expression, span: place? })
+    }
+
+    /// `within 5 %`
+    fn within(&mut self, pair: Pair<'_, Rule>) -> Option<Number> {
+        let token = pair.into_inner().find(|token| token.as_rule() == Rule::number)?;
+        let span = self.span(&token);
+        match quantity::decimal(token.as_str(), span) {
+            Ok(percent) if percent > Number::zero() => {
+                Some(percent / Number::from_integer(100.into()))
+            }
+            Ok(_) => {
+                self.faults.push(Diagnostic::error("within", span, "a tolerance is above 0 %"));
+                None
+            }
+            Err(fault) => {
+                self.faults.push(fault);
+                None
+            }
+        }
+    }
+
     /// An expression or a quantity inside a call, read again as a value.
     pub(crate) fn value_again(&mut self, pair: &Pair<'_, Rule>) -> Option<Content> {
         let range = pair.as_span();
@@ -226,11 +286,9 @@ impl Reader<'_> {
                 let from = inner.next().map(|pair| self.name(&pair));
                 Some(StatementKind::Ask(Query { name, expression, from }))
             }
-            Rule::claim_line => {
+            Rule::claim_line | Rule::latex_claim_line => {
                 let name = self.name(&inner.next()?);
-                let formula = inner.next()?;
-                let span = self.span(&formula);
-                Some(StatementKind::Claim(name, self.expression(formula, true)?, span))
+                Some(StatementKind::Claim(Box::new(self.claim(name, inner)?)))
             }
             Rule::let_line => {
                 let name = self.name(&inner.next()?);

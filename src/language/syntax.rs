@@ -29,8 +29,7 @@ pub(crate) enum StatementKind {
     Walk(Vec<Step>),
     Device(Device),
     Ask(Query),
-    /// The name, the formula, and where all of it stands.
-    Claim(Name, Expression, Span),
+    Claim(Box<ClaimDraft>),
     Let(Name, Option<Box<Content>>),
     Limit(Name, LimitPoint),
     Band(Box<(Quantity, Quantity)>),
@@ -40,6 +39,18 @@ pub(crate) enum StatementKind {
     Use(Device),
     /// The name of a block that has been put in.
     Instance(Name),
+}
+
+/// A claim before its names are known.
+#[derive(Debug)]
+pub(crate) struct ClaimDraft {
+    pub(crate) name: Name,
+    /// None for `=`; the largest relative deviation for `~` and `≈`.
+    pub(crate) within: Option<Number>,
+    /// None where it is LaTeX, which can be read only when the names are known.
+    pub(crate) expression: Option<Expression>,
+    /// Where the formula stands.
+    pub(crate) span: Span,
 }
 
 /// Where a limit goes.

@@ -280,7 +280,6 @@ fn printed_formulas_equal_an_independent_exact_solve() {
     let outcomes = outcomes(1, judge);
     let (equal, singular) =
         (share(&outcomes, &Outcome::Equal), share(&outcomes, &Outcome::Singular));
-    println!("{:.1} % equal, {:.1} % without a unique solution", 100.0 * equal, 100.0 * singular);
     // The generator must keep making circuits worth judging.
     assert!(equal > 0.5, "only {equal} were judged");
     assert!(singular > 0.03, "only {singular} had no unique solution");

@@ -8,6 +8,7 @@ pub(crate) mod coefficients;
 pub(crate) mod count;
 pub(crate) mod expand;
 pub(crate) mod gradient;
+pub(crate) mod largest;
 pub(crate) mod numbers;
 
 use super::diagram::{Diagram, Link};

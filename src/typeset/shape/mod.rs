@@ -15,10 +15,11 @@ pub use bode::bode;
 pub(crate) use bode::ratio;
 pub use by_element::by_element;
 pub use compact::compact;
+pub(crate) use compact::product as ordered_product;
 pub use nested::{Layered, nested};
 pub use powers::powers;
 pub use product::product;
-pub use sections::{Quantity, Section, sections};
+pub use sections::{NumericSection, Quantity, Section, sections};
 
 use num_bigint::BigInt;
 use num_rational::BigRational;

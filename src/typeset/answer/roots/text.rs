@@ -5,13 +5,13 @@ use std::fmt::Write;
 use num_rational::BigRational;
 use num_traits::One;
 
-use super::table::{Side, Table};
 use super::{Answer, Moved, Report, label, words};
 use crate::algebra::Fraction;
 use crate::analysis::roots::{
-    Against, Approximation, Chance, Conditions, Form, RootFacts, Sensitivity, Shift, Spread,
+    Approximation, Chance, Conditions, Form, RootFacts, Sensitivity, Shift, Spread,
 };
 use crate::circuit::{SymbolId, Unit};
+use crate::typeset::answer::table::{Side, Table};
 use crate::typeset::answer::{TextStyle, lettering};
 use crate::typeset::number::{self, Medium};
 use crate::typeset::screen::Characters;
@@ -210,11 +210,7 @@ impl Writer<'_> {
             let _ = writeln!(out, "  gain at dc {}", self.quantity(gain.value, &unit, DIGITS));
         }
         for edge in &roots.band_edges {
-            let against = match edge.against {
-                Against::Dc => "dc",
-                Against::Infinity => "high frequencies",
-                Against::Peak => "the largest value",
-            };
+            let against = words::against(edge.against);
             let hz = self.quantity(edge.hz, "Hz", DIGITS);
             let _ = writeln!(out, "  {}3 dB against {against} at {hz}", self.minus());
         }
@@ -272,11 +268,7 @@ impl Writer<'_> {
         }
         for (index, edge) in roots.band_edges.iter().enumerate() {
             let Some(all) = real(&edge.sensitivities) else { continue };
-            let which = match (roots.band_edges.len(), index) {
-                (1, _) => "",
-                (_, 0) => "lower ",
-                _ => "upper ",
-            };
+            let which = words::which_edge(roots, index);
             rows.push((format!("{which}{}3 dB edge", self.minus()), all, None));
         }
         // A gain that is a plain number depends on nothing.

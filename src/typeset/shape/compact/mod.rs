@@ -25,7 +25,7 @@ use super::{Lettering, bode, powers};
 use crate::algebra::{Fraction, Polynomial, Var, gcd};
 use crate::typeset::Formula;
 use laurent::{Laurent, Ring};
-pub(super) use order::product;
+pub(crate) use order::product;
 use quotient::Factored;
 pub(super) use quotient::factors;
 use sum::{Form, Writer};

@@ -30,7 +30,7 @@ pub(super) fn sum(terms: impl IntoIterator<Item = Formula>) -> Formula {
 }
 
 /// A product in order, over one bar.
-pub(in super::super) fn product(factors: impl IntoIterator<Item = Formula>) -> Formula {
+pub(crate) fn product(factors: impl IntoIterator<Item = Formula>) -> Formula {
     let whole = Formula::product(factors);
     let negative = whole.is_negative();
     let ordered = match unsigned(&whole).view() {
