@@ -19,6 +19,7 @@ mod inspect;
 mod messages;
 mod note;
 mod paper;
+mod progress;
 mod response;
 mod roots;
 mod schema;

@@ -14,6 +14,7 @@ use super::args::{Format, Roots, RootsFormat};
 use super::failure::Failure;
 use super::input::{self, Loaded};
 use super::messages::Messages;
+use super::progress::Progress;
 use super::{width, write_results};
 
 /// Runs the command; the exit code is 0, or 1 when a witness disagrees.
@@ -256,7 +257,10 @@ impl Printer<'_> {
                 |list: &[roots::RootFacts]| list.iter().map(|facts| facts.root).collect::<Vec<_>>();
             let (poles, zeros) = (places(&roots.poles), places(&roots.zeros));
             let draws = (trials as usize, self.arguments.seed);
-            roots::monte_carlo(&self.loaded.circuit, nominal, &poles, &zeros, draws)
+            let mut bar = Progress::new("circuits", trials as usize, self.arguments.output.quiet);
+            roots::monte_carlo(&self.loaded.circuit, nominal, &poles, &zeros, draws, &mut |done| {
+                bar.at(done);
+            })
         });
         Ok(Report { entry, roots, chance, moved })
     }

@@ -9,6 +9,7 @@
 //! `RANDOM_CIRCUITS_FROM=1000000` begins it at another seed.
 
 mod generator;
+mod invariants;
 #[path = "../support/mod.rs"]
 mod support;
 
@@ -26,8 +27,8 @@ use num_traits::Zero;
 const CIRCUITS: u64 = if cfg!(debug_assertions) { 300 } else { 10_000 };
 /// Longer formulas stay nested.
 const MAX_TERMS: usize = if cfg!(debug_assertions) { 120 } else { 1_000 };
-/// Of these many one is also written in another order.
-const REORDERED: u64 = 4;
+/// Of these many one is also written in another order, and of one the roots are found.
+const ONE_IN: u64 = 4;
 
 const SHAPES: [Shape; 7] = [
     Shape::Compact,
@@ -286,6 +287,12 @@ fn printed_formulas_equal_an_independent_exact_solve() {
 
 #[test]
 fn the_order_of_lines_does_not_show() {
-    let outcomes = outcomes(REORDERED, reordered);
+    let outcomes = outcomes(ONE_IN, reordered);
+    assert!(share(&outcomes, &Outcome::Equal) > 0.5);
+}
+
+#[test]
+fn roots_keep_their_invariants() {
+    let outcomes = outcomes(ONE_IN, invariants::judge);
     assert!(share(&outcomes, &Outcome::Equal) > 0.5);
 }

@@ -27,7 +27,7 @@ pub use approximate::{Approximation, Condition, Form, GOOD, Pair, TOLERABLE, val
 pub use cancelled::Cancelled;
 pub use error::RootsError;
 pub use find::{Root, find};
-pub use frequency::{BandEdge, DcGain};
+pub use frequency::{Against, BandEdge, DcGain};
 pub use locus::{Locus, locus};
 pub(crate) use monte_carlo::Toleranced;
 pub use monte_carlo::{Chance, Spread, monte_carlo};
@@ -56,8 +56,8 @@ pub struct RootReport {
     pub gain: f64,
     /// H(0), where it is finite and not 0.
     pub dc_gain: Option<DcGain>,
-    /// Where the magnitude has fallen to 1/√2.
-    pub band_edge: Option<BandEdge>,
+    /// Where the magnitude has fallen to 1/√2, by frequency.
+    pub band_edges: Vec<BandEdge>,
     /// Where the poles lie, exactly.
     pub verdict: Verdict,
     /// What keeps them in the left half plane; none for orders above four and long formulas.
@@ -143,8 +143,10 @@ pub fn analyse(
     Ok(RootReport {
         dc_gain: frequency::dc_gain(&numerator, &denominator, nominal)
             .map(|gain| DcGain { sensitivities: describer.named(gain.sensitivities), ..gain }),
-        band_edge: frequency::band_edge(&numerator, &denominator, nominal)
-            .map(|edge| BandEdge { sensitivities: describer.named(edge.sensitivities), ..edge }),
+        band_edges: frequency::band_edges(&numerator, &denominator, nominal)
+            .into_iter()
+            .map(|edge| BandEdge { sensitivities: describer.named(edge.sensitivities), ..edge })
+            .collect(),
         verdict: verdict(&denominator),
         conditions,
         poles,

@@ -1,7 +1,10 @@
 //! Chance: the roots of many circuits whose values lie evenly between the limits of their tolerances.
 //!
-//! The same seed gives the same circuits on every machine (SplitMix64). Each is solved from exact
+//! The same seed gives the same circuits on every machine (SplitMix64), however many processors it has:
+//! values are drawn in order, and the circuits of a batch are shared out. Each is solved from exact
 //! coefficients, like the nominal one; each root is followed to the one that it has become.
+
+use std::sync::atomic::{AtomicUsize, Ordering};
 
 use num_complex::Complex;
 
@@ -35,28 +38,39 @@ pub struct Spread {
     pub q: Option<[f64; 3]>,
 }
 
-/// Draws so many circuits from that seed. `poles` and `zeros` are the nominal roots.
+/// Circuits that are drawn before any of them is solved.
+const BATCH: usize = 256;
+
+/// Values that were drawn for the symbols with a tolerance.
+type Draw = Vec<(SymbolId, Number)>;
+
+/// Draws so many circuits from that seed. `poles` and `zeros` are the nominal roots; `progress` is told
+/// now and then how many circuits are done.
 ///
 /// # Cost
-/// That of the coefficients and their roots, for each circuit.
+/// That of the coefficients and their roots, for each circuit, on all processors.
 pub fn monte_carlo(
     circuit: &Circuit,
     values: &Nominal<'_>,
     poles: &[Root],
     zeros: &[Root],
     (trials, seed): (usize, u64),
+    progress: &mut dyn FnMut(usize),
 ) -> Chance {
     let mut random = Random::new(seed);
     let toleranced = Toleranced::new(circuit);
     let (mut poles, mut zeros) = (Followed::new(poles), Followed::new(zeros));
     let mut not_stable = 0;
-    for _ in 0..trials {
-        let drawn = toleranced.draw(&mut random);
-        let Some((above, below)) = values.with(&drawn) else { continue };
-        not_stable += usize::from(verdict(&below) != Verdict::Stable);
-        if let (Some(above), Some(below)) = (places(&above), places(&below)) {
-            zeros.take(&above);
-            poles.take(&below);
+    for done in (0..trials).step_by(BATCH) {
+        progress(done);
+        let draws: Vec<Draw> =
+            (done..trials.min(done + BATCH)).map(|_| toleranced.draw(&mut random)).collect();
+        for solved in solved(values, &draws).into_iter().flatten() {
+            not_stable += usize::from(!solved.stable);
+            if let Some([above, below]) = solved.places {
+                zeros.take(&above);
+                poles.take(&below);
+            }
         }
     }
     Chance { trials, seed, not_stable, poles: poles.spreads(), zeros: zeros.spreads() }
@@ -94,6 +108,50 @@ impl<'a> Toleranced<'a> {
         });
         values.collect()
     }
+}
+
+/// One circuit that was drawn.
+struct Solved {
+    stable: bool,
+    /// Zeros and poles.
+    places: Option<[Vec<Complex<f64>>; 2]>,
+}
+
+/// The circuits of a batch, in its order; none where the function is not finite.
+fn solved(values: &Nominal<'_>, draws: &[Draw]) -> Vec<Option<Solved>> {
+    let one = |draw: &Draw| {
+        let (above, below) = values.with(draw)?;
+        let stable = verdict(&below) == Verdict::Stable;
+        let places = places(&above).zip(places(&below)).map(|(above, below)| [above, below]);
+        Some(Solved { stable, places })
+    };
+    let workers = std::thread::available_parallelism().map_or(1, usize::from).min(draws.len());
+    // Where there are no threads, there is one processor.
+    if workers <= 1 {
+        return draws.iter().map(one).collect();
+    }
+    let next = AtomicUsize::new(0);
+    let work = || {
+        let mut mine = Vec::new();
+        loop {
+            let index = next.fetch_add(1, Ordering::Relaxed);
+            let Some(draw) = draws.get(index) else { return mine };
+            mine.push((index, one(draw)));
+        }
+    };
+    let mut all: Vec<(usize, Option<Solved>)> = std::thread::scope(|scope| {
+        let others: Vec<_> = (1..workers).map(|_| scope.spawn(work)).collect();
+        let mut all = work();
+        for other in others {
+            match other.join() {
+                Ok(theirs) => all.extend(theirs),
+                Err(panic) => std::panic::resume_unwind(panic),
+            }
+        }
+        all
+    });
+    all.sort_unstable_by_key(|(index, _)| *index);
+    all.into_iter().map(|(_, solved)| solved).collect()
 }
 
 /// The roots of all circuits, by the nominal root that they come from.

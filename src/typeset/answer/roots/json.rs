@@ -5,7 +5,8 @@ use serde_json::{Map, Value};
 
 use super::{Answer, Report, words};
 use crate::analysis::roots::{
-    Approximation, Chance, Condition, Conditions, Form, RootFacts, Sensitivity, Shift, Spread,
+    Against, Approximation, Chance, Condition, Conditions, Form, RootFacts, Sensitivity, Shift,
+    Spread,
 };
 use crate::circuit::Circuit;
 use crate::typeset::answer::lettering;
@@ -66,8 +67,8 @@ struct Function {
     gain: f64,
     /// H(0); null where it is 0 or infinite.
     dc_gain: Option<Gain>,
-    /// Where the magnitude is 1/√2 of that at one end of the frequency axis.
-    band_edge: Option<Edge>,
+    /// Where the magnitude is 1/√2 of what it is measured against, by frequency.
+    band_edges: Vec<Edge>,
     /// `stable`, `marginal` or `unstable`, decided exactly.
     stability: &'static str,
     /// What must be positive for stability, all symbols being so; an empty list for always, null where
@@ -91,7 +92,7 @@ struct Gain {
 #[derive(Clone, Debug, PartialEq, Serialize)]
 struct Edge {
     hz: f64,
-    /// `dc` or `infinity`: the end that it is measured against.
+    /// `dc`, `infinity` or `peak`: what it is measured against.
     against: &'static str,
     sensitivity: Option<Map<String, Value>>,
 }
@@ -260,11 +261,19 @@ impl Writer<'_> {
                 value: gain.value,
                 sensitivity: self.named(gain.sensitivities.as_ref(), |one| one.value.re),
             }),
-            band_edge: roots.band_edge.as_ref().map(|edge| Edge {
-                hz: edge.hz,
-                against: if edge.from_dc { "dc" } else { "infinity" },
-                sensitivity: self.named(edge.sensitivities.as_ref(), |one| one.value.re),
-            }),
+            band_edges: roots
+                .band_edges
+                .iter()
+                .map(|edge| Edge {
+                    hz: edge.hz,
+                    against: match edge.against {
+                        Against::Dc => "dc",
+                        Against::Infinity => "infinity",
+                        Against::Peak => "peak",
+                    },
+                    sensitivity: self.named(edge.sensitivities.as_ref(), |one| one.value.re),
+                })
+                .collect(),
             stability: words::verdict_word(roots.verdict),
             stable_when_positive: roots.conditions.as_ref().map(|conditions| match conditions {
                 Conditions::Always => Vec::new(),

@@ -8,7 +8,7 @@ use num_traits::One;
 use super::{Answer, Moved, Report, label, words};
 use crate::algebra::Fraction;
 use crate::analysis::roots::{
-    Approximation, Chance, Conditions, Form, RootFacts, Sensitivity, Shift, Spread,
+    Against, Approximation, Chance, Conditions, Form, RootFacts, Sensitivity, Shift, Spread,
 };
 use crate::circuit::{SymbolId, Unit};
 use crate::typeset::answer::table::{Side, Table};
@@ -209,11 +209,14 @@ impl Writer<'_> {
         if let Some(gain) = &roots.dc_gain {
             let _ = writeln!(out, "  gain at dc {}", self.quantity(gain.value, &unit, DIGITS));
         }
-        if let Some(edge) = &roots.band_edge {
-            let against = if edge.from_dc { "dc" } else { "high frequencies" };
-            let minus = if self.is_ascii() { '-' } else { '−' };
+        for edge in &roots.band_edges {
+            let against = match edge.against {
+                Against::Dc => "dc",
+                Against::Infinity => "high frequencies",
+                Against::Peak => "the largest value",
+            };
             let hz = self.quantity(edge.hz, "Hz", DIGITS);
-            let _ = writeln!(out, "  {minus}3 dB against {against} at {hz}");
+            let _ = writeln!(out, "  {}3 dB against {against} at {hz}", self.minus());
         }
         for cancelled in &roots.cancelled {
             let value = cancelled.root.value;
@@ -228,6 +231,10 @@ impl Writer<'_> {
             );
         }
         out
+    }
+
+    fn minus(&self) -> char {
+        if self.is_ascii() { '-' } else { '−' }
     }
 
     fn unit(&self) -> String {
@@ -263,12 +270,14 @@ impl Writer<'_> {
         if let Some(all) = roots.dc_gain.as_ref().and_then(|gain| real(&gain.sensitivities)) {
             rows.push(("gain at dc".to_owned(), all, None));
         }
-        if let Some(all) = roots.band_edge.as_ref().and_then(|edge| real(&edge.sensitivities)) {
-            rows.push((
-                "-3 dB edge".replace('-', if self.is_ascii() { "-" } else { "−" }),
-                all,
-                None,
-            ));
+        for (index, edge) in roots.band_edges.iter().enumerate() {
+            let Some(all) = real(&edge.sensitivities) else { continue };
+            let which = match (roots.band_edges.len(), index) {
+                (1, _) => "",
+                (_, 0) => "lower ",
+                _ => "upper ",
+            };
+            rows.push((format!("{which}{}3 dB edge", self.minus()), all, None));
         }
         // A gain that is a plain number depends on nothing.
         rows.retain(|row| row.1.iter().any(|(_, value)| value.abs() >= 5e-4));

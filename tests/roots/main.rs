@@ -1,6 +1,9 @@
 //! `cofactor roots` as a user runs it: published poles and zeros, sums of sensitivities, the program's
 //! own approximations, options, pictures.
 
+mod published;
+mod short_formulas;
+
 use serde_json::Value;
 use std::io::Write;
 use std::process::{Command, Stdio};
@@ -65,7 +68,7 @@ fn ladder(sections: u32) -> String {
 /// −(4/RC)·sin²((2k − 1)π/(4N + 2)) for N equal sections (Morgan-Voyce 1959; closed form).
 #[test]
 fn poles_of_uniform_ladders_are_within_their_bounds() {
-    for sections in [5, 10, 20, 30, 40] {
+    for sections in 5..=40 {
         let found = roots(&ladder(sections), &[]);
         let poles = found["poles"].as_array().expect("poles");
         assert_eq!(poles.len(), sections as usize);
@@ -189,6 +192,43 @@ fn an_element_is_solved_for() {
     let (code, _, err) = run(divider, &["--move", "gain = 2", "--with", "R2"]);
     assert_eq!(code, 2, "{err}");
     assert!(err.contains("alone cannot"), "{err}");
+}
+
+/// A parallel resonant circuit behind a resistor: edges at ±1/(2RC) + √(1/(2RC)² + 1/LC) (textbook).
+#[test]
+fn a_band_pass_has_two_edges() {
+    let circuit =
+        "in > voltage Vin > ground\nin > R1 = 1 kΩ > out > L1 = 1 mH || C1 = 1 µF > ground
+ask H = V(out)/Vin\nask G = V(in, out)/Vin\n";
+    let found = roots(circuit, &["H"]);
+    let half = 1.0 / (2.0 * 1e3 * 1e-6);
+    let middle = f64::sqrt(half * half + 1e9);
+    let edges = found["band_edges"].as_array().expect("edges");
+    for (edge, sign) in edges.iter().zip([-1.0, 1.0]) {
+        assert_eq!(edge["against"], "peak");
+        let omega = number(&edge["hz"]) * std::f64::consts::TAU;
+        let expected = middle + sign * half;
+        assert!((omega / expected - 1.0).abs() < 1e-12, "{omega} {expected}");
+        // ω∂: of the half width −1 for R, of the middle by its share.
+        let by_r = (-sign * half - half * half / middle) / expected;
+        assert!((number(&edge["sensitivity"]["R1"]) - by_r).abs() < 1e-9);
+        let by_l = -0.5 * 1e9 / middle / expected;
+        assert!((number(&edge["sensitivity"]["L1"]) - by_l).abs() < 1e-9);
+    }
+    assert_eq!(edges.len(), 2);
+    // The notch: against dc below, against high frequencies above.
+    let found = roots(circuit, &["G"]);
+    let against: Vec<&str> = found["band_edges"]
+        .as_array()
+        .expect("edges")
+        .iter()
+        .map(|edge| edge["against"].as_str().unwrap_or_default())
+        .collect();
+    assert_eq!(against, ["dc", "infinity"]);
+    for edge in found["band_edges"].as_array().expect("edges") {
+        let sum: f64 = ["L1", "C1"].iter().map(|name| number(&edge["sensitivity"][*name])).sum();
+        assert!((sum + 1.0).abs() < 1e-9, "{edge}");
+    }
 }
 
 #[test]
