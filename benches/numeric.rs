@@ -95,7 +95,7 @@ fn examined(circuit: &Circuit, transfer: &Transfer) -> f64 {
     let mut sweep = Sweep::new(circuit, transfer, &[]).expect("a sweep");
     let points = hertz().into_iter().map(|f| {
         let s = Complex::new(0.0, std::f64::consts::TAU * f);
-        sweep.examine(s).expect("an answer").condition
+        sweep.examine(s).expect("an answer").error_bound
     });
     points.fold(0.0, f64::max)
 }

@@ -1,8 +1,9 @@
 //! What a question is answered with: named results.
 
+use super::closed_form::terms_by_power;
 use super::noise::{self, Noise};
 use super::{
-    AnalysisError, Check, ClosedForm, Derivation, Notice, NumericForm, Options, feedback,
+    AnalysisError, Check, ClosedForm, Derivation, Length, Notice, NumericForm, Options, feedback,
     limit_text, posed::Posed, return_ratio, two_port,
 };
 use crate::circuit::{Ask, Circuit, Drive, Question, Symbol, Transfer, Unit};
@@ -27,8 +28,8 @@ pub struct Entry {
     pub own_symbols: usize,
     /// The formula. The first variable is the frequency in hertz in a noise density, else `s`.
     pub form: ClosedForm,
-    /// How many terms it has expanded, by powers of `s`.
-    pub counts: TermCounts,
+    /// How many terms it has expanded; by powers of `s` see [`Self::terms_by_power`].
+    pub length: Length,
     /// The formula with the nominal values put in.
     pub numeric: Option<NumericForm>,
     /// The limits that were taken, as they are written.
@@ -51,6 +52,14 @@ impl Entry {
         self.evidence.passed() && self.checks.iter().all(|check| check.passed)
     }
 
+    /// How many terms the formula has expanded, by powers of `s`; none for a nested form without a diagram.
+    ///
+    /// # Cost
+    /// For a nested form one pass over the diagram with a large integer for each power of `s`.
+    pub fn terms_by_power(&self) -> Option<TermCounts> {
+        terms_by_power(&self.length, self.elimination.as_ref())
+    }
+
     /// From the derivation of a transfer function.
     pub(crate) fn new(
         circuit: &Circuit,
@@ -67,7 +76,7 @@ impl Entry {
             symbols: circuit.symbols.clone(),
             own_symbols: circuit.symbols.len(),
             form: derivation.form,
-            counts: derivation.counts,
+            length: derivation.length,
             numeric: derivation.numeric,
             limits: circuit.limits.iter().map(|limit| limit_text(circuit, limit)).collect(),
             evidence: derivation.evidence,

@@ -16,22 +16,37 @@ pub enum ClosedForm {
     Nested(Nested),
 }
 
-/// The closed form and its size.
-#[derive(Clone, Debug)]
-pub struct Closed {
-    /// The form.
-    pub form: ClosedForm,
-    /// Terms by powers of `s`: of the fraction, or what its expansion would have.
-    pub counts: TermCounts,
+/// How long a closed form is, written out.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Length {
+    /// Terms of numerator and denominator together.
+    pub terms: BigUint,
+    /// False where terms can meet (shared symbols, numbers) and were not expanded: then the number is
+    /// before that.
+    pub exact: bool,
+    /// By powers of `s`, where the fraction was made.
+    by_power: Option<TermCounts>,
 }
 
-/// Terms of a count, altogether.
-pub fn total(counts: &TermCounts) -> BigUint {
-    counts
-        .numerator
-        .iter()
-        .chain(&counts.denominator)
-        .fold(BigUint::zero(), |sum, count| sum + count)
+impl Length {
+    pub(crate) fn of(fraction: &Fraction) -> Self {
+        let terms = fraction.numerator().len() + fraction.denominator().len();
+        Self { terms: BigUint::from(terms), exact: true, by_power: Some(counted(fraction)) }
+    }
+}
+
+/// The closed form and its size.
+#[derive(Clone, Debug)]
+pub(crate) struct Closed {
+    pub(crate) form: ClosedForm,
+    /// Terms of the fraction, or what its expansion would have.
+    pub(crate) length: Length,
+}
+
+impl Closed {
+    fn expanded(fraction: Fraction) -> Self {
+        Self { length: Length::of(&fraction), form: ClosedForm::Expanded(fraction) }
+    }
 }
 
 /// The closed form of an elimination; expanded when it has at most `max_terms` terms.
@@ -39,27 +54,40 @@ pub fn total(counts: &TermCounts) -> BigUint {
 /// Where terms can meet, the expansion is tried up to thirty times as many products, since
 /// what is left after they met is what counts.
 pub(crate) fn close(elimination: &Elimination, max_terms: usize) -> Closed {
-    let counts = elimination.count_terms();
     if elimination.is_zero() {
-        return Closed { form: ClosedForm::Expanded(Fraction::zero()), counts };
+        return Closed::expanded(Fraction::zero());
     }
-    let products = total(&counts);
-    let allowed = if counts.exact { max_terms } else { max_terms.saturating_mul(30) };
+    let products = elimination.count_all_terms();
+    let exact = elimination.is_distinct();
+    let allowed = if exact { max_terms } else { max_terms.saturating_mul(30) };
     if products <= BigUint::from(allowed) {
         let (numerator, denominator) = elimination.expand();
         if let Some(fraction) = Fraction::new(&numerator, &denominator) {
-            let counts = counted(&fraction);
-            if fraction.numerator().len() + fraction.denominator().len() <= max_terms {
-                return Closed { form: ClosedForm::Expanded(fraction), counts };
+            let closed = Closed::expanded(fraction);
+            if closed.length.terms <= BigUint::from(max_terms) {
+                return closed;
             }
-            return Closed { form: ClosedForm::Nested(elimination.nested()), counts };
+            return Closed { form: ClosedForm::Nested(elimination.nested()), ..closed };
         }
     }
-    Closed { form: ClosedForm::Nested(elimination.nested()), counts: without_s(counts) }
+    let form = ClosedForm::Nested(elimination.nested());
+    Closed { form, length: Length { terms: products, exact, by_power: None } }
+}
+
+/// Terms by powers of `s`; none where neither the fraction was made nor a diagram is at hand.
+///
+/// # Cost
+/// For a nested form one pass over the diagram with a large integer for each power of `s`.
+pub(crate) fn terms_by_power(
+    length: &Length,
+    elimination: Option<&Elimination>,
+) -> Option<TermCounts> {
+    let counted = length.by_power.clone();
+    counted.or_else(|| elimination.map(|elimination| without_s(elimination.count_terms())))
 }
 
 /// Terms of a fraction by powers of its first variable.
-pub(crate) fn counted(fraction: &Fraction) -> TermCounts {
+fn counted(fraction: &Fraction) -> TermCounts {
     let by_power = |polynomial: &Polynomial| {
         polynomial.coefficients(Var::S).iter().map(|part| BigUint::from(part.len())).collect()
     };

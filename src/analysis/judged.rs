@@ -1,5 +1,7 @@
 //! The closed form as the witnesses see it.
 
+use std::cell::RefCell;
+
 use num_bigint::BigInt;
 use num_complex::Complex;
 
@@ -18,16 +20,22 @@ const AFFORDABLE: u64 = 3_000_000;
 /// The formula itself is judged: in the prime field it is evaluated as it will be printed, expanded
 /// or nested. Only where a nested form would leave the range of a double is the diagram asked instead.
 pub(crate) struct Judged<'a> {
-    pub(crate) elimination: &'a Elimination,
-    pub(crate) form: &'a ClosedForm,
+    elimination: &'a Elimination,
+    form: &'a ClosedForm,
+    /// Numbers that were last put in, and what came of it: the numeric form asks for the same as the
+    /// witness before.
+    last: RefCell<Option<(Vec<Number>, Option<Coefficients>)>>,
 }
 
-impl Candidate for Judged<'_> {
-    fn value_at(&self, s: Complex<f64>, symbols: &[f64]) -> Complex<f64> {
-        self.elimination.value_at(s, symbols)
+/// Of numerator and denominator, lowest power first.
+type Coefficients = (Vec<Number>, Vec<Number>);
+
+impl<'a> Judged<'a> {
+    pub(crate) fn new(elimination: &'a Elimination, form: &'a ClosedForm) -> Self {
+        Self { elimination, form, last: RefCell::new(None) }
     }
 
-    fn coefficients(&self, symbols: &[Number]) -> Option<(Vec<Number>, Vec<Number>)> {
+    fn with_numbers(&self, symbols: &[Number]) -> Option<Coefficients> {
         let value = |variable: Var| symbol_value(symbols, variable);
         let whole = |numbers: Vec<BigInt>| numbers.into_iter().map(Number::from_integer).collect();
         match self.form {
@@ -43,6 +51,23 @@ impl Candidate for Judged<'_> {
                 Some((whole(numerator), whole(denominator)))
             }
         }
+    }
+}
+
+impl Candidate for Judged<'_> {
+    fn values_at(&self, frequencies: &[Complex<f64>], symbols: &[f64]) -> Vec<Complex<f64>> {
+        self.elimination.values_at(frequencies, symbols)
+    }
+
+    fn coefficients(&self, symbols: &[Number]) -> Option<Coefficients> {
+        if let Some((numbers, known)) = &*self.last.borrow()
+            && numbers == symbols
+        {
+            return known.clone();
+        }
+        let found = self.with_numbers(symbols);
+        *self.last.borrow_mut() = Some((symbols.to_vec(), found.clone()));
+        found
     }
 
     fn value_modulo(&self, prime: u64, s: u64, symbols: &[u64]) -> Option<u64> {

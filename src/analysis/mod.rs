@@ -19,20 +19,23 @@ mod notice;
 mod numbers;
 mod port;
 mod posed;
+pub mod response;
 mod return_ratio;
 pub mod roots;
+mod survey;
 mod two_port;
 
 pub use answer::{Entry, answer};
-pub use closed_form::{Closed, ClosedForm, total};
+pub use closed_form::{ClosedForm, Length};
 pub use error::AnalysisError;
 pub use limits::limit_text;
 pub use noise::{BandNoise, Contributor, Noise, TotalNoise};
 pub use notice::Notice;
 pub use numbers::NumericForm;
+pub use survey::{Numbers, Survey, survey};
 
 use crate::circuit::{Circuit, ElementId, Transfer};
-use crate::elimination::{Elimination, Limits, TermCounts};
+use crate::elimination::{Elimination, Limits};
 use crate::numeric::Report;
 use posed::Posed;
 
@@ -68,8 +71,8 @@ pub struct Check {
 pub struct Derivation {
     /// The formula, in lowest terms, with the circuit's limits taken.
     pub form: ClosedForm,
-    /// How many terms it has expanded, by powers of `s`.
-    pub counts: TermCounts,
+    /// How many terms it has expanded.
+    pub length: Length,
     /// The formula with the nominal values put in, where all are known and that is affordable.
     pub numeric: Option<NumericForm>,
     /// What the witnesses say of the function, before limits are taken.

@@ -2,7 +2,7 @@
 
 use super::limits::limit_text;
 use crate::circuit::graph::charge_groups;
-use crate::circuit::{Circuit, Drive, ElementId, NodeId, Transfer};
+use crate::circuit::{Circuit, Drive, ElementId, Law, NodeId, Transfer};
 use crate::elimination::Elimination;
 
 /// A remark on an answer.
@@ -91,10 +91,20 @@ pub(crate) fn vanished(circuit: &Circuit) -> Notice {
 }
 
 fn drive(circuit: &Circuit, own: usize, transfer: &Transfer) -> String {
+    let node = |id: NodeId| format!("`{}`", circuit[id].name);
     match transfer.drive {
-        Drive::Source(id) if id.0 as usize >= own => "the port's voltage".to_owned(),
+        Drive::Source(id) if id.0 as usize >= own => {
+            // A test source behind the circuit's own elements; of a voltage, the first node is +.
+            let (plus, minus) = (node(circuit[id].plus), node(circuit[id].minus));
+            match circuit[id].law {
+                Law::CurrentSource => format!("a current from {plus} to {minus}"),
+                _ => format!("a voltage across the port {plus}, {minus}"),
+            }
+        }
         Drive::Source(id) => format!("`{}`", circuit[id].name),
-        Drive::Port(..) => "the port's current".to_owned(),
+        Drive::Port(plus, minus) => {
+            format!("a current into the port {}, {}", node(plus), node(minus))
+        }
     }
 }
 

@@ -63,14 +63,14 @@ impl<'c> Posed<'c> {
         };
         let mut notices = notice::collect(circuit, self.own, transfer, &whole);
         let limited = limits::take(circuit, &whole)?;
-        let Closed { form, counts } = close(&limited, options.max_terms);
-        let judged = Judged { elimination: &limited, form: &form };
+        let Closed { form, length } = close(&limited, options.max_terms);
+        let judged = Judged::new(&limited, &form);
         let (evidence, checks) = if circuit.limits.is_empty() {
             (numeric::crosscheck(circuit, transfer, &judged), Vec::new())
         } else {
             // The function before its limits is judged as it stands in the diagram.
             let before = ClosedForm::Nested(whole.nested());
-            let before = Judged { elimination: &whole, form: &before };
+            let before = Judged::new(&whole, &before);
             let checks = limits::judge(circuit, transfer, &judged)?;
             (numeric::crosscheck(circuit, transfer, &before), vec![checks])
         };
@@ -80,7 +80,7 @@ impl<'c> Posed<'c> {
         }
         let without = limits::without_limited(circuit);
         let numeric = numbers::nominal(&without, transfer, &judged, &mut notices);
-        Ok(Derivation { form, counts, numeric, evidence, checks, notices, elimination: limited })
+        Ok(Derivation { form, length, numeric, evidence, checks, notices, elimination: limited })
     }
 }
 

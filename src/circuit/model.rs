@@ -104,7 +104,8 @@ pub enum Class {
     Voltage,
     /// An independent or dependent current source.
     Current,
-    /// An ideal operational amplifier (nullator at the input, norator at the output).
+    /// An operational amplifier: ideal (nullator at the input, norator at the output), or of finite
+    /// gain, a controlled voltage.
     Opamp,
     /// A nullator and a norator.
     Nullor,
@@ -249,6 +250,13 @@ impl Circuit {
     pub fn element(&self, name: &str) -> Option<ElementId> {
         let index = self.elements.iter().position(|element| element.name == name)?;
         u32::try_from(index).ok().map(ElementId)
+    }
+
+    /// Whether the element makes thermal noise: resistors, conductances and the physical resistances of
+    /// devices do, slopes of characteristics do not.
+    pub fn is_noisy(&self, id: ElementId) -> bool {
+        matches!(self[id].class, Class::Resistor | Class::Conductance)
+            && !self.noiseless.contains(&id)
     }
 
     /// The node of that name or alias.

@@ -3,6 +3,7 @@
 use std::path::PathBuf;
 
 use clap::{Args, Parser, Subcommand, ValueEnum};
+use cofactor::typeset::shape::Shape;
 
 /// Exact, closed-form answers about linear circuits.
 #[derive(Debug, Parser)]
@@ -20,8 +21,18 @@ pub(crate) enum Command {
     Roots(Roots),
     /// Every claim against the exact result: equal, equal in a limit, or where it is wrong
     Check(super::check::Check),
+    /// The JSON Schema of what a command prints under `--format json`
+    Schema(super::schema::Schema),
+    /// Magnitude, phase and delay over the band, and answers over time: table, CSV or picture
+    Response(super::response::Response),
+    /// A design note: drawing, formulas, tables, plots and evidence in one document
+    Note(super::note::Note),
     /// The circuit as understood: nodes, elements, values, what the graph says, and a picture
     Inspect(Inspect),
+    /// What a shell needs to complete command lines
+    Completions(super::paper::Completions),
+    /// A page for `man`
+    Manual(super::paper::Manual),
 }
 
 #[derive(Debug, Args)]
@@ -33,6 +44,9 @@ pub(crate) struct Derive {
     /// How formulas are written; by default the shortest that one would write by hand
     #[arg(long, value_enum)]
     pub(crate) shape: Option<ShapeName>,
+    /// Say below each answer what its symbols are: unit, value, tolerance
+    #[arg(long = "where")]
+    pub(crate) legend: bool,
     /// Split every ratio around this dependent source: ideal gain, return ratio, feed-through
     #[arg(long, value_name = "SOURCE")]
     pub(crate) feedback: Option<String>,
@@ -183,6 +197,13 @@ pub(crate) struct Output {
     pub(crate) quiet: bool,
 }
 
+impl Default for Output {
+    /// Where nothing is to be chosen.
+    fn default() -> Self {
+        Self { format: Format::Text, ascii: false, color: Colour::Auto, quiet: false }
+    }
+}
+
 #[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
 pub(crate) enum Format {
     /// For a terminal
@@ -217,6 +238,20 @@ pub(crate) enum ShapeName {
     Sections,
     /// Named sub-expressions
     Nested,
+}
+
+impl ShapeName {
+    /// The shape of that name.
+    pub(crate) fn shape(self) -> Shape {
+        match self {
+            Self::Powers => Shape::Powers,
+            Self::Bode => Shape::Bode,
+            Self::Product => Shape::Product,
+            Self::ByElement => Shape::ByElement,
+            Self::Sections => Shape::Sections,
+            Self::Nested => Shape::Nested,
+        }
+    }
 }
 
 fn seconds(text: &str) -> Result<f64, String> {

@@ -3,7 +3,7 @@
 use std::sync::mpsc;
 use std::time::{Duration, Instant};
 
-use cofactor::analysis::{self, ClosedForm, Entry, Options, total};
+use cofactor::analysis::{self, ClosedForm, Entry, Options};
 use cofactor::circuit::{Ask, Circuit, ElementId, Law};
 use cofactor::language::{Severity, line_and_column};
 use cofactor::typeset::answer::{self, Answer, TextStyle};
@@ -20,15 +20,7 @@ use super::{STACK, width, write_results};
 /// Runs the command; the exit code is 0, or 1 when a witness disagrees.
 pub(crate) fn run(arguments: &Derive, messages: &Messages) -> Result<u8, Failure> {
     let loaded = input::load(&arguments.input, messages)?;
-    let shape = match arguments.shape {
-        None => Shape::Compact,
-        Some(ShapeName::Powers) => Shape::Powers,
-        Some(ShapeName::Bode) => Shape::Bode,
-        Some(ShapeName::Product) => Shape::Product,
-        Some(ShapeName::ByElement) => Shape::ByElement,
-        Some(ShapeName::Sections) => Shape::Sections,
-        Some(ShapeName::Nested) => Shape::Nested,
-    };
+    let shape = arguments.shape.map_or(Shape::Compact, ShapeName::shape);
     let feedback = match &arguments.feedback {
         Some(name) => Some(dependent_source(&loaded.circuit, name)?),
         None => None,
@@ -156,9 +148,18 @@ impl Printer<'_> {
                     text.push('\n');
                 }
                 text.push_str(&answer::text(&answer, style));
+                if self.arguments.legend {
+                    text.push_str(&answer::legend_text(&answer, style));
+                }
                 write_results(&text)?;
             }
-            Format::Latex => write_results(&answer::latex(&answer))?,
+            Format::Latex => {
+                let mut text = answer::latex(&answer);
+                if self.arguments.legend {
+                    text.push_str(&answer::legend_latex(&answer));
+                }
+                write_results(&text)?;
+            }
         }
         self.printed += 1;
         Ok(())
@@ -171,15 +172,13 @@ impl Printer<'_> {
         }
         for entry in entries {
             if let ClosedForm::Nested(_) = entry.form {
-                let about = if entry.counts.exact { "" } else { "up to " };
+                let about = if entry.length.exact { "" } else { "up to " };
                 return Err(Failure::bound(
                     "terms",
                     format!(
                         "{}: this shape needs the expansion, which has {about}{} terms, more than \
                          the {} that `--max-terms` allows",
-                        entry.name,
-                        total(&entry.counts),
-                        self.arguments.max_terms
+                        entry.name, entry.length.terms, self.arguments.max_terms
                     ),
                     "use the nested shape, allow more terms, or put numbers in with `--keep`",
                 ));

@@ -2,6 +2,7 @@
 
 use cofactor::analysis::AnalysisError;
 use cofactor::analysis::check::CheckError;
+use cofactor::analysis::response::ResponseError;
 use cofactor::analysis::roots::RootsError;
 use cofactor::language::{Diagnostic, line_and_column};
 use cofactor::typeset::json;
@@ -51,6 +52,12 @@ impl Failure {
         Self::plain("cannot-write", format!("the results cannot be written: {error}"), None)
     }
 
+    /// A file that cannot be written.
+    pub(crate) fn file(name: &str, error: &std::io::Error) -> Self {
+        let message = format!("`{name}` cannot be written: {error}");
+        Self::plain("cannot-write", message, Some("give a place where files may be made"))
+    }
+
     /// A work bound that was reached.
     pub(crate) fn bound(code: &'static str, message: String, help: &str) -> Self {
         Self::Plain { code, message, help: Some(help.to_owned()), exit: 4 }
@@ -81,6 +88,16 @@ impl Failure {
         Self::Plain {
             code: error.code(),
             message: format!("{claim}: {error}"),
+            help: error.help(),
+            exit: error.exit_code(),
+        }
+    }
+
+    /// A function without curves.
+    pub(crate) fn response(question: &str, error: &ResponseError) -> Self {
+        Self::Plain {
+            code: error.code(),
+            message: format!("{question}: {error}"),
             help: error.help(),
             exit: error.exit_code(),
         }

@@ -4,7 +4,8 @@ use std::io::Read;
 use std::path::Path;
 
 use cofactor::circuit::{Ask, Circuit, SymbolId};
-use cofactor::language::{self, Diagnostic, Reading, Severity};
+use cofactor::language::{self, Diagnostic, Reading, Severity, line_and_column};
+use cofactor::typeset::json;
 
 use super::args::Input;
 use super::failure::Failure;
@@ -67,6 +68,20 @@ pub(crate) fn load_file(file: &Path, messages: &Messages) -> Result<Loaded, Fail
         Some(circuit) => Ok(Loaded { asks: circuit.asks.clone(), circuit, remarks, text }),
         None => Err(Failure::Text { name, text, diagnostics: errors }),
     }
+}
+
+/// What was said about the text, for JSON.
+pub(crate) fn warnings(loaded: &Loaded) -> Vec<json::Warning> {
+    let warning = |diagnostic: &Diagnostic| {
+        let (line, column) = line_and_column(&loaded.text, diagnostic.span.start);
+        json::Warning {
+            code: diagnostic.code.to_owned(),
+            message: diagnostic.message.clone(),
+            line: Some(line),
+            column: Some(column),
+        }
+    };
+    loaded.remarks.iter().map(warning).collect()
 }
 
 pub(crate) fn read_text(path: &Path) -> std::io::Result<String> {

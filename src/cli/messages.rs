@@ -26,6 +26,18 @@ impl Messages {
         Self { json: output.format == Format::Json, quiet: output.quiet }
     }
 
+    /// For commands that have no choices about messages.
+    pub(crate) fn plain() -> Self {
+        Self { json: false, quiet: false }
+    }
+
+    /// What a command that goes on has done.
+    pub(crate) fn progress(&self, text: &str) {
+        if !self.quiet {
+            Self::line(text);
+        }
+    }
+
     fn line(text: &str) {
         // Nothing can be done about a standard error that cannot be written.
         let _ = writeln!(anstream::stderr(), "{text}");

@@ -17,7 +17,11 @@ mod failure;
 mod input;
 mod inspect;
 mod messages;
+mod note;
+mod paper;
+mod response;
 mod roots;
+mod schema;
 
 use std::io::Write;
 use std::process::ExitCode;
@@ -51,9 +55,24 @@ pub(crate) fn run() -> ExitCode {
                 let messages = Messages::new(&check.output);
                 finish(&messages, check::run(&check, &messages))
             }
+            Command::Response(response) => {
+                let messages = Messages::new(&response.output());
+                finish(&messages, response::run(&response, &messages))
+            }
+            Command::Note(note) => {
+                let messages = Messages::new(&note.output());
+                finish(&messages, note::run(&note, &messages))
+            }
+            Command::Completions(completions) => {
+                finish(&Messages::plain(), paper::completions(&completions))
+            }
+            Command::Manual(manual) => finish(&Messages::plain(), paper::manual(&manual)),
             Command::Inspect(inspect) => {
                 let messages = Messages::new(&inspect.output());
                 finish(&messages, inspect::run(&inspect, &messages))
+            }
+            Command::Schema(schema) => {
+                finish(&Messages::new(&args::Output::default()), schema::run(&schema))
             }
         });
     match worker.map(std::thread::JoinHandle::join) {

@@ -3,7 +3,7 @@
 use cofactor::analysis::roots::{self, Nominal, Quantity, RootReport, RootsError, Unreachable};
 use cofactor::analysis::{self, Entry, Notice, Options};
 use cofactor::circuit::{Ask, Number, Question, SymbolId, Unit};
-use cofactor::language::{self, line_and_column};
+use cofactor::language;
 use cofactor::typeset::answer::roots::{self as typeset, Answer, Moved, Report};
 use cofactor::typeset::answer::{self, TextStyle};
 use cofactor::typeset::json;
@@ -26,7 +26,7 @@ pub(crate) fn run(arguments: &Roots, messages: &Messages) -> Result<u8, Failure>
         loaded: &loaded,
         wishes,
         results: Vec::new(),
-        warnings: remarks(&loaded),
+        warnings: input::warnings(&loaded),
         passed: true,
     };
     for (index, ask) in loaded.asks.iter().enumerate() {
@@ -312,7 +312,7 @@ impl Printer<'_> {
                 )
             })?),
         };
-        write_results(&typeset::map(circuit, entry, roots, locus.as_ref()))
+        write_results(&typeset::map(circuit, entry, roots, locus.as_ref()).svg())
     }
 
     fn text(&self, answer: &Answer<'_>, first: bool) -> Result<(), Failure> {
@@ -345,17 +345,4 @@ impl Printer<'_> {
         text.push('\n');
         write_results(&text)
     }
-}
-
-fn remarks(loaded: &Loaded) -> Vec<json::Warning> {
-    let warning = |diagnostic: &language::Diagnostic| {
-        let (line, column) = line_and_column(&loaded.text, diagnostic.span.start);
-        json::Warning {
-            code: diagnostic.code.to_owned(),
-            message: diagnostic.message.clone(),
-            line: Some(line),
-            column: Some(column),
-        }
-    };
-    loaded.remarks.iter().map(warning).collect()
 }

@@ -121,6 +121,9 @@ fn determinant(matrix: &[Vec<&Polynomial>]) -> Polynomial {
         if entry.is_zero() {
             continue;
         }
+        if below.is_empty() {
+            return (*entry).clone();
+        }
         let minor: Vec<Vec<&Polynomial>> = below
             .iter()
             .map(|row| {

@@ -43,6 +43,7 @@ pub use at_limit::InfiniteLimit;
 pub use error::EliminationError;
 pub use nested::{Nested, NestedFactor, NestedSum};
 pub use passes::gradient::Gradient;
+pub(crate) use passes::numbers::{Scaled, scaled_integer};
 pub use value::{DividesByZero, fraction_of, symbol_of, variable_of};
 
 /// What the work may cost.
@@ -216,6 +217,16 @@ impl Elimination {
         TermCounts { numerator, denominator, exact: self.distinct }
     }
 
+    /// How many terms there are altogether, without making them.
+    ///
+    /// # Cost
+    /// One sum of large integers for each edge of the diagram: far less than [`Self::count_terms`].
+    pub fn count_all_terms(&self) -> BigUint {
+        let weights: Vec<_> = self.weights.iter().map(|weight| weight.len() as u64).collect();
+        let roots = [self.numerator, self.denominator];
+        passes::at_links(&count::Totals, &self.diagram, &weights, &roots).into_iter().sum()
+    }
+
     /// Numerator and denominator as polynomials, terms collected; not yet in lowest terms.
     ///
     /// # Cost
@@ -256,15 +267,25 @@ impl Elimination {
     /// The value at `s` with these symbol values (by index); exponents are carried, so
     /// that large networks neither overflow nor underflow.
     pub fn value_at(&self, s: Complex<f64>, symbols: &[f64]) -> Complex<f64> {
-        let weights: Vec<_> =
-            self.weights.iter().map(|w| numbers::complex_weight(w, s, symbols)).collect();
+        self.values_at(&[s], symbols)[0]
+    }
+
+    /// The values at many frequencies, as [`Self::value_at`].
+    ///
+    /// # Cost
+    /// One pass over the diagram for each.
+    pub fn values_at(&self, frequencies: &[Complex<f64>], symbols: &[f64]) -> Vec<Complex<f64>> {
+        let coefficients: Vec<_> =
+            self.weights.iter().map(|weight| numbers::Coefficients::new(weight, symbols)).collect();
         let ring = numbers::ComplexNumbers;
-        let values = passes::values(&ring, &self.diagram, &weights);
-        passes::at(&ring, &values, self.numerator).over(passes::at(
-            &ring,
-            &values,
-            self.denominator,
-        ))
+        let at = |&s: &Complex<f64>| {
+            let s = Scaled::new(s, 0);
+            let weights: Vec<_> = coefficients.iter().map(|weight| weight.at(s)).collect();
+            let values = passes::values(&ring, &self.diagram, &weights);
+            let root = |link| passes::at(&ring, &values, link);
+            root(self.numerator).over(root(self.denominator))
+        };
+        frequencies.iter().map(at).collect()
     }
 
     /// Numerator and denominator at `s` and these symbol values (by index), each with its relative

@@ -10,6 +10,7 @@
 //! file cannot show in the result.
 
 use std::collections::BTreeMap;
+use std::collections::btree_map::Entry;
 
 use super::choice::{Alternative, Choice, MultiPort, Pair};
 use super::error::EliminationError;
@@ -331,10 +332,16 @@ impl<'c> Builder<'c> {
         let (current, flipped_current) = ascending(current);
         let (voltage, flipped_voltage) = ascending(voltage);
         let value = if flipped_current ^ flipped_voltage { -value } else { value.clone() };
-        let (sum, origin) =
-            self.lumps.entry((current, voltage)).or_insert_with(|| (Fraction::zero(), Vec::new()));
-        *sum = &*sum + &value;
-        origin.push(id);
+        match self.lumps.entry((current, voltage)) {
+            Entry::Vacant(place) => {
+                place.insert((value, vec![id]));
+            }
+            Entry::Occupied(mut place) => {
+                let (sum, origin) = place.get_mut();
+                *sum = &*sum + &value;
+                origin.push(id);
+            }
+        }
     }
 
     fn fraction(&self, id: ElementId, value: &Value) -> Result<Fraction, EliminationError> {
@@ -387,9 +394,6 @@ impl<'c> Builder<'c> {
             *sum = &*sum + &gain;
         }
         gains.retain(|_, gain| !gain.is_zero());
-        if gains.is_empty() && pair.0 == pair.1 {
-            return Ok(());
-        }
         self.push(controlled_voltage(pair, &gains).choice(), vec![id], false);
         Ok(())
     }

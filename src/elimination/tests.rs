@@ -316,6 +316,22 @@ mod networks {
         assert_eq!(solve(&bench.circuit, &gain).err(), Some(EliminationError::Singular));
     }
 
+    /// Whatever controls it, a voltage source with both ends on one node leaves its current open.
+    #[test]
+    fn a_controlled_source_on_one_node_has_no_unique_solution() {
+        for inputs in [("x", "x"), ("x", "in")] {
+            let mut bench = Bench::new();
+            let source = bench.voltage("Vin", "in", "0");
+            bench.part("R1", "in", "x");
+            bench.part("R2", "x", "0");
+            let control = Quantity::Voltage(bench.node(inputs.0), bench.node(inputs.1));
+            bench.controlled("A", "0", "0", control);
+            let gain = bench.gain("x", source);
+            let answer = solve(&bench.circuit, &gain);
+            assert_eq!(answer.err(), Some(EliminationError::Singular), "{inputs:?}");
+        }
+    }
+
     #[test]
     fn what_cannot_matter_is_left_out() {
         let mut bench = Bench::new();

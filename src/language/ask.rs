@@ -363,7 +363,10 @@ impl<'c> Resolver<'c> {
     fn element(&self, name: &Name) -> Result<ElementId, Diagnostic> {
         let known = || self.circuit.elements.iter().map(|element| element.name.as_str());
         match self.elements.get(name.text.as_str()).copied() {
-            Some(id) if !has_one_current(self.circuit[id].class) => {
+            Some(id)
+                if !has_one_current(self.circuit[id].class)
+                    && !matches!(self.circuit[id].law, Law::ControlledVoltage(_)) =>
+            {
                 Err(unknown_element(name, None, true))
             }
             Some(id) => Ok(id),

@@ -479,9 +479,12 @@ impl<'s> Builder<'s> {
                 let id = u32::try_from(circuit.elements.len()).unwrap_or(u32::MAX);
                 circuit.noiseless.push(ElementId(id));
             }
+            // A device that gives a voltage is an op-amp of finite gain: a source, and called what it is.
+            let finite_opamp =
+                draft.class == Class::Voltage && matches!(draft.law, DraftLaw::ByVoltage(..));
             circuit.elements.push(Element {
                 name: draft.name.text.clone(),
-                class: draft.class,
+                class: if finite_opamp { Class::Opamp } else { draft.class },
                 plus: self.nodes.id(draft.plus),
                 minus: self.nodes.id(draft.minus),
                 law,

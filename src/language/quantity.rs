@@ -6,7 +6,7 @@
 use super::diagnostic::{Diagnostic, Span};
 use crate::circuit::{Number, Unit};
 use num_bigint::BigInt;
-use num_traits::{One, Pow, Zero};
+use num_traits::{Pow, Zero};
 
 /// Powers of ten beyond this are refused: no circuit needs them and they would fill the memory.
 const LARGEST_EXPONENT: i64 = 400;
@@ -250,10 +250,17 @@ pub(crate) fn power_of_ten(value: Number, exponent: i64) -> Number {
         return value;
     }
     let power: BigInt = BigInt::from(10).pow(exponent.unsigned_abs());
-    if exponent < 0 {
-        value * Number::new(BigInt::one(), power)
-    } else {
-        value * Number::from(power)
+    let (numerator, denominator) = value.into_raw();
+    if exponent >= 0 {
+        return Number::new(numerator * power, denominator);
+    }
+    // Nearly all values of circuits fit machine words, where a common factor costs nothing to find.
+    match (i64::try_from(&numerator), i64::try_from(&denominator * &power)) {
+        (Ok(n), Ok(d)) => {
+            let shared = num_integer::gcd(n, d);
+            Number::new_raw((n / shared).into(), (d / shared).into())
+        }
+        _ => Number::new(numerator, denominator * power),
     }
 }
 

@@ -26,7 +26,7 @@ const POINTS: usize = 41;
 /// a right one but for a chance of about degree/2⁶¹.
 const POINTS_PER_PRIME: usize = 4;
 /// Elements from which on a solve is long.
-const LONG: usize = 200;
+const LONG: usize = 100;
 /// How many primes.
 const MODULI: usize = 3;
 /// Attempts at a random point before a result is taken to have none.
@@ -36,8 +36,8 @@ const SEED: u64 = 0x5eed;
 /// A derived result, as far as a witness must see it. Symbols are indexed by
 /// [`crate::circuit::SymbolId`].
 pub trait Candidate {
-    /// The value in double precision.
-    fn value_at(&self, s: Complex<f64>, symbols: &[f64]) -> Complex<f64>;
+    /// The values at these complex frequencies, in double precision.
+    fn values_at(&self, frequencies: &[Complex<f64>], symbols: &[f64]) -> Vec<Complex<f64>>;
     /// Coefficients of numerator and denominator, ascending in s, in any scale; `None` when they
     /// are too long to have.
     fn coefficients(&self, symbols: &[Number]) -> Option<(Vec<Number>, Vec<Number>)>;
@@ -80,7 +80,7 @@ pub struct FloatingEvidence {
     pub worst_hz: f64,
     /// The difference that was allowed there, relative likewise.
     pub bound: f64,
-    /// Largest condition number of the equations.
+    /// Largest condition number of the equations, at every fifth frequency.
     pub largest_condition: f64,
     /// Whether every difference was allowed. With 0 points nothing was compared and nothing is
     /// said: double precision does not resolve the circuit, and the exact witnesses decide.
@@ -243,8 +243,11 @@ fn floating(
         passed: true,
         failure: None,
     };
-    for &frequency in &hertz {
-        let s = Complex::new(0.0, std::f64::consts::TAU * frequency);
+    let points: Vec<_> =
+        hertz.iter().map(|f| Complex::new(0.0, std::f64::consts::TAU * f)).collect();
+    let derived = candidate.values_at(&points, &values);
+    result.largest_condition = sweep.largest_condition(&points);
+    for ((&frequency, s), derived) in hertz.iter().zip(points).zip(derived) {
         let answer = match sweep.examine(s) {
             Ok(answer) => answer,
             // A pole on the imaginary axis that a frequency happens to meet says nothing.
@@ -255,8 +258,6 @@ fn floating(
             ) => continue,
             Err(error) => return Err(error),
         };
-        result.largest_condition = result.largest_condition.max(answer.condition);
-        let derived = candidate.value_at(s, &values);
         let Some((error, bound)) = compare(&answer, derived) else { continue };
         result.points += 1;
         let agrees = error <= bound;

@@ -11,11 +11,15 @@ use num_traits::{One, Zero};
 use super::network::{Form, Network, System, summed};
 use super::polynomial::{Polynomial, Quotient, Quotients};
 use super::values::images;
-use super::{Field, NumericError, lowered};
+use super::{Additive, NumericError, lowered};
 use crate::circuit::{Circuit, Number, Transfer};
 
 /// Bound of unknowns³ · (degree + 1)² up to which the exact solve stays within about a second.
 const AFFORDABLE_WORK: usize = 100_000_000;
+
+/// Powers of ten tried as the unit of s: with picofarads beside siemens, integers are three times
+/// shorter where s counts in 1e9/s.
+const UNITS: [usize; 4] = [3, 6, 9, 12];
 
 /// A rational function of s in lowest terms; coefficients ascend from the constant one.
 ///
@@ -37,7 +41,10 @@ pub fn exact_is_affordable(
     transfer: &Transfer,
     numbers: &[Number],
 ) -> Result<bool, NumericError> {
-    Ok(Matrix::new(&lowered(circuit), transfer, numbers)?.is_affordable())
+    match Matrix::new(&lowered(circuit), transfer, numbers, 0) {
+        Err(NumericError::TooLarge) => Ok(false),
+        matrix => Ok(matrix?.is_affordable()),
+    }
 }
 
 /// The transfer as a rational function of s at these numbers, indexed by symbol.
@@ -52,14 +59,29 @@ pub fn exact(
     numbers: &[Number],
 ) -> Result<Fraction, NumericError> {
     let circuit = lowered(circuit);
-    let matrix = Matrix::new(&circuit, transfer, numbers)?;
+    let mut matrix = Matrix::new(&circuit, transfer, numbers, 0)?;
     if !matrix.is_affordable() {
         return Err(NumericError::TooLarge);
     }
+    for exponent in UNITS {
+        let other = Matrix::new(&circuit, transfer, numbers, exponent)?;
+        if other.bits() < matrix.bits() {
+            matrix = other;
+        }
+    }
+    let exponent = matrix.exponent;
     let [numerator, denominator] = matrix.corners()?;
     if denominator.is_zero() {
         return Err(NumericError::ZeroDenominator);
     }
+    let degree = numerator.degree().max(denominator.degree());
+    let [numerator, denominator] = [numerator, denominator].map(|polynomial| {
+        let ten = BigInt::from(10);
+        let coefficients = polynomial.coefficients().iter().enumerate();
+        let powers = coefficients
+            .map(|(power, a)| a * num_traits::pow(ten.clone(), exponent * (degree - power)));
+        Polynomial::new(powers.collect())
+    });
     Ok(Fraction::from_integers(&numerator, &denominator))
 }
 
@@ -119,6 +141,8 @@ fn integers(coefficients: &[Number]) -> (Polynomial, BigInt) {
 /// Bordered equations without denominators: `size` + 2 rows over `size` + 1 columns.
 struct Matrix {
     size: usize,
+    /// The unit of s in the entries, as a power of ten.
+    exponent: usize,
     rows: Vec<Vec<(usize, Polynomial)>>,
 }
 
@@ -127,12 +151,19 @@ impl Matrix {
         circuit: &Circuit,
         transfer: &Transfer,
         numbers: &[Number],
+        exponent: usize,
     ) -> Result<Self, NumericError> {
         let network = Network::new(circuit, transfer)?;
+        if network.voltages().saturating_pow(3) > AFFORDABLE_WORK {
+            return Err(NumericError::TooLarge);
+        }
         let field = Quotients;
         let symbols = images(&field, numbers)?;
         let s = Quotient {
-            numerator: Polynomial::new(vec![BigInt::zero(), BigInt::one()]),
+            numerator: Polynomial::new(vec![
+                BigInt::zero(),
+                num_traits::pow(BigInt::from(10), exponent),
+            ]),
             denominator: Polynomial::one(),
         };
         let system: System<Quotient> = network.assemble(&field, &symbols, &s, Form::Compact)?;
@@ -148,7 +179,13 @@ impl Matrix {
         for probe in &system.probes {
             rows.push(bordered(&probe.row, field.negative(&probe.constant)));
         }
-        Ok(Self { size, rows })
+        Ok(Self { size, exponent, rows })
+    }
+
+    /// Binary digits of all entries.
+    fn bits(&self) -> u64 {
+        let cells = self.rows.iter().flatten();
+        cells.flat_map(|(_, cell)| cell.coefficients()).map(BigInt::bits).sum()
     }
 
     fn is_affordable(&self) -> bool {

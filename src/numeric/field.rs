@@ -10,33 +10,37 @@ use num_traits::{One, Signed, ToPrimitive, Zero};
 
 use crate::circuit::Number;
 
-/// The four operations over some kind of number.
-pub trait Field {
-    /// The numbers of the field.
+/// What linear equations are written with: sums and signs, no products.
+pub trait Additive {
+    /// The numbers of the group.
     type Element: Clone + Debug + PartialEq;
     /// 0.
     fn zero(&self) -> Self::Element;
     /// 1.
     fn one(&self) -> Self::Element;
-    /// The image of a rational; `None` where its denominator becomes 0.
-    fn number(&self, number: &Number) -> Option<Self::Element>;
     /// a + b.
     fn add(&self, a: &Self::Element, b: &Self::Element) -> Self::Element;
-    /// a · b.
-    fn multiply(&self, a: &Self::Element, b: &Self::Element) -> Self::Element;
     /// −a.
     fn negative(&self, a: &Self::Element) -> Self::Element;
+
+    /// a − b.
+    fn subtract(&self, a: &Self::Element, b: &Self::Element) -> Self::Element {
+        self.add(a, &self.negative(b))
+    }
+}
+
+/// The four operations over some kind of number.
+pub trait Field: Additive {
+    /// The image of a rational; `None` where its denominator becomes 0.
+    fn number(&self, number: &Number) -> Option<Self::Element>;
+    /// a · b.
+    fn multiply(&self, a: &Self::Element, b: &Self::Element) -> Self::Element;
     /// 1/a; `None` for 0.
     fn inverse(&self, a: &Self::Element) -> Option<Self::Element>;
     /// Whether a is 0.
     fn is_zero(&self, a: &Self::Element) -> bool;
     /// A size by which pivots are compared; 0 for 0 and only for it.
     fn magnitude(&self, a: &Self::Element) -> f64;
-
-    /// a − b.
-    fn subtract(&self, a: &Self::Element, b: &Self::Element) -> Self::Element {
-        self.add(a, &self.negative(b))
-    }
 
     /// a to an integer power, by repeated squaring; `None` for a negative power of 0.
     fn power(&self, a: &Self::Element, exponent: i32) -> Option<Self::Element> {
@@ -60,7 +64,7 @@ pub trait Field {
 #[derive(Clone, Copy, Debug, Default)]
 pub struct Rationals;
 
-impl Field for Rationals {
+impl Additive for Rationals {
     type Element = Number;
     fn zero(&self) -> Number {
         Number::zero()
@@ -68,17 +72,20 @@ impl Field for Rationals {
     fn one(&self) -> Number {
         Number::one()
     }
-    fn number(&self, number: &Number) -> Option<Number> {
-        Some(number.clone())
-    }
     fn add(&self, a: &Number, b: &Number) -> Number {
         a + b
     }
-    fn multiply(&self, a: &Number, b: &Number) -> Number {
-        a * b
-    }
     fn negative(&self, a: &Number) -> Number {
         -a
+    }
+}
+
+impl Field for Rationals {
+    fn number(&self, number: &Number) -> Option<Number> {
+        Some(number.clone())
+    }
+    fn multiply(&self, a: &Number, b: &Number) -> Number {
+        a * b
     }
     fn inverse(&self, a: &Number) -> Option<Number> {
         (!a.is_zero()).then(|| a.recip())
@@ -95,7 +102,7 @@ impl Field for Rationals {
 #[derive(Clone, Copy, Debug, Default)]
 pub struct Complexes;
 
-impl Field for Complexes {
+impl Additive for Complexes {
     type Element = Complex<f64>;
     fn zero(&self) -> Complex<f64> {
         Complex::new(0.0, 0.0)
@@ -103,17 +110,20 @@ impl Field for Complexes {
     fn one(&self) -> Complex<f64> {
         Complex::new(1.0, 0.0)
     }
-    fn number(&self, number: &Number) -> Option<Complex<f64>> {
-        number.to_f64().filter(|value| value.is_finite()).map(|value| Complex::new(value, 0.0))
-    }
     fn add(&self, a: &Complex<f64>, b: &Complex<f64>) -> Complex<f64> {
         a + b
     }
-    fn multiply(&self, a: &Complex<f64>, b: &Complex<f64>) -> Complex<f64> {
-        a * b
-    }
     fn negative(&self, a: &Complex<f64>) -> Complex<f64> {
         -a
+    }
+}
+
+impl Field for Complexes {
+    fn number(&self, number: &Number) -> Option<Complex<f64>> {
+        number.to_f64().filter(|value| value.is_finite()).map(|value| Complex::new(value, 0.0))
+    }
+    fn multiply(&self, a: &Complex<f64>, b: &Complex<f64>) -> Complex<f64> {
+        a * b
     }
     fn inverse(&self, a: &Complex<f64>) -> Option<Complex<f64>> {
         // `finv` scales, so that tiny and huge numbers do not under- or overflow.
@@ -152,7 +162,7 @@ impl PrimeField {
     }
 }
 
-impl Field for PrimeField {
+impl Additive for PrimeField {
     type Element = u64;
     fn zero(&self) -> u64 {
         0
@@ -160,6 +170,16 @@ impl Field for PrimeField {
     fn one(&self) -> u64 {
         1
     }
+    fn add(&self, a: &u64, b: &u64) -> u64 {
+        let sum = a + b;
+        if sum >= self.prime { sum - self.prime } else { sum }
+    }
+    fn negative(&self, a: &u64) -> u64 {
+        if *a == 0 { 0 } else { self.prime - a }
+    }
+}
+
+impl Field for PrimeField {
     fn number(&self, number: &Number) -> Option<u64> {
         let residue = |integer: &num_bigint::BigInt| {
             let magnitude = (integer.magnitude() % self.prime).to_u64().unwrap_or(0);
@@ -168,31 +188,29 @@ impl Field for PrimeField {
         let inverse = self.inverse(&residue(number.denom()))?;
         Some(self.multiply(&residue(number.numer()), &inverse))
     }
-    fn add(&self, a: &u64, b: &u64) -> u64 {
-        let sum = a + b;
-        if sum >= self.prime { sum - self.prime } else { sum }
-    }
     #[expect(clippy::cast_possible_truncation, reason = "a residue fits its modulus")]
     fn multiply(&self, a: &u64, b: &u64) -> u64 {
         (u128::from(*a) * u128::from(*b) % u128::from(self.prime)) as u64
-    }
-    fn negative(&self, a: &u64) -> u64 {
-        if *a == 0 { 0 } else { self.prime - a }
     }
     fn inverse(&self, a: &u64) -> Option<u64> {
         if *a == 0 {
             return None;
         }
-        // Fermat: a^(p−2).
-        let (mut square, mut left, mut result) = (*a, self.prime - 2, 1);
-        while left > 0 {
-            if left & 1 == 1 {
-                result = self.multiply(&result, &square);
-            }
-            square = self.multiply(&square, &square);
-            left >>= 1;
+        // Extended Euclid: remainder = factor·a modulo p throughout; |factor| stays below p < 2^63.
+        let (mut old, mut remainder) = (self.prime, a % self.prime);
+        let (mut old_factor, mut factor) = (0_i64, 1_i64);
+        while remainder > 1 {
+            let quotient = old / remainder;
+            (old, remainder) = (remainder, old % remainder);
+            #[expect(clippy::cast_possible_wrap, reason = "quotient·factor is at most the prime")]
+            let next = old_factor - quotient as i64 * factor;
+            (old_factor, factor) = (factor, next);
         }
-        Some(result)
+        // A remainder of 0 means a modulus that is not prime.
+        if remainder == 0 {
+            return None;
+        }
+        Some(if factor < 0 { self.prime - factor.unsigned_abs() } else { factor.unsigned_abs() })
     }
     fn is_zero(&self, a: &u64) -> bool {
         *a == 0

@@ -4,20 +4,23 @@
 //! ([`super::sparse`]) and reused at the other frequencies as long as none becomes small, and one
 //! step of iterative refinement follows. The bound of a probe c·x is a posteriori and structured
 //! (Oettli & Prager 1964; Arioli, Demmel & Duff 1989): with y = A⁻ᵀc,
-//! |error| ≤ Σ |yᵢ|·(|rᵢ| + k·u·(|A||x| + |b|)ᵢ), r the residual and u the unit roundoff. The bound
+//! |error| ≤ Σ |yᵢ|·(|rᵢ| + k·(u·(|A||x| + |b|)ᵢ + η)), r the residual, u the unit roundoff and η the
+//! least double. The bound
 //! does not change when equations or unknowns are scaled.
 
+mod equations;
 mod factors;
-
-use std::rc::Rc;
 
 use num_complex::Complex;
 use num_traits::ToPrimitive;
 
 use super::field::size;
-use super::network::{Form, Network, System, summed};
-use super::{Assignment, Complexes, Field, NumericError, Origin, Rationals, evaluate, lowered};
+use super::network::{Form, Network};
+use super::{
+    Additive, Assignment, Complexes, Field, NumericError, Origin, Rationals, evaluate, lowered,
+};
 use crate::circuit::{Circuit, Class, Law, Number, Transfer};
+use equations::{Numbers, Pattern};
 use factors::{Factors, Plan};
 
 type C = Complex<f64>;
@@ -25,7 +28,14 @@ type C = Complex<f64>;
 /// k in the bound: roundings in the evaluation of an entry and of the formula that is judged,
 /// which sums the same products in another order.
 const ROUNDINGS: f64 = 256.0;
+/// An estimate of the condition costs as much as three solves, and changes slowly.
+const CONDITION_STEP: usize = 5;
+/// From this many elements on, impedances stand as 1/Z: half as many unknowns. What that loses where
+/// numbers of very different size add up is in the bound.
+const LONG: usize = 200;
 const UNIT_ROUNDOFF: f64 = f64::EPSILON / 2.0;
+/// The least double: what a rounding can lose where numbers are subnormal.
+const SMALLEST: f64 = f64::from_bits(1);
 
 /// The answer at one frequency and how far it can be trusted.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -39,8 +49,6 @@ pub struct PointAnswer {
     /// Size of what adds up to the upper quantity, over the lower one: what an answer that is
     /// exactly 0 is compared with. At least the largest node voltage for a voltage.
     pub scale: f64,
-    /// Estimate of the condition number in the 1-norm, after scaling.
-    pub condition: f64,
 }
 
 /// A transfer made ready for many frequencies.
@@ -48,14 +56,20 @@ pub struct PointAnswer {
 pub struct Sweep<'a> {
     network: Network<'a>,
     symbols: Vec<C>,
-    plan: Option<Rc<Plan>>,
+    pattern: Pattern,
+    plan: Option<Plan>,
+    numbers: Numbers,
+    scaled: Scaled,
+    factors: Factors,
 }
 
 /// A solved point, before its quality is examined.
-struct Solved {
-    system: System<C>,
-    scaled: Scaled,
-    factors: Factors,
+struct Solved<'s> {
+    pattern: &'s Pattern,
+    numbers: &'s Numbers,
+    scaled: &'s Scaled,
+    plan: &'s Plan,
+    factors: &'s Factors,
     /// The unknowns, in their own units.
     x: Vec<C>,
 }
@@ -71,8 +85,22 @@ impl<'a> Sweep<'a> {
         transfer: &'a Transfer,
         values: &[f64],
     ) -> Result<Self, NumericError> {
-        let symbols = values.iter().map(|value| C::new(*value, 0.0)).collect();
-        Ok(Self { network: Network::new(circuit, transfer)?, symbols, plan: None })
+        let network = Network::new(circuit, transfer)?;
+        let symbols: Vec<C> = values.iter().map(|value| C::new(*value, 0.0)).collect();
+        let is_long = circuit.elements.len() >= LONG;
+        let form = match is_long && !network.has_short(&symbols) {
+            true => Form::Compact,
+            false => Form::Extended,
+        };
+        Ok(Self {
+            symbols,
+            pattern: Pattern::new(&network, form),
+            network,
+            plan: None,
+            numbers: Numbers::default(),
+            scaled: Scaled::default(),
+            factors: Factors::default(),
+        })
     }
 
     /// The ratio at one complex frequency, in rad/s.
@@ -82,30 +110,40 @@ impl<'a> Sweep<'a> {
     /// [`NumericError::DivisionByZero`].
     pub fn value(&mut self, s: C) -> Result<C, NumericError> {
         let solved = self.solve(s)?;
-        let [numerator, denominator] = probes(&solved);
-        ratio(numerator, denominator)
+        ratio(solved.probe(0), solved.probe(1))
     }
 
-    /// The ratio with its error bound and the condition of the equations.
+    /// The largest condition number of the equations (estimated in the 1-norm, each time scaled for
+    /// the frequency) at every fifth of these frequencies, the first among them; at least 1.
+    pub fn largest_condition(&mut self, frequencies: &[C]) -> f64 {
+        let some = frequencies.iter().step_by(CONDITION_STEP);
+        some.filter_map(|s| self.condition(*s).ok()).fold(1.0, f64::max)
+    }
+
+    fn condition(&mut self, s: C) -> Result<f64, NumericError> {
+        self.scaled.forget();
+        let solved = self.solve(s)?;
+        Ok(solved.scaled.norm(solved.pattern) * solved.factors.inverse_norm(solved.plan))
+    }
+
+    /// The ratio with its error bound.
     ///
     /// # Errors
     /// As [`Sweep::value`].
     pub fn examine(&mut self, s: C) -> Result<PointAnswer, NumericError> {
+        let asks_voltage = self.network.asks_voltage();
         let solved = self.solve(s)?;
-        let [numerator, denominator] = probes(&solved);
+        let (numerator, denominator) = (solved.probe(0), solved.probe(1));
         let value = ratio(numerator, denominator)?;
-        let condition = solved.scaled.norm() * solved.factors.inverse_norm();
         let sums = solved.magnitudes();
-        let residual = residual(&solved.system, &solved.x);
+        let residual = solved.residual();
         let [upper, lower] = [0, 1].map(|which| {
-            let y = solved.adjoint(which);
-            let terms = |weight: &dyn Fn(usize) -> f64| -> f64 {
-                y.iter().enumerate().map(|(i, y)| size(*y) * weight(i)).sum()
-            };
-            (
-                terms(&|i| size(residual[i]) + ROUNDINGS * UNIT_ROUNDOFF * sums[i]),
-                terms(&|i| sums[i]),
-            )
+            let (mut bound, mut scale) = (0.0, 0.0);
+            for (y, (rest, sum)) in solved.adjoint(which).iter().zip(residual.iter().zip(&sums)) {
+                bound += size(*y) * (size(*rest) + ROUNDINGS * (UNIT_ROUNDOFF * sum + SMALLEST));
+                scale += size(*y) * sum;
+            }
+            (bound, scale)
         });
         let below = denominator.norm();
         let error_bound = if lower.0 < below / 2.0 {
@@ -113,33 +151,39 @@ impl<'a> Sweep<'a> {
         } else {
             f64::INFINITY
         };
-        let voltages = solved.x.iter().take(solved.system.voltages).map(|v| v.norm());
-        let largest = match self.network.asks_voltage() {
-            true => voltages.fold(0.0, f64::max),
-            false => 0.0,
-        };
+        let voltages = solved.x.iter().take(solved.pattern.voltages).map(|v| v.norm());
+        let largest = if asks_voltage { voltages.fold(0.0, f64::max) } else { 0.0 };
         let scale = upper.1.max(largest) / below;
-        Ok(PointAnswer { s, value, error_bound, scale, condition })
+        Ok(PointAnswer { s, value, error_bound, scale })
     }
 
-    fn solve(&mut self, s: C) -> Result<Solved, NumericError> {
-        let system = self.network.assemble(&Complexes, &self.symbols, &s, Form::Extended)?;
-        let scaled = Scaled::new(&system);
-        let factors = match self.plan.take().filter(|plan| plan.fits(&scaled.rows)) {
-            Some(plan) => Factors::compute(plan, &scaled.rows).ok(),
-            None => None,
-        };
-        let factors = match factors {
-            Some(factors) => factors,
+    fn solve(&mut self, s: C) -> Result<Solved<'_>, NumericError> {
+        self.pattern.fill(&self.network, &self.symbols, s, &mut self.numbers)?;
+        let pattern = &self.pattern;
+        self.scaled.apply(pattern, &self.numbers.entries);
+        let entries = &self.scaled.entries;
+        let known = self.plan.take().filter(|plan| self.factors.compute(plan, pattern, entries));
+        let plan = match known {
+            Some(plan) => plan,
             None => {
-                let plan = Rc::new(Plan::new(&scaled.rows).ok_or(NumericError::Singular)?);
-                Factors::compute_anyway(plan, &scaled.rows).ok_or(NumericError::Singular)?
+                self.scaled.forget();
+                self.scaled.apply(pattern, &self.numbers.entries);
+                let entries = &self.scaled.entries;
+                Plan::new(pattern, entries)
+                    .filter(|plan| self.factors.compute_anyway(plan, pattern, entries))
+                    .ok_or(NumericError::Singular)?
             }
         };
-        self.plan = Some(Rc::clone(factors.plan()));
-        let mut solved = Solved { system, scaled, factors, x: Vec::new() };
-        solved.x = solved.apply(&solved.system.right);
-        let correction = solved.apply(&residual(&solved.system, &solved.x));
+        let mut solved = Solved {
+            pattern,
+            numbers: &self.numbers,
+            scaled: &self.scaled,
+            plan: self.plan.insert(plan),
+            factors: &self.factors,
+            x: Vec::new(),
+        };
+        solved.x = solved.apply(&solved.numbers.right);
+        let correction = solved.apply(&solved.residual());
         solved.x.iter_mut().zip(correction).for_each(|(x, dx)| *x += dx);
         if solved.x.iter().all(|x| x.is_finite()) {
             Ok(solved)
@@ -149,44 +193,54 @@ impl<'a> Sweep<'a> {
     }
 }
 
-impl Solved {
+impl Solved<'_> {
     /// A⁻¹·b for the unscaled equations.
     fn apply(&self, right: &[C]) -> Vec<C> {
-        let scaled = right.iter().zip(&self.scaled.row_scale).map(|(b, r)| b * r).collect();
-        let solution = self.factors.solve(scaled);
-        solution.iter().zip(&self.scaled.column_scale).map(|(x, c)| x * c).collect()
+        let scaled: Vec<C> = right.iter().zip(&self.scaled.row_scale).map(|(b, r)| b * r).collect();
+        let mut solution = self.factors.solve(self.plan, &scaled);
+        solution.iter_mut().zip(&self.scaled.column_scale).for_each(|(x, c)| *x *= c);
+        solution
     }
 
-    /// A⁻ᵀ·c for a probe c.
+    /// A⁻ᵀ·c for a probe c; nothing where the probe reads no unknown.
     fn adjoint(&self, which: usize) -> Vec<C> {
-        let mut right = vec![C::ZERO; self.x.len()];
-        for (column, factor) in &self.system.probes[which].row {
-            right[*column] += factor * self.scaled.column_scale[*column];
+        let (row, _) = self.pattern.probe(which, self.numbers);
+        if row.is_empty() {
+            return Vec::new();
         }
-        let solution = self.factors.solve_transposed(right);
-        solution.iter().zip(&self.scaled.row_scale).map(|(y, r)| y * r).collect()
+        let mut right = vec![C::ZERO; self.x.len()];
+        for (column, factor) in row {
+            right[column] += factor * self.scaled.column_scale[column];
+        }
+        let mut solution = self.factors.solve_transposed(self.plan, &right);
+        solution.iter_mut().zip(&self.scaled.row_scale).for_each(|(y, r)| *y *= r);
+        solution
     }
 
     /// |A||x| + |b|, where |A| adds the magnitudes of all contributions.
     fn magnitudes(&self) -> Vec<f64> {
-        let rows = self.system.rows.iter().zip(&self.system.right);
-        rows.map(|(row, right)| {
-            size(*right) + row.iter().map(|(c, a)| size(*a) * size(self.x[*c])).sum::<f64>()
-        })
-        .collect()
+        let row = |(row, right): (usize, &C)| {
+            self.pattern.row(row).fold(size(*right), |sum, at| {
+                sum + self.numbers.sizes[at] * size(self.x[self.pattern.columns[at]])
+            })
+        };
+        self.numbers.right.iter().enumerate().map(row).collect()
     }
-}
 
-fn residual(system: &System<C>, x: &[C]) -> Vec<C> {
-    let rows = system.rows.iter().zip(&system.right);
-    rows.map(|(row, right)| row.iter().fold(*right, |rest, (c, a)| rest - a * x[*c])).collect()
-}
+    fn residual(&self) -> Vec<C> {
+        let row = |(row, right): (usize, &C)| {
+            self.pattern.row(row).fold(*right, |rest, at| {
+                rest - self.numbers.entries[at] * self.x[self.pattern.columns[at]]
+            })
+        };
+        self.numbers.right.iter().enumerate().map(row).collect()
+    }
 
-fn probes(solved: &Solved) -> [C; 2] {
-    [0, 1].map(|which| {
-        let probe = &solved.system.probes[which];
-        probe.row.iter().fold(probe.constant, |sum, (c, a)| sum + a * solved.x[*c])
-    })
+    /// The value of a probe.
+    fn probe(&self, which: usize) -> C {
+        let (row, constant) = self.pattern.probe(which, self.numbers);
+        row.iter().fold(constant, |sum, (column, factor)| sum + factor * self.x[*column])
+    }
 }
 
 fn ratio(numerator: C, denominator: C) -> Result<C, NumericError> {
@@ -194,43 +248,74 @@ fn ratio(numerator: C, denominator: C) -> Result<C, NumericError> {
     Ok(numerator * inverse)
 }
 
-/// R·A·C with largest entries of rows and columns near 1.
+/// R·A·C. R and C are chosen so that the largest entries of rows and columns are near 1, and kept for
+/// other frequencies as long as the pivots are.
+#[derive(Debug, Default)]
 struct Scaled {
-    rows: Vec<Vec<(usize, C)>>,
+    entries: Vec<C>,
+    /// What each entry is multiplied by.
+    factors: Vec<f64>,
     row_scale: Vec<f64>,
     column_scale: Vec<f64>,
 }
 
 impl Scaled {
-    fn new(system: &System<C>) -> Self {
-        let count = system.rows.len();
-        let mut rows: Vec<_> = system.rows.iter().map(|row| summed(&Complexes, row)).collect();
-        let (mut row_scale, mut column_scale) = (vec![1.0; count], vec![1.0; count]);
+    /// The next matrix is to have factors of its own.
+    fn forget(&mut self) {
+        self.factors.clear();
+    }
+
+    fn apply(&mut self, pattern: &Pattern, entries: &[C]) {
+        if self.factors.is_empty() {
+            self.choose(pattern, entries);
+        }
+        self.entries.clear();
+        self.entries
+            .extend(entries.iter().zip(&self.factors).map(|(entry, factor)| entry * factor));
+    }
+
+    fn choose(&mut self, pattern: &Pattern, entries: &[C]) {
+        let count = pattern.len();
+        let mut sizes: Vec<f64> = entries.iter().map(|entry| size(*entry)).collect();
+        for scale in [&mut self.row_scale, &mut self.column_scale] {
+            scale.clear();
+            scale.resize(count, 1.0);
+        }
+        let (mut row_factors, mut column_factors) = (vec![0.0_f64; count], vec![0.0_f64; count]);
         for _ in 0..3 {
-            let mut row_largest = vec![0.0f64; count];
-            let mut column_largest = vec![0.0f64; count];
-            for (i, row) in rows.iter().enumerate() {
-                for (j, value) in row {
-                    row_largest[i] = row_largest[i].max(size(*value));
-                    column_largest[*j] = column_largest[*j].max(size(*value));
+            row_factors.fill(0.0);
+            column_factors.fill(0.0);
+            for (row, largest) in row_factors.iter_mut().enumerate() {
+                for at in pattern.row(row) {
+                    let (magnitude, column) = (sizes[at], pattern.columns[at]);
+                    *largest = largest.max(magnitude);
+                    column_factors[column] = column_factors[column].max(magnitude);
                 }
             }
-            let row_factors: Vec<f64> = row_largest.iter().map(|m| root_of_inverse(*m)).collect();
-            let column_factors: Vec<f64> =
-                column_largest.iter().map(|m| root_of_inverse(*m)).collect();
-            for (i, row) in rows.iter_mut().enumerate() {
-                row.iter_mut().for_each(|(j, value)| *value *= row_factors[i] * column_factors[*j]);
+            for factor in row_factors.iter_mut().chain(&mut column_factors) {
+                *factor = root_of_inverse(*factor);
             }
-            row_scale.iter_mut().zip(&row_factors).for_each(|(scale, factor)| *scale *= factor);
-            column_scale.iter_mut().zip(&column_factors).for_each(|(s, factor)| *s *= factor);
+            for (row, factor) in row_factors.iter().enumerate() {
+                for at in pattern.row(row) {
+                    sizes[at] *= factor * column_factors[pattern.columns[at]];
+                }
+            }
+            self.row_scale
+                .iter_mut()
+                .zip(&row_factors)
+                .for_each(|(scale, factor)| *scale *= factor);
+            self.column_scale.iter_mut().zip(&column_factors).for_each(|(s, factor)| *s *= factor);
         }
-        Self { rows, row_scale, column_scale }
+        for (row, scale) in self.row_scale.iter().enumerate() {
+            let columns = &pattern.columns[pattern.row(row)];
+            self.factors.extend(columns.iter().map(|column| scale * self.column_scale[*column]));
+        }
     }
 
     /// The 1-norm.
-    fn norm(&self) -> f64 {
-        let mut sums = vec![0.0; self.rows.len()];
-        for (column, value) in self.rows.iter().flatten() {
+    fn norm(&self, pattern: &Pattern) -> f64 {
+        let mut sums = vec![0.0; pattern.len()];
+        for (column, value) in pattern.columns.iter().zip(&self.entries) {
             sums[*column] += value.norm();
         }
         sums.into_iter().fold(0.0, f64::max)

@@ -7,7 +7,7 @@
 //! coefficients. Limits after one another nest: the inner ones are taken at each point of the outer.
 
 use super::values::Generator;
-use super::{Field, NumericError, PrimeField, modular_value};
+use super::{Additive, Field, NumericError, PrimeField, modular_value};
 use crate::circuit::{Circuit, Limit, LimitTo, Transfer};
 
 /// Values of the transfer that one limit value may take; beyond it nothing is said.

@@ -27,7 +27,7 @@ mod tests;
 
 pub use crosscheck::{Candidate, ExactEvidence, ExactKind, FloatingEvidence, Report, crosscheck};
 pub use exact::{Fraction, exact, exact_is_affordable};
-pub use field::{Complexes, Field, PrimeField, Rationals};
+pub use field::{Additive, Complexes, Field, PrimeField, Rationals};
 pub use floating::{PointAnswer, Sweep, frequencies, response};
 pub use limit::{LimitValue, limit_value};
 pub use lower::lowered;

@@ -9,7 +9,9 @@
 //! grounded, which changes no voltage inside and no current. Where something does, the equations
 //! are singular for good.
 
-use super::{Field, NumericError};
+use num_complex::Complex;
+
+use super::{Additive, Field, NumericError};
 use crate::circuit::{
     Circuit, Control, Drive, Element, ElementId, GROUND, Law, NodeId, Probe, Quantity, Transfer,
     Value,
@@ -62,7 +64,8 @@ pub(crate) struct ProbeRow<E> {
 }
 
 /// A value at numbers, with what its element's law makes of it.
-enum Stamp<E> {
+#[derive(Clone, Debug)]
+pub(crate) enum Stamp<E> {
     Impedance(E),
     Admittance(E),
     Controls(Vec<E>),
@@ -108,9 +111,29 @@ impl<'a> Network<'a> {
         Ok(network)
     }
 
+    /// How many node voltages are unknown: a lower bound of the number of unknowns.
+    pub(crate) fn voltages(&self) -> usize {
+        self.voltages
+    }
+
     /// Whether the upper quantity is a voltage.
     pub(crate) fn asks_voltage(&self) -> bool {
         matches!(self.transfer.numerator, Probe::Voltage(..))
+    }
+
+    /// The laws of the elements, in order; none for one that is taken out.
+    pub(crate) fn laws(&self) -> impl Iterator<Item = Option<&'a Law>> {
+        let elements = self.circuit.elements.iter().zip(&self.removed);
+        elements.map(|(element, removed)| (!removed).then_some(&element.law))
+    }
+
+    /// Whether some impedance is 0 at these numbers and s = 1 + j (with that it is a short for good),
+    /// or cannot be had there.
+    pub(crate) fn has_short(&self, symbols: &[Complex<f64>]) -> bool {
+        let is_short =
+            |stamp: &Stamp<_>| matches!(stamp, Stamp::Impedance(z) if *z == Complex::ZERO);
+        self.stamps(&super::Complexes, symbols, &Complex::new(1.0, 1.0))
+            .map_or(true, |stamps| stamps.iter().any(is_short))
     }
 
     fn present(&self) -> impl Iterator<Item = &'a Element> {
@@ -196,71 +219,105 @@ impl<'a> Network<'a> {
         s: &F::Element,
         form: Form,
     ) -> Result<System<F::Element>, NumericError> {
-        let mut stamps = Vec::with_capacity(self.circuit.elements.len());
-        let mut branches = Vec::with_capacity(self.circuit.elements.len());
+        let mut stamps = self.stamps(field, symbols, s)?;
+        let zero = |index: usize| matches!(&stamps[index], Stamp::Impedance(z) if field.is_zero(z));
+        let branches = self.branches(|index| form == Form::Extended || zero(index));
+        for (stamp, branch) in stamps.iter_mut().zip(&branches.0) {
+            if let (Stamp::Impedance(z), None) = (&stamp, branch)
+                && let Some(admittance) = field.inverse(z)
+            {
+                *stamp = Stamp::Admittance(admittance);
+            }
+        }
+        Ok(self.write(field, &stamps, branches))
+    }
+
+    /// What the values of all elements are at these numbers.
+    pub(crate) fn stamps<F: Field>(
+        &self,
+        field: &F,
+        symbols: &[F::Element],
+        s: &F::Element,
+    ) -> Result<Vec<Stamp<F::Element>>, NumericError> {
+        let elements = self.circuit.elements.iter().zip(&self.removed);
+        let stamp = |(element, removed): (&Element, &bool)| match removed {
+            true => Ok(Stamp::None),
+            false => stamp(field, element, symbols, s)
+                .ok_or_else(|| NumericError::DivisionByZero { element: element.name.clone() }),
+        };
+        elements.map(stamp).collect()
+    }
+
+    /// The unknown of each element's current, where it has one, and how many unknowns there are.
+    /// `impedance` says which impedances are written with their current.
+    pub(crate) fn branches(
+        &self,
+        impedance: impl Fn(usize) -> bool,
+    ) -> (Vec<Option<usize>>, usize) {
         let mut size = self.voltages;
-        for (index, element) in self.circuit.elements.iter().enumerate() {
-            let stamp = if self.removed[index] {
-                Stamp::None
-            } else {
-                stamp(field, element, symbols, s)
-                    .ok_or_else(|| NumericError::DivisionByZero { element: element.name.clone() })?
-            };
+        let branches = self.circuit.elements.iter().enumerate().map(|(index, element)| {
             let is_branch = self.needs_current[index]
                 || !self.removed[index]
-                    && match (&element.law, &stamp) {
-                        (Law::VoltageSource | Law::ControlledVoltage(_) | Law::Nullor(..), _) => {
-                            true
-                        }
-                        (_, Stamp::Impedance(z)) => form == Form::Extended || field.is_zero(z),
+                    && match &element.law {
+                        Law::VoltageSource | Law::ControlledVoltage(_) | Law::Nullor(..) => true,
+                        Law::Impedance(_) => impedance(index),
                         _ => false,
                     };
-            branches.push(is_branch.then_some(size));
             size += usize::from(is_branch);
-            stamps.push(stamp);
-        }
+            is_branch.then(|| size - 1)
+        });
+        (branches.collect(), size)
+    }
+
+    /// The equations with these stamps; impedances have a branch or have become admittances.
+    pub(crate) fn write<A: Additive>(
+        &self,
+        group: &A,
+        stamps: &[Stamp<A::Element>],
+        (branches, size): (Vec<Option<usize>>, usize),
+    ) -> System<A::Element> {
         let mut writer = Writer {
-            field,
+            group,
             network: self,
             branches,
             rows: vec![Vec::new(); size],
-            right: vec![field.zero(); size],
+            right: vec![group.zero(); size],
         };
         for (index, stamp) in stamps.iter().enumerate() {
-            writer.element(index, stamp)?;
+            writer.element(index, stamp);
         }
         if let Drive::Port(a, b) = self.transfer.drive {
             writer.inject(b, a);
         }
         let probes = [self.transfer.numerator, self.transfer.denominator];
         let probes = probes.map(|probe| writer.probe(probe));
-        Ok(System { rows: writer.rows, right: writer.right, probes, voltages: self.voltages })
+        System { rows: writer.rows, right: writer.right, probes, voltages: self.voltages }
     }
 }
 
-/// Writes equations over one field.
-struct Writer<'n, F: Field> {
-    field: &'n F,
+/// Writes equations over one kind of number.
+struct Writer<'n, A: Additive> {
+    group: &'n A,
     network: &'n Network<'n>,
     /// The unknown of each element's current.
     branches: Vec<Option<usize>>,
-    rows: Vec<Vec<(usize, F::Element)>>,
-    right: Vec<F::Element>,
+    rows: Vec<Vec<(usize, A::Element)>>,
+    right: Vec<A::Element>,
 }
 
-impl<F: Field> Writer<'_, F> {
+impl<A: Additive> Writer<'_, A> {
     fn node(&self, node: NodeId) -> Option<usize> {
         self.network.unknown[node.0 as usize]
     }
 
     /// The voltage from `a` to `b`, times `factor`, as a linear form.
-    fn voltage(&self, a: NodeId, b: NodeId, factor: &F::Element) -> Vec<(usize, F::Element)> {
+    fn voltage(&self, a: NodeId, b: NodeId, factor: &A::Element) -> Vec<(usize, A::Element)> {
         let plus = self.node(a).map(|column| (column, factor.clone()));
-        let minus = self.node(b).map(|column| (column, self.field.negative(factor)));
+        let minus = self.node(b).map(|column| (column, self.group.negative(factor)));
         plus.into_iter().chain(minus).collect()
     }
 
-    fn quantity(&self, quantity: Quantity, factor: &F::Element) -> Vec<(usize, F::Element)> {
+    fn quantity(&self, quantity: Quantity, factor: &A::Element) -> Vec<(usize, A::Element)> {
         match quantity {
             Quantity::Voltage(a, b) => self.voltage(a, b, factor),
             Quantity::Current(id) => {
@@ -271,10 +328,10 @@ impl<F: Field> Writer<'_, F> {
     }
 
     /// A current, as a linear form, that leaves the node `plus` and enters the node `minus`.
-    fn current(&mut self, plus: NodeId, minus: NodeId, form: Vec<(usize, F::Element)>) {
+    fn current(&mut self, plus: NodeId, minus: NodeId, form: Vec<(usize, A::Element)>) {
         if let Some(row) = self.node(minus) {
-            let field = self.field;
-            self.rows[row].extend(form.iter().map(|(c, factor)| (*c, field.negative(factor))));
+            let group = self.group;
+            self.rows[row].extend(form.iter().map(|(c, factor)| (*c, group.negative(factor))));
         }
         if let Some(row) = self.node(plus) {
             self.rows[row].extend(form);
@@ -283,46 +340,42 @@ impl<F: Field> Writer<'_, F> {
 
     /// A given current of 1 that leaves the node `plus` and enters the node `minus`.
     fn inject(&mut self, plus: NodeId, minus: NodeId) {
-        let one = self.field.one();
+        let one = self.group.one();
         if let Some(row) = self.node(plus) {
-            self.right[row] = self.field.subtract(&self.right[row], &one);
+            self.right[row] = self.group.subtract(&self.right[row], &one);
         }
         if let Some(row) = self.node(minus) {
-            self.right[row] = self.field.add(&self.right[row], &one);
+            self.right[row] = self.group.add(&self.right[row], &one);
         }
     }
 
     fn controlled(
         &self,
         controls: &[Control],
-        gains: &[F::Element],
+        gains: &[A::Element],
         negative: bool,
-    ) -> Vec<(usize, F::Element)> {
+    ) -> Vec<(usize, A::Element)> {
         let terms = controls.iter().zip(gains).flat_map(|(control, gain)| {
-            let gain = if negative { self.field.negative(gain) } else { gain.clone() };
+            let gain = if negative { self.group.negative(gain) } else { gain.clone() };
             self.quantity(control.quantity, &gain)
         });
         terms.collect()
     }
 
-    fn element(&mut self, index: usize, stamp: &Stamp<F::Element>) -> Result<(), NumericError> {
+    fn element(&mut self, index: usize, stamp: &Stamp<A::Element>) {
         let network = self.network;
         let element = &network.circuit.elements[index];
         let (plus, minus) = (element.plus, element.minus);
-        let one = self.field.one();
+        let one = self.group.one();
         let drives = matches!(network.transfer.drive, Drive::Source(id) if id.0 as usize == index);
         let Some(branch) = self.branches[index] else {
             if network.removed[index] {
-                return Ok(());
+                return;
             }
             let form = match (&element.law, stamp) {
-                (Law::Impedance(_), Stamp::Impedance(z)) => {
-                    let admittance = self.field.inverse(z).ok_or_else(|| {
-                        NumericError::DivisionByZero { element: element.name.clone() }
-                    })?;
-                    self.voltage(plus, minus, &admittance)
+                (Law::Impedance(_) | Law::Admittance(_), Stamp::Admittance(y)) => {
+                    self.voltage(plus, minus, y)
                 }
-                (Law::Admittance(_), Stamp::Admittance(y)) => self.voltage(plus, minus, y),
                 (Law::ControlledCurrent(controls), Stamp::Controls(gains)) => {
                     self.controlled(controls, gains, false)
                 }
@@ -330,17 +383,17 @@ impl<F: Field> Writer<'_, F> {
                     if drives {
                         self.inject(plus, minus);
                     }
-                    return Ok(());
+                    return;
                 }
             };
             self.current(plus, minus, form);
-            return Ok(());
+            return;
         };
         let own = (branch, one.clone());
         if network.removed[index] {
             // Taken out: it carries no current.
             self.rows[branch] = vec![own];
-            return Ok(());
+            return;
         }
         self.current(plus, minus, vec![own.clone()]);
         let mut row = match (&element.law, stamp) {
@@ -349,12 +402,12 @@ impl<F: Field> Writer<'_, F> {
             }
             (Law::Nullor(a, b), _) => self.voltage(*a, *b, &one),
             (Law::Admittance(_), Stamp::Admittance(y)) => {
-                self.voltage(plus, minus, &self.field.negative(y))
+                self.voltage(plus, minus, &self.group.negative(y))
             }
             _ => Vec::new(),
         };
         match (&element.law, stamp) {
-            (Law::Impedance(_), Stamp::Impedance(z)) => row.push((branch, self.field.negative(z))),
+            (Law::Impedance(_), Stamp::Impedance(z)) => row.push((branch, self.group.negative(z))),
             (
                 Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls),
                 Stamp::Controls(gains),
@@ -371,11 +424,10 @@ impl<F: Field> Writer<'_, F> {
         if drives {
             self.right[branch] = one;
         }
-        Ok(())
     }
 
-    fn probe(&self, probe: Probe) -> ProbeRow<F::Element> {
-        let (zero, one) = (self.field.zero(), self.field.one());
+    fn probe(&self, probe: Probe) -> ProbeRow<A::Element> {
+        let (zero, one) = (self.group.zero(), self.group.one());
         match probe {
             Probe::Voltage(a, b) => ProbeRow { row: self.voltage(a, b, &one), constant: zero },
             Probe::Current(id) => {

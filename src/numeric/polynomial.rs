@@ -9,7 +9,7 @@ use num_bigint::BigInt;
 use num_integer::Integer;
 use num_traits::{One, Signed, ToPrimitive, Zero};
 
-use super::{Field, PRIMES, PrimeField};
+use super::{Additive, Field, PRIMES, PrimeField};
 use crate::circuit::Number;
 
 /// A polynomial over the integers.
@@ -222,7 +222,7 @@ impl Quotient {
 #[derive(Clone, Copy, Debug, Default)]
 pub(crate) struct Quotients;
 
-impl Field for Quotients {
+impl Additive for Quotients {
     type Element = Quotient;
     fn zero(&self) -> Quotient {
         Quotient { numerator: Polynomial::zero(), denominator: Polynomial::one() }
@@ -230,21 +230,24 @@ impl Field for Quotients {
     fn one(&self) -> Quotient {
         Quotient { numerator: Polynomial::one(), denominator: Polynomial::one() }
     }
+    fn add(&self, a: &Quotient, b: &Quotient) -> Quotient {
+        let upper = a.numerator.multiply(&b.denominator).add(&b.numerator.multiply(&a.denominator));
+        Quotient::new(upper, a.denominator.multiply(&b.denominator))
+    }
+    fn negative(&self, a: &Quotient) -> Quotient {
+        Quotient { numerator: a.numerator.negative(), denominator: a.denominator.clone() }
+    }
+}
+
+impl Field for Quotients {
     fn number(&self, number: &Number) -> Option<Quotient> {
         Some(Quotient {
             numerator: Polynomial::constant(number.numer().clone()),
             denominator: Polynomial::constant(number.denom().clone()),
         })
     }
-    fn add(&self, a: &Quotient, b: &Quotient) -> Quotient {
-        let upper = a.numerator.multiply(&b.denominator).add(&b.numerator.multiply(&a.denominator));
-        Quotient::new(upper, a.denominator.multiply(&b.denominator))
-    }
     fn multiply(&self, a: &Quotient, b: &Quotient) -> Quotient {
         Quotient::new(a.numerator.multiply(&b.numerator), a.denominator.multiply(&b.denominator))
-    }
-    fn negative(&self, a: &Quotient) -> Quotient {
-        Quotient { numerator: a.numerator.negative(), denominator: a.denominator.clone() }
     }
     fn inverse(&self, a: &Quotient) -> Option<Quotient> {
         (!a.numerator.is_zero()).then(|| Quotient::new(a.denominator.clone(), a.numerator.clone()))

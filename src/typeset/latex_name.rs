@@ -14,35 +14,58 @@ const CUSTOMARY: [&str; 16] = [
     "bias", "gain", "loop",
 ];
 
-/// The source name in LaTeX, for mathematics mode.
-pub(crate) fn latex_name(source: &str) -> String {
+/// What stands on the line of a name.
+#[derive(Clone, Copy)]
+pub(crate) enum Quantity<'a> {
+    /// A Greek letter.
+    Greek(&'static greek::Greek),
+    /// A word.
+    Word(&'a str),
+    /// A letter of another alphabet.
+    Letter(char),
+    /// Nothing but underscores.
+    Blank,
+}
+
+/// The quantity, and the parts of its subscript.
+pub(crate) fn split(source: &str) -> (Quantity<'_>, Vec<&str>) {
     let (owner, own) = match source.rsplit_once('.') {
         Some((owner, own)) => (Some(owner), own),
         None => (None, source),
     };
     let (quantity, rest) = split_quantity(own);
-    let parts: Vec<&str> = rest.split('_').chain(owner).filter(|part| !part.is_empty()).collect();
+    (quantity, rest.split('_').chain(owner).filter(|part| !part.is_empty()).collect())
+}
+
+/// The source name in LaTeX, for mathematics mode.
+pub(crate) fn latex_name(source: &str) -> String {
+    let (quantity, parts) = split(source);
+    let quantity = match quantity {
+        Quantity::Greek(letter) => letter.latex.to_owned(),
+        Quantity::Word(word) => format!("\\mathrm{{{word}}}"),
+        Quantity::Letter(letter) if letter.is_ascii() => letter.to_string(),
+        Quantity::Letter(letter) => format!("\\text{{{letter}}}"),
+        Quantity::Blank => "\\_".to_owned(),
+    };
     if parts.is_empty() { quantity } else { format!("{quantity}_{{{}}}", subscript(&parts)) }
 }
 
-/// The quantity in LaTeX, and what belongs below.
-fn split_quantity(own: &str) -> (String, &str) {
+/// The quantity, and what belongs below.
+fn split_quantity(own: &str) -> (Quantity<'_>, &str) {
     if let Some((greek, rest)) = greek::split_leading_name(own) {
-        return (greek.latex.to_owned(), rest);
+        return (Quantity::Greek(greek), rest);
     }
     let own = own.trim_start_matches('_');
-    let Some(first) = own.chars().next() else { return ("\\_".to_owned(), own) };
+    let Some(first) = own.chars().next() else { return (Quantity::Blank, own) };
     let small = own.bytes().take_while(u8::is_ascii_lowercase).count();
     let after_first = own.get(1..small).unwrap_or_default();
     let is_word =
         small >= 4 && greek::of_name(after_first).is_none() && !CUSTOMARY.contains(&after_first);
     if is_word {
         let (word, rest) = own.split_at(small);
-        return (format!("\\mathrm{{{word}}}"), rest);
+        return (Quantity::Word(word), rest);
     }
-    let rest = &own[first.len_utf8()..];
-    let quantity = if first.is_ascii() { first.to_string() } else { format!("\\text{{{first}}}") };
-    (quantity, rest)
+    (Quantity::Letter(first), &own[first.len_utf8()..])
 }
 
 /// The parts of a subscript, separated by commas. Letters stand upright, numbers alone need no

@@ -27,15 +27,23 @@ pub mod inspect;
 pub mod json;
 pub mod latex;
 mod latex_name;
+mod latex_text;
 mod linear;
+mod math;
+pub mod mathml;
+mod mathml_name;
+mod measure;
+pub mod note;
 pub mod number;
 pub mod plain;
+pub mod plot;
 #[cfg(test)]
 mod random;
 pub mod screen;
 pub mod shape;
 pub mod svg;
 mod symbol;
+mod visible;
 
 pub use formula::{Formula, Letter, View};
 pub use linear::Dialect;

@@ -73,6 +73,16 @@ pub fn rounded(value: &BigRational, digits: u32, medium: Medium) -> String {
     Decimal::round(value, digits).general(medium, -3, 6)
 }
 
+/// The number rounded to that many significant digits.
+#[must_use]
+pub fn round(value: &BigRational, digits: u32) -> BigRational {
+    let Decimal { negative, digits, exponent } = Decimal::round(value, digits);
+    let places = digits.len() as i64 - 1;
+    let integer: BigInt = digits.parse().unwrap_or_default();
+    let size = BigRational::from_integer(integer) * ten_to(exponent - places);
+    if negative { -size } else { size }
+}
+
 /// One digit before the point, and a power of ten: `1.59e3`, `1.59·10³`. Trailing zeros are left out.
 #[must_use]
 pub fn scientific(value: &BigRational, digits: u32, medium: Medium) -> String {
@@ -117,7 +127,8 @@ fn prefix(thousands: i64) -> Option<&'static str> {
     prefixes.get(usize::try_from(thousands + 5).ok()?).copied()
 }
 
-fn ascii_unit(unit: &str) -> String {
+/// A unit (with its prefix) in ASCII: `kohm`.
+pub(crate) fn ascii_unit(unit: &str) -> String {
     unit.chars()
         .map(|c| match c {
             'Ω' => "ohm".to_owned(),

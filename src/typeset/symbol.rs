@@ -9,9 +9,12 @@
 
 use std::borrow::Cow;
 use std::collections::BTreeSet;
+use std::sync::OnceLock;
 
 use super::Letter;
 use super::greek;
+use super::latex_name::latex_name;
+use super::mathml_name::mathml_name;
 
 /// How names are written.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -24,6 +27,8 @@ pub enum Style {
     Identifier,
     /// LaTeX, mathematics mode.
     Latex,
+    /// MathML.
+    MathMl,
     /// As in the source, with Greek letters for their names.
     Unicode,
 }
@@ -32,20 +37,23 @@ pub enum Style {
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct SymbolName {
     source: String,
-    ascii: String,
     identifier: String,
-    latex: String,
-    unicode: String,
+    // Made when first asked for: a large circuit has thousands of names, of which one style is printed.
+    ascii: OnceLock<String>,
+    latex: OnceLock<String>,
+    mathml: OnceLock<String>,
+    unicode: OnceLock<String>,
 }
 
 impl SymbolName {
     fn new(source: &str, identifier: String) -> Self {
         Self {
             source: source.to_owned(),
-            ascii: ascii_name(source),
             identifier,
-            latex: super::latex_name::latex_name(source),
-            unicode: unicode_name(source),
+            ascii: OnceLock::new(),
+            latex: OnceLock::new(),
+            mathml: OnceLock::new(),
+            unicode: OnceLock::new(),
         }
     }
 
@@ -54,10 +62,11 @@ impl SymbolName {
     pub fn styled(&self, style: Style) -> &str {
         match style {
             Style::Source => &self.source,
-            Style::Ascii => &self.ascii,
             Style::Identifier => &self.identifier,
-            Style::Latex => &self.latex,
-            Style::Unicode => &self.unicode,
+            Style::Ascii => self.ascii.get_or_init(|| ascii_name(&self.source)),
+            Style::Latex => self.latex.get_or_init(|| latex_name(&self.source)),
+            Style::MathMl => self.mathml.get_or_init(|| mathml_name(&self.source)),
+            Style::Unicode => self.unicode.get_or_init(|| unicode_name(&self.source)),
         }
     }
 }
@@ -137,17 +146,25 @@ impl SymbolTable {
     #[must_use]
     pub fn letter(&self, letter: Letter, style: Style) -> Cow<'_, str> {
         match letter {
-            Letter::S if self.of_frequency => "f".into(),
-            Letter::S => "s".into(),
-            Letter::Frequency => "f".into(),
+            Letter::S | Letter::Frequency => {
+                let is_s = letter == Letter::S && !self.of_frequency;
+                match (is_s, style) {
+                    (true, Style::MathMl) => "<mi>s</mi>".into(),
+                    (false, Style::MathMl) => "<mi>f</mi>".into(),
+                    (true, _) => "s".into(),
+                    (false, _) => "f".into(),
+                }
+            }
             Letter::Pi => match style {
                 Style::Source | Style::Ascii | Style::Identifier => "pi".into(),
                 Style::Latex => "\\pi".into(),
+                Style::MathMl => "<mi>π</mi>".into(),
                 Style::Unicode => "π".into(),
             },
             Letter::Symbol(index) => match (self.get(index), style) {
                 (Some(name), _) => name.styled(style).into(),
                 (None, Style::Latex) => format!("x_{{{index}}}").into(),
+                (None, Style::MathMl) => indexed("x", u64::from(index)).into(),
                 (None, _) => format!("x{index}").into(),
             },
             Letter::Definition(index) => {
@@ -160,11 +177,17 @@ impl SymbolTable {
                     Style::Latex => {
                         format!("\\mathrm{{{}}}_{{{number}}}", self.definition_stem).into()
                     }
+                    Style::MathMl => indexed(&self.definition_stem, number).into(),
                     _ => format!("{}{number}", self.definition_stem).into(),
                 }
             }
         }
     }
+}
+
+/// A letter with a number below, in MathML.
+fn indexed(stem: &str, number: u64) -> String {
+    format!("<msub><mi>{stem}</mi><mn>{number}</mn></msub>")
 }
 
 /// The name with Greek letters spelt out, and hexadecimal codes for other letters.

@@ -49,11 +49,18 @@ fn check(stem: &str, circuit: &str, more: &[&str]) {
 #[test]
 fn two_port_sets() {
     check("attenuator", "attenuator.circuit", &[]);
+    check("line-section", "line-section.circuit", &[]);
+}
+
+#[test]
+fn ratios_impedance_and_admittance() {
+    check("depth-cell", "depth-cell.circuit", &[]);
 }
 
 #[test]
 fn return_ratio_and_parts() {
     check("float-switch", "float-switch.circuit", &["--feedback", "U1"]);
+    check("float-switch-loop", "float-switch.circuit", &["return_ratio(U1)"]);
 }
 
 #[test]

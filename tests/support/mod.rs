@@ -8,6 +8,7 @@ pub(crate) mod exact;
 pub(crate) mod program;
 pub(crate) mod rational;
 pub(crate) mod roots;
+pub(crate) mod transient;
 
 use std::path::{Path, PathBuf};
 

@@ -160,7 +160,7 @@ pub(super) fn expanded(entry: &Entry) -> Option<Fraction> {
     match (&entry.form, &entry.elimination) {
         (ClosedForm::Expanded(fraction), _) => Some(fraction.clone()),
         (ClosedForm::Nested(_), Some(elimination)) => {
-            let total = crate::analysis::total(&elimination.count_terms());
+            let total = elimination.count_all_terms();
             if total > num_bigint::BigUint::from(LONGEST) {
                 return None;
             }

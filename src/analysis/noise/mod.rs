@@ -12,7 +12,7 @@ mod integral;
 mod sources;
 mod witness;
 
-use super::closed_form::counted;
+use super::Length;
 use super::{AnalysisError, Check, ClosedForm, Entry, Notice, NumericForm, Options, limit_text};
 use crate::algebra::{Fraction, Polynomial, Var, gcd};
 use crate::circuit::{Ask, Circuit, NodeId, Number, Unit};
@@ -105,7 +105,7 @@ pub(crate) fn answer(
         unit: Unit::VOLT.power(2).over(Unit::HERTZ),
         symbols: constants.symbols.clone(),
         own_symbols: circuit.symbols.len(),
-        counts: counted(&sum),
+        length: Length::of(&sum),
         numeric: values.as_deref().and_then(|values| rounded(&sum, values)),
         form: ClosedForm::Expanded(sum),
         limits: circuit.limits.iter().map(|limit| limit_text(circuit, limit)).collect(),

@@ -135,7 +135,7 @@ pub(crate) fn find(
 ) -> Result<Vec<Source>, AnalysisError> {
     let mut sources = Vec::new();
     for (element, id) in circuit.elements.iter().zip((0_u32..).map(ElementId)) {
-        if circuit.noiseless.contains(&id) {
+        if !circuit.is_noisy(id) {
             continue;
         }
         let Some(resistance) = noisy_resistance(element) else { continue };

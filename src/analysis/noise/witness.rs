@@ -99,14 +99,17 @@ fn at_frequencies(
     let floats = assignment.floats();
     let circuits: Vec<Circuit> =
         sources.iter().map(|source| lowered(&source.circuit).into_owned()).collect();
+    let points: Vec<_> =
+        hertz.iter().map(|f| Complex::new(0.0, std::f64::consts::TAU * f)).collect();
     let mut sweeps = Vec::new();
     for (source, circuit) in sources.iter().zip(&circuits) {
         let weight = source.weight.evaluate(|variable| value_of(&values, variable));
         let weight = weight.and_then(|weight| weight.to_f64()).unwrap_or(f64::NAN);
-        sweeps.push((weight, Sweep::new(circuit, &source.question, &floats)?));
+        let mut sweep = Sweep::new(circuit, &source.question, &floats)?;
+        result.largest_condition = result.largest_condition.max(sweep.largest_condition(&points));
+        sweeps.push((weight, sweep));
     }
-    'frequencies: for &frequency in hertz {
-        let s = Complex::new(0.0, std::f64::consts::TAU * frequency);
+    'frequencies: for (&frequency, &s) in hertz.iter().zip(&points) {
         let (mut witness, mut error_bound, mut scale) = (0.0, 0.0, 0.0);
         for (weight, sweep) in &mut sweeps {
             // A pole on the imaginary axis that a frequency happens to meet says nothing.
@@ -115,7 +118,6 @@ fn at_frequencies(
             witness += *weight * size * size;
             error_bound += *weight * answer.error_bound * (2.0 * size + answer.error_bound);
             scale += *weight * answer.scale * answer.scale;
-            result.largest_condition = result.largest_condition.max(answer.condition);
         }
         let Some(derived) = value_at(&above, &below, frequency) else { continue };
         let unit = if witness <= error_bound { scale } else { witness };

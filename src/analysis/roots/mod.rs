@@ -29,6 +29,7 @@ pub use error::RootsError;
 pub use find::{Root, find};
 pub use frequency::{BandEdge, DcGain};
 pub use locus::{Locus, locus};
+pub(crate) use monte_carlo::Toleranced;
 pub use monte_carlo::{Chance, Spread, monte_carlo};
 pub use preferred::Series;
 pub use sensitivity::{SET_BY_SHARE, Sensitivity};

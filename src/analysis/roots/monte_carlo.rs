@@ -47,25 +47,11 @@ pub fn monte_carlo(
     (trials, seed): (usize, u64),
 ) -> Chance {
     let mut random = Random::new(seed);
-    let toleranced: Vec<(SymbolId, &Number, [&Number; 2])> = (0_u32..)
-        .map(SymbolId)
-        .zip(&circuit.symbols)
-        .filter_map(|(id, symbol)| {
-            let (nominal, tolerance) = (symbol.nominal.as_ref()?, symbol.tolerance.as_ref()?);
-            Some((id, nominal, [&tolerance.low, &tolerance.high]))
-        })
-        .collect();
+    let toleranced = Toleranced::new(circuit);
     let (mut poles, mut zeros) = (Followed::new(poles), Followed::new(zeros));
     let mut not_stable = 0;
     for _ in 0..trials {
-        let drawn: Vec<(SymbolId, Number)> = toleranced
-            .iter()
-            .map(|&(id, nominal, [low, high])| {
-                // 2^-32 of the span is finer than any tolerance.
-                let part = Number::new((random.word() >> 32).into(), (1_u64 << 32).into());
-                (id, nominal + low + (high - low) * part)
-            })
-            .collect();
+        let drawn = toleranced.draw(&mut random);
         let Some((above, below)) = values.with(&drawn) else { continue };
         not_stable += usize::from(verdict(&below) != Verdict::Stable);
         if let (Some(above), Some(below)) = (places(&above), places(&below)) {
@@ -74,6 +60,40 @@ pub fn monte_carlo(
         }
     }
     Chance { trials, seed, not_stable, poles: poles.spreads(), zeros: zeros.spreads() }
+}
+
+/// The symbols that have a tolerance.
+pub(crate) struct Toleranced<'a>(Vec<(SymbolId, &'a Number, [&'a Number; 2])>);
+
+impl<'a> Toleranced<'a> {
+    /// Those of a circuit.
+    pub(crate) fn new(circuit: &'a Circuit) -> Self {
+        let symbols = (0_u32..).map(SymbolId).zip(&circuit.symbols);
+        Self(
+            symbols
+                .filter_map(|(id, symbol)| {
+                    let nominal = symbol.nominal.as_ref()?;
+                    let tolerance = symbol.tolerance.as_ref()?;
+                    Some((id, nominal, [&tolerance.low, &tolerance.high]))
+                })
+                .collect(),
+        )
+    }
+
+    /// Whether no symbol has one.
+    pub(crate) fn is_empty(&self) -> bool {
+        self.0.is_empty()
+    }
+
+    /// A value for each, evenly between its limits.
+    pub(crate) fn draw(&self, random: &mut Random) -> Vec<(SymbolId, Number)> {
+        let values = self.0.iter().map(|&(id, nominal, [low, high])| {
+            // 2^-32 of the span is finer than any tolerance.
+            let part = Number::new((random.word() >> 32).into(), (1_u64 << 32).into());
+            (id, nominal + low + (high - low) * part)
+        });
+        values.collect()
+    }
 }
 
 /// The roots of all circuits, by the nominal root that they come from.

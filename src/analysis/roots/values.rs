@@ -72,13 +72,18 @@ impl<'a> Nominal<'a> {
         self.numbers.get(symbol.0 as usize)
     }
 
+    /// The diagram of the function, where it has one.
+    pub(crate) fn elimination(&self) -> Option<&'a Elimination> {
+        self.elimination
+    }
+
     /// The numbers as doubles, by index.
-    pub(super) fn floats(&self) -> &[f64] {
+    pub(crate) fn floats(&self) -> &[f64] {
         &self.floats
     }
 
     /// The numerator and the denominator in lowest terms for all values, where they are expanded.
-    pub(super) fn parts(&self) -> Option<[&'a Polynomial; 2]> {
+    pub(crate) fn parts(&self) -> Option<[&'a Polynomial; 2]> {
         match self.form {
             ClosedForm::Expanded(fraction) => Some([fraction.numerator(), fraction.denominator()]),
             ClosedForm::Nested(_) => None,
@@ -99,7 +104,7 @@ impl<'a> Nominal<'a> {
     }
 
     /// Numerator and denominator by powers of `s` with these numbers changed, not in lowest terms.
-    pub(super) fn coefficients(&self, changes: &[(SymbolId, Number)]) -> [Univariate; 2] {
+    pub(crate) fn coefficients(&self, changes: &[(SymbolId, Number)]) -> [Univariate; 2] {
         let value = |variable: Var| self.value_of(variable, changes);
         match (self.parts(), self.elimination) {
             (None, Some(elimination)) => {
@@ -116,7 +121,7 @@ impl<'a> Nominal<'a> {
 
     /// Numerator and denominator in lowest terms with these numbers changed; none where the function is
     /// not finite.
-    pub(super) fn with(&self, changes: &[(SymbolId, Number)]) -> Option<(Univariate, Univariate)> {
+    pub(crate) fn with(&self, changes: &[(SymbolId, Number)]) -> Option<(Univariate, Univariate)> {
         let [numerator, denominator] = self.coefficients(changes);
         Univariate::lowest_terms(&numerator, &denominator)
     }

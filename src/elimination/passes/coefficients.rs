@@ -15,10 +15,23 @@ use crate::elimination::diagram::{Diagram, Link};
 /// Coefficients by powers of `s`, lowest first.
 pub(crate) type Coefficients = Vec<BigInt>;
 
+/// Powers of ten tried as the unit of `s`: with picofarads beside siemens, integers are three times
+/// shorter where `s` counts in 1e9/s.
+const UNITS: [u32; 5] = [0, 3, 6, 9, 12];
+
 /// The weights of each choice as integer polynomials in `s`, and the choice's factor.
 pub(crate) struct Scaled {
     weights: Vec<Coefficients>,
     factors: Vec<BigInt>,
+    /// The unit of `s` in the weights, as a power of ten.
+    unit: u32,
+}
+
+impl Scaled {
+    /// Binary digits of all weights and factors.
+    fn bits(&self) -> u64 {
+        self.weights.iter().flatten().chain(&self.factors).map(BigInt::bits).sum()
+    }
 }
 
 /// Puts numbers into the weights; `symbol` gives a symbol's value.
@@ -27,37 +40,58 @@ pub(crate) fn scale(
     first_weight: &[u32],
     symbol: &dyn Fn(Var) -> BigRational,
 ) -> Scaled {
-    let mut scaled = Scaled { weights: Vec::new(), factors: Vec::new() };
-    for (choice, &first) in first_weight.iter().enumerate() {
-        let last = first_weight.get(choice + 1).map_or(weights.len(), |&next| next as usize);
-        let values: Vec<Vec<BigRational>> = weights[first as usize..last]
+    let values: Vec<Vec<BigRational>> = weights
+        .iter()
+        .map(|weight| {
+            let coefficients = weight.coefficients(Var::S);
+            coefficients.iter().map(|coefficient| coefficient.evaluate(symbol)).collect()
+        })
+        .collect();
+    let choices: Vec<&[Vec<BigRational>]> = first_weight
+        .iter()
+        .enumerate()
+        .map(|(choice, &first)| {
+            let last = first_weight.get(choice + 1).map_or(values.len(), |&next| next as usize);
+            &values[first as usize..last]
+        })
+        .collect();
+    let first = scaled(&choices, UNITS[0]);
+    UNITS[1..]
+        .iter()
+        .map(|&unit| scaled(&choices, unit))
+        .fold(first, |best, other| if other.bits() < best.bits() { other } else { best })
+}
+
+/// The weights of these choices with that unit of `s`.
+fn scaled(choices: &[&[Vec<BigRational>]], unit: u32) -> Scaled {
+    let mut scaled = Scaled { weights: Vec::new(), factors: Vec::new(), unit };
+    for weights in choices {
+        let weights: Vec<Vec<BigRational>> = weights
             .iter()
             .map(|weight| {
-                weight
-                    .coefficients(Var::S)
-                    .iter()
-                    .map(|coefficient| coefficient.evaluate(symbol))
-                    .collect()
+                let powers = weight.iter().zip(0_u32..);
+                powers.map(|(value, power)| value * power_of_ten(unit * power)).collect()
             })
             .collect();
-        let all = || values.iter().flatten().filter(|value| !value.is_zero());
+        let all = || weights.iter().flatten().filter(|value| !value.is_zero());
         let denominator = all().fold(BigInt::one(), |common, value| common.lcm(value.denom()));
         let content = all().fold(BigInt::zero(), |common, value| {
             common.gcd(&(value.numer() * (&denominator / value.denom())))
         });
         let content = if content.is_zero() { BigInt::one() } else { content };
-        for weight in values {
-            scaled.weights.push(
-                weight
-                    .into_iter()
-                    .map(|value| value.numer() * (&denominator / value.denom()) / &content)
-                    .collect(),
-            );
+        for weight in &weights {
+            let whole =
+                |value: &BigRational| value.numer() * (&denominator / value.denom()) / &content;
+            scaled.weights.push(weight.iter().map(whole).collect());
         }
         // Only whole when a weight 1 stands in the choice; else no level of it is ever left out.
         scaled.factors.push(&denominator / &content);
     }
     scaled
+}
+
+fn power_of_ten(exponent: u32) -> BigInt {
+    BigInt::from(10).pow(exponent)
 }
 
 /// How many products of integers [`of`] takes.
@@ -125,6 +159,8 @@ pub(crate) fn of(
         }
         values.push(sum);
     }
+    let degree = roots.iter().filter(|root| !root.is_dead()).map(|root| values[root.node()].len());
+    let degree = degree.max().unwrap_or(0);
     roots.map(|root| {
         if root.is_dead() {
             return Coefficients::new();
@@ -133,6 +169,11 @@ pub(crate) fn of(
         if root.is_negative() {
             factor = -factor;
         }
-        values[root.node()].iter().map(|value| value * &factor).collect()
+        let powers = values[root.node()].iter().enumerate();
+        powers
+            .map(|(power, value)| {
+                value * &factor * power_of_ten(scaled.unit * (degree - 1 - power) as u32)
+            })
+            .collect()
     })
 }

@@ -39,6 +39,24 @@ impl Tally {
         }
     }
 
+    /// Whether no number uses the two highest bits of its width: then two of one width add without
+    /// leaving it.
+    fn has_headroom(&self) -> bool {
+        self.digits.chunks(self.width).all(|number| number[self.width - 1] >> 62 == 0)
+    }
+
+    /// Adds numbers of the same width from a power on; both have headroom, so that all of them are
+    /// one long addition whose carries end at the borders.
+    fn add_all(&mut self, power: usize, other: &Self) {
+        let sum = &mut self.digits[power * self.width..][..other.digits.len()];
+        let mut carry = false;
+        for (digit, more) in sum.iter_mut().zip(&other.digits) {
+            let (part, first) = digit.overflowing_add(*more);
+            let (whole, second) = part.overflowing_add(u64::from(carry));
+            (*digit, carry) = (whole, first || second);
+        }
+    }
+
     /// Adds factor × digits to the number at a power.
     fn add(&mut self, power: usize, factor: u64, digits: &[u64]) {
         let number = &mut self.digits[power * self.width..][..self.width];
@@ -93,6 +111,11 @@ impl Ring for Counts {
     fn add(&self, sum: &mut Tally, weight: &Self::Weight, value: &Tally, _: bool) {
         for &(power, count) in weight {
             sum.grow(value.len() + power, value.width);
+            if count == 1 && sum.width == value.width && sum.has_headroom() && value.has_headroom()
+            {
+                sum.add_all(power, value);
+                continue;
+            }
             for (at, digits) in value.digits.chunks(value.width).enumerate() {
                 sum.add(at + power, count, digits);
             }
@@ -100,6 +123,33 @@ impl Ring for Counts {
     }
 
     fn negate(&self, value: &Tally) -> Tally {
+        value.clone()
+    }
+}
+
+/// Numbers of terms altogether.
+pub(crate) struct Totals;
+
+impl Ring for Totals {
+    type Weight = u64;
+    type Value = BigUint;
+
+    fn zero(&self) -> BigUint {
+        BigUint::ZERO
+    }
+
+    fn one(&self) -> BigUint {
+        BigUint::from(1_u32)
+    }
+
+    fn add(&self, sum: &mut BigUint, weight: &u64, value: &BigUint, _: bool) {
+        match weight {
+            1 => *sum += value,
+            count => *sum += value * *count,
+        }
+    }
+
+    fn negate(&self, value: &BigUint) -> BigUint {
         value.clone()
     }
 }

@@ -7,8 +7,8 @@ use super::agreement::ladder;
 use crate::circuit::{Band, Number};
 use crate::numeric::testing::{Builder, number};
 use crate::numeric::{
-    Assignment, Candidate, ExactKind, Field, NumericError, Origin, PrimeField, crosscheck,
-    frequencies,
+    Additive, Assignment, Candidate, ExactKind, Field, NumericError, Origin, PrimeField,
+    crosscheck, frequencies,
 };
 
 /// (a + b·R1·C1·s)/(c + d·R1·C1·s), symbols in this order.
@@ -27,10 +27,13 @@ impl Section {
 }
 
 impl Candidate for Section {
-    fn value_at(&self, s: Complex<f64>, symbols: &[f64]) -> Complex<f64> {
-        let time = s * symbols[0] * symbols[1];
+    fn values_at(&self, frequencies: &[Complex<f64>], symbols: &[f64]) -> Vec<Complex<f64>> {
         let [a, b, c, d] = self.0.map(|value| value.to_f64().unwrap_or(f64::NAN));
-        (time * b + a) / (time * d + c)
+        let value = |s: &Complex<f64>| {
+            let time = s * symbols[0] * symbols[1];
+            (time * b + a) / (time * d + c)
+        };
+        frequencies.iter().map(value).collect()
     }
 
     fn coefficients(&self, symbols: &[Number]) -> Option<(Vec<Number>, Vec<Number>)> {
@@ -123,8 +126,8 @@ fn nominal_values_without_a_solution() {
     let port = b.impedance("a", "0");
     struct Port;
     impl Candidate for Port {
-        fn value_at(&self, _: Complex<f64>, r: &[f64]) -> Complex<f64> {
-            Complex::new(r[0] * r[1] / (r[1] - r[0]), 0.0)
+        fn values_at(&self, frequencies: &[Complex<f64>], r: &[f64]) -> Vec<Complex<f64>> {
+            vec![Complex::new(r[0] * r[1] / (r[1] - r[0]), 0.0); frequencies.len()]
         }
         fn coefficients(&self, _: &[Number]) -> Option<(Vec<Number>, Vec<Number>)> {
             None

@@ -6,7 +6,7 @@ use num_traits::ToPrimitive;
 use crate::circuit::{Class, Drive, Law, Number, Probe, Quantity, Transfer, Value};
 use crate::numeric::testing::{Builder, constant, number, transfer};
 use crate::numeric::{
-    Field, PRIMES, PrimeField, Sweep, exact, grounded_nodes, modular_value, response,
+    Additive, Field, PRIMES, PrimeField, Sweep, exact, grounded_nodes, modular_value, response,
 };
 
 fn whole(coefficients: &[i64]) -> Vec<Number> {
@@ -51,7 +51,6 @@ pub(super) fn agree(
             answer.value,
             answer.error_bound
         );
-        assert!(answer.condition >= 0.99, "{}", answer.condition);
     }
     for prime in PRIMES {
         let field = PrimeField::new(prime);

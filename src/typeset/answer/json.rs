@@ -95,11 +95,11 @@ fn ratio(answer: &Answer<'_>, entry: &Entry) -> Ratio {
             let text = |counts: &[num_bigint::BigUint]| {
                 counts.iter().map(ToString::to_string).collect::<Vec<_>>()
             };
-            let counts = TermCounts {
-                numerator: text(&entry.counts.numerator),
-                denominator: text(&entry.counts.denominator),
-            };
-            (None, None, Some(counts))
+            let counts = entry.terms_by_power().map(|counts| TermCounts {
+                numerator: text(&counts.numerator),
+                denominator: text(&counts.denominator),
+            });
+            (None, None, counts)
         }
     };
     let floating = &entry.evidence.floating;

@@ -5,13 +5,17 @@ pub mod check;
 mod evidence;
 mod json;
 mod latex;
+mod legend;
+pub mod response;
 pub mod roots;
 mod sections;
+mod table;
 mod text;
 
 pub use evidence::evidence;
 pub use json::{results, symbols, warning};
 pub use latex::latex;
+pub use legend::{legend_latex, legend_text};
 pub use text::{TextStyle, text};
 
 use super::shape::{Layered, Lettering, Shape, write};
@@ -35,13 +39,13 @@ pub struct Answer<'a> {
 }
 
 /// The names of the symbols in a result.
-fn names(entry: &Entry) -> SymbolTable {
+pub(crate) fn names(entry: &Entry) -> SymbolTable {
     let names = SymbolTable::new(entry.symbols.iter().map(|symbol| symbol.name.as_str()));
     if entry.noise.is_some() { names.of_frequency() } else { names }
 }
 
 /// A result's formula in a shape.
-fn written(entry: &Entry, shape: Shape) -> Layered {
+pub(crate) fn written(entry: &Entry, shape: Shape) -> Layered {
     let letters = lettering_of(&entry.symbols);
     let written = |shape| write(&entry.form, entry.elimination.as_ref(), shape, letters);
     // A shape that needs an expansion is refused before this, with the number of its terms.

@@ -8,7 +8,7 @@ use num_rational::BigRational;
 use super::TextStyle;
 use crate::typeset::latex::Latex;
 use crate::typeset::number::{self, Medium};
-use crate::typeset::shape::{Quantity, Section};
+use crate::typeset::shape::{NumericSection, Quantity, Section};
 use crate::typeset::{Dialect, Formula, SymbolTable, View, plain};
 
 /// One line for each section: `poles, order 2: w0 = sqrt(1/(L1*C1)) = 2 pi * 159 kHz, Q = …`.
@@ -35,9 +35,35 @@ pub(super) fn lines(sections: &[Section], names: &SymbolTable, style: TextStyle)
             (2, 1) => line.push_str(", Q infinite"),
             _ => {}
         }
-        line
+        if !section.parts.is_empty() {
+            line.push_str("; at the nominal values");
+        }
+        let parts = section.parts.iter().map(|part| format!("  {}", by_numbers(part, medium)));
+        std::iter::once(line).chain(parts).collect::<Vec<_>>()
     };
-    sections.iter().map(one).collect()
+    sections.iter().flat_map(one).collect()
+}
+
+/// `w0 = 2π · 9.95 kHz, Q = 1.618, 2 times`.
+fn by_numbers(part: &NumericSection, medium: Medium) -> String {
+    let name = if part.q.is_some() { "w0" } else { "w" };
+    let mut line = format!("{name} = {}", hertz(part.frequency, medium).unwrap_or_default());
+    match part.q {
+        Some(q) if q.is_finite() => {
+            if let Some(q) = BigRational::from_float(q) {
+                let _ = write!(line, ", Q = {}", number::rounded(&q, 4, medium));
+            }
+        }
+        Some(_) => line.push_str(", Q infinite"),
+        None => {}
+    }
+    if part.right {
+        line.push_str(", in the right half-plane");
+    }
+    if part.multiplicity > 1 {
+        let _ = write!(line, ", {} times", part.multiplicity);
+    }
+    line
 }
 
 /// The same as formulas of LaTeX, where there is a closed form.
@@ -95,9 +121,14 @@ fn value(
 fn nominal(quantity: &Quantity, medium: Medium) -> Option<String> {
     let value = quantity.nominal?;
     if quantity.name.starts_with('w') {
-        let hertz = BigRational::from_float(value / TAU)?;
-        let pi = if medium == Medium::Ascii { "2*pi * " } else { "2π · " };
-        return Some(format!("{pi}{}", number::quantity(&hertz, "Hz", 4, medium)));
+        return hertz(value, medium);
     }
     Some(number::rounded(&BigRational::from_float(value)?, 4, medium))
+}
+
+/// rad/s as 2π times hertz.
+fn hertz(value: f64, medium: Medium) -> Option<String> {
+    let hertz = BigRational::from_float(value / TAU)?;
+    let pi = if medium == Medium::Ascii { "2*pi * " } else { "2π · " };
+    Some(format!("{pi}{}", number::quantity(&hertz, "Hz", 4, medium)))
 }

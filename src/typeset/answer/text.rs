@@ -6,8 +6,8 @@ use num_rational::BigRational;
 use num_traits::{One, Zero};
 
 use super::{Answer, Asymptote, asymptotes, evidence, lettering_of, names, written};
-use crate::algebra::Fraction;
-use crate::analysis::{ClosedForm, Entry, Noise, NumericForm, total};
+use crate::algebra::{Fraction, Var};
+use crate::analysis::{ClosedForm, Entry, Noise, NumericForm};
 use crate::circuit::Unit;
 use crate::typeset::number::{self, Medium};
 use crate::typeset::screen::{Characters, Screen};
@@ -137,8 +137,8 @@ fn facts(out: &mut String, entry: &Entry, names: &SymbolTable, style: TextStyle)
         }
     }
     if let ClosedForm::Nested(_) = entry.form {
-        let count = total(&entry.counts).to_string();
-        let about = if entry.counts.exact { "" } else { "at most " };
+        let count = entry.length.terms.to_string();
+        let about = if entry.length.exact { "" } else { "at most " };
         // Hundreds of digits help nobody; JSON has them all.
         let count = if count.len() <= LONGEST_COUNT {
             count
@@ -155,7 +155,12 @@ fn facts(out: &mut String, entry: &Entry, names: &SymbolTable, style: TextStyle)
 
 /// Whether there is anything to say about the ends of the frequency axis.
 fn depends_on_s(entry: &Entry) -> bool {
-    entry.counts.numerator.len().max(entry.counts.denominator.len()) > 1
+    match &entry.form {
+        ClosedForm::Expanded(fraction) => {
+            fraction.numerator().degree(Var::S).max(fraction.denominator().degree(Var::S)) > 0
+        }
+        ClosedForm::Nested(_) => true,
+    }
 }
 
 /// The shares of a noise density, and what it adds up to.

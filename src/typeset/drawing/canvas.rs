@@ -1,10 +1,12 @@
-//! What is on the sheet: strokes, shapes and texts with the room they take, and their SVG.
+//! What is on the sheet: strokes, shapes and texts with the room they take.
 //!
-//! All escaping and all printing of numbers happens here. Lengths are user units (pixels at 100 %),
+//! [`Picture`] escapes and prints. Lengths are user units (pixels at 100 %),
 //! x to the right and y downwards. Texts are measured by a table of widths that is on the wide side
 //! of common sans-serif faces, so that what has room here has room on the screen.
 
-use std::fmt::Write;
+pub(super) use crate::typeset::svg::{Anchor, number};
+
+use crate::typeset::svg::{Picture, polyline};
 
 /// Height of a line of text above its base line, and below.
 pub(super) const ASCENT: f64 = 9.5;
@@ -31,13 +33,6 @@ impl Room {
             && self.top < other.bottom
             && other.top < self.bottom
     }
-}
-
-/// Where a text stands about its point.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub(super) enum Anchor {
-    Start,
-    Middle,
 }
 
 /// How a text looks.
@@ -106,16 +101,26 @@ impl Text {
         let left = match self.anchor {
             Anchor::Start => self.x,
             Anchor::Middle => self.x - wide / 2.0,
+            Anchor::End => self.x - wide,
         };
         Room { left, top: self.y - ASCENT, right: left + wide, bottom: self.y + DESCENT }
     }
+}
+
+/// What a sign is made of.
+#[derive(Clone, Debug)]
+enum Shape {
+    /// A class and path data.
+    Path(&'static str, String),
+    /// Middle and radius.
+    Circle([f64; 2], f64),
 }
 
 /// The sheet.
 #[derive(Clone, Debug, Default)]
 pub(super) struct Canvas {
     pub(super) wires: Vec<[f64; 4]>,
-    shapes: String,
+    shapes: Vec<Shape>,
     dots: Vec<(f64, f64)>,
     pub(super) texts: Vec<Text>,
     /// Room of the symbols' bodies.
@@ -137,19 +142,17 @@ impl Canvas {
 
     /// A shape of the class `body`, by path data.
     pub(super) fn path(&mut self, data: &str) {
-        let _ = writeln!(self.shapes, "<path class=\"body\" d=\"{data}\"/>");
+        self.shapes.push(Shape::Path("body", data.to_owned()));
     }
 
     /// A shape that is filled with the colour of the lines.
     pub(super) fn solid(&mut self, data: &str) {
-        let _ = writeln!(self.shapes, "<path class=\"solid\" d=\"{data}\"/>");
+        self.shapes.push(Shape::Path("solid", data.to_owned()));
     }
 
     /// A circle of the class `body`.
     pub(super) fn circle(&mut self, x: f64, y: f64, radius: f64) {
-        let (x, y, radius) = (number(x), number(y), number(radius));
-        let _ =
-            writeln!(self.shapes, "<circle class=\"body\" cx=\"{x}\" cy=\"{y}\" r=\"{radius}\"/>");
+        self.shapes.push(Shape::Circle([x, y], radius));
     }
 
     /// A text; an empty one is left out.
@@ -160,98 +163,46 @@ impl Canvas {
     }
 
     /// The whole picture.
-    pub(super) fn svg(&self, size: (f64, f64), title: &str, description: &str) -> String {
-        let (width, height) = (number(size.0.ceil()), number(size.1.ceil()));
-        let mut out = String::new();
-        let _ = writeln!(
-            out,
-            "<svg xmlns=\"http://www.w3.org/2000/svg\" width=\"{width}\" height=\"{height}\" \
-             viewBox=\"0 0 {width} {height}\" role=\"img\" aria-labelledby=\"circuit-title circuit-description\">\n\
-             <title id=\"circuit-title\">{}</title>\n<desc id=\"circuit-description\">{}</desc>\n\
-             <style>{STYLE}</style>\n<rect class=\"sheet\" width=\"{width}\" height=\"{height}\"/>",
-            escaped(title),
-            escaped(description)
-        );
-        if !self.wires.is_empty() {
-            out.push_str("<path class=\"wire\" d=\"");
-            for [x1, y1, x2, y2] in &self.wires {
-                let [x1, y1, x2, y2] = [x1, y1, x2, y2].map(|value| number(*value));
-                let _ = write!(out, "M{x1} {y1}L{x2} {y2}");
-            }
-            out.push_str("\"/>\n");
+    pub(super) fn picture(&self, size: (f64, f64), title: &str, description: &str) -> Picture {
+        let size = [size.0.ceil(), size.1.ceil()];
+        let mut picture = Picture::bare("circuit", size, title, description);
+        for (selector, style, dark) in STYLE {
+            picture.rule(selector, style, dark);
         }
-        out.push_str(&self.shapes);
+        picture.rectangle("sheet", [0.0, 0.0], size);
+        if !self.wires.is_empty() {
+            let wires = self.wires.iter().map(|&[x1, y1, x2, y2]| polyline(&[[x1, y1], [x2, y2]]));
+            picture.data("wire", wires.collect());
+        }
+        for shape in &self.shapes {
+            match shape {
+                Shape::Path(class, data) => picture.data(class, data.clone()),
+                Shape::Circle(place, radius) => picture.circle("body", *place, *radius),
+            }
+        }
         for &(x, y) in &self.dots {
-            let _ = writeln!(
-                out,
-                "<circle class=\"dot\" cx=\"{}\" cy=\"{}\" r=\"2.6\"/>",
-                number(x),
-                number(y)
-            );
+            picture.circle("dot", [x, y], 2.6);
         }
         for text in &self.texts {
-            let anchor = match text.anchor {
-                Anchor::Start => "",
-                Anchor::Middle => " text-anchor=\"middle\"",
-            };
-            let _ = writeln!(
-                out,
-                "<text class=\"{}\" x=\"{}\" y=\"{}\"{anchor}>{}</text>",
-                text.face.class(),
-                number(text.x),
-                number(text.y),
-                escaped(&text.content)
-            );
+            picture.text(text.face.class(), [text.x, text.y], text.anchor, &text.content);
         }
-        out.push_str("</svg>\n");
-        out
+        picture
     }
 }
 
 /// Plain colours, and overrides where the reader wants a dark page.
-const STYLE: &str = "
-.sheet { fill: #fdfdfb }
-.wire { fill: none; stroke: #2b3a42; stroke-width: 1.4; stroke-linecap: square }
-.body { fill: #fdfdfb; stroke: #0b5563; stroke-width: 1.6; stroke-linejoin: round }
-.solid { fill: #0b5563; stroke: none }
-.dot { fill: #2b3a42 }
-text { font-family: sans-serif; font-size: 12px; fill: #1c262b }
-.value { font-size: 11px; fill: #55636b }
-.node { fill: #a03c14 }
-.sign { font-size: 10px; fill: #0b5563 }
-@media (prefers-color-scheme: dark) {
-.sheet { fill: #14191c }
-.wire { stroke: #b9c4ca }
-.body { fill: #14191c; stroke: #6cc3d5 }
-.solid { fill: #6cc3d5 }
-.dot { fill: #b9c4ca }
-text { fill: #e6ebee }
-.value { fill: #9fadb5 }
-.node { fill: #f0a37f }
-.sign { fill: #6cc3d5 }
-}
-";
-
-/// A length with at most two decimals.
-pub(super) fn number(value: f64) -> String {
-    let text = format!("{value:.2}");
-    let short = text.trim_end_matches('0').trim_end_matches('.');
-    if short == "-0" { "0".to_owned() } else { short.to_owned() }
-}
-
-/// Text for XML.
-fn escaped(text: &str) -> String {
-    let mut out = String::with_capacity(text.len());
-    for letter in text.chars() {
-        match letter {
-            '&' => out.push_str("&amp;"),
-            '<' => out.push_str("&lt;"),
-            '>' => out.push_str("&gt;"),
-            '"' => out.push_str("&quot;"),
-            // XML 1.0 has no place for other control characters.
-            letter if letter.is_control() => out.push(' '),
-            letter => out.push(letter),
-        }
-    }
-    out
-}
+const STYLE: [(&str, &str, &str); 9] = [
+    (".sheet", "fill:#fdfdfb", "fill:#14191c"),
+    (".wire", "fill:none;stroke:#2b3a42;stroke-width:1.4;stroke-linecap:square", "stroke:#b9c4ca"),
+    (
+        ".body",
+        "fill:#fdfdfb;stroke:#0b5563;stroke-width:1.6;stroke-linejoin:round",
+        "fill:#14191c;stroke:#6cc3d5",
+    ),
+    (".solid", "fill:#0b5563;stroke:none", "fill:#6cc3d5"),
+    (".dot", "fill:#2b3a42", "fill:#b9c4ca"),
+    ("text", "font-family:sans-serif;font-size:12px;fill:#1c262b", "fill:#e6ebee"),
+    (".value", "font-size:11px;fill:#55636b", "fill:#9fadb5"),
+    (".node", "fill:#a03c14", "fill:#f0a37f"),
+    (".sign", "font-size:10px;fill:#0b5563", "fill:#6cc3d5"),
+];

@@ -18,6 +18,7 @@ mod tests;
 pub use canvas::Room;
 
 use crate::circuit::Circuit;
+use crate::typeset::svg::Picture;
 use canvas::{Anchor, Canvas, Face};
 use scheme::Scheme;
 
@@ -57,7 +58,12 @@ pub fn draw(circuit: &Circuit) -> Drawing {
 impl Drawing {
     /// The picture, with a title and a description for those who cannot see it.
     pub fn svg(&self) -> String {
-        self.canvas.svg(self.size, &self.title, &self.description)
+        self.picture().svg()
+    }
+
+    /// The picture, for any printer.
+    pub fn picture(&self) -> Picture {
+        self.canvas.picture(self.size, &self.title, &self.description)
     }
 
     /// The room of every text, and its words.

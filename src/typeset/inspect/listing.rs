@@ -5,9 +5,9 @@ use super::json::{
     Ask, Band, Claim, Definition, Element, Graph, Group, INSPECT_SCHEMA, Inspect, Node, Noise,
     Order, Shot,
 };
-use super::words::{class_word, groups, is_noisy, limit, question};
+use super::words::{class_word, groups, limit, question};
 use crate::circuit::graph::{Facts, branches, facts};
-use crate::circuit::{self, Circuit, ElementId, Law, NodeId};
+use crate::circuit::{Circuit, ElementId, Law, NodeId};
 use crate::typeset::answer::symbols;
 use crate::typeset::json::Warning;
 use crate::typeset::number::shortest;
@@ -21,17 +21,17 @@ pub fn listing(circuit: &Circuit, warnings: Vec<Warning>) -> Inspect {
     let name = |id: ElementId| circuit[id].name.clone();
     let names = |ids: &[ElementId]| ids.iter().map(|&id| name(id)).collect::<Vec<_>>();
     let node = |id: NodeId| circuit[id].name.clone();
-    let with = |keep: &dyn Fn(&circuit::Element) -> bool| -> Vec<String> {
-        let kept = circuit.elements.iter().filter(|element| keep(element));
-        kept.map(|element| element.name.clone()).collect()
+    let ids = || (0..circuit.elements.len() as u32).map(ElementId);
+    let with = |keep: &dyn Fn(ElementId) -> bool| -> Vec<String> {
+        ids().filter(|&id| keep(id)).map(name).collect()
     };
     let independent =
-        |element: &circuit::Element| matches!(element.law, Law::VoltageSource | Law::CurrentSource);
+        |id: ElementId| matches!(circuit[id].law, Law::VoltageSource | Law::CurrentSource);
     Inspect {
         schema: INSPECT_SCHEMA,
         circuit: circuit.title.clone(),
         nodes: nodes(circuit),
-        elements: circuit.elements.iter().map(|e| element(circuit, &values, e)).collect(),
+        elements: ids().map(|id| element(circuit, &values, id)).collect(),
         symbols: symbols(circuit),
         definitions: circuit
             .definitions
@@ -71,7 +71,7 @@ pub fn listing(circuit: &Circuit, warnings: Vec<Warning>) -> Inspect {
             .as_ref()
             .map(|band| Band { from_hz: shortest(&band.from), to_hz: shortest(&band.to) }),
         noise: Noise {
-            thermal: with(&is_noisy),
+            thermal: with(&|id| circuit.is_noisy(id)),
             shot: circuit
                 .shots
                 .iter()
@@ -112,7 +112,8 @@ fn nodes(circuit: &Circuit) -> Vec<Node> {
         .collect()
 }
 
-fn element(circuit: &Circuit, values: &Values<'_>, element: &circuit::Element) -> Element {
+fn element(circuit: &Circuit, values: &Values<'_>, id: ElementId) -> Element {
+    let element = &circuit[id];
     let node = |id: NodeId| circuit[id].name.clone();
     let symbol = values.symbol(element);
     let (own, other) = match element.law {
@@ -144,7 +145,7 @@ fn element(circuit: &Circuit, values: &Values<'_>, element: &circuit::Element) -
             &element.law,
             Law::ControlledVoltage(terms) | Law::ControlledCurrent(terms) if !terms.is_empty()
         ),
-        noisy: is_noisy(element),
+        noisy: circuit.is_noisy(id),
         line: element.line,
     }
 }

@@ -14,4 +14,4 @@ mod words;
 pub use listing::listing;
 pub use text::text;
 pub use value::{Values, nominal};
-pub use words::{class_word, is_noisy};
+pub use words::class_word;

@@ -1,13 +1,10 @@
-//! Words for classes and questions, and which elements are noisy.
+//! Words for classes and questions.
 
 use std::collections::BTreeMap;
 
 use crate::circuit::{
     Ask, Circuit, Class, Element, ElementId, Law, Limit, LimitTo, ParameterSet, Question,
 };
-
-/// Parameters of devices that model a slope of a characteristic: no resistance, no noise.
-const MODELS: [&str; 7] = ["rpi", "ro", "rp", "rmu", "rd", "rin", "rout"];
 
 /// The word of the circuit language for a class.
 pub fn class_word(class: Class) -> &'static str {
@@ -34,19 +31,13 @@ pub(super) fn kind(element: &Element) -> String {
         Law::VoltageSource => "voltage source".to_owned(),
         Law::CurrentSource => "current source".to_owned(),
         Law::ControlledVoltage(terms) if terms.is_empty() => "ammeter".to_owned(),
+        Law::ControlledVoltage(_) if element.class == Class::Opamp => "op-amp".to_owned(),
         Law::ControlledVoltage(_) => "controlled voltage".to_owned(),
         Law::ControlledCurrent(_) => "controlled current".to_owned(),
         Law::Nullor(..) if element.class == Class::Opamp => "ideal op-amp".to_owned(),
         Law::Mutual { .. } => "mutual inductance".to_owned(),
         _ => class_word(element.class).to_owned(),
     }
-}
-
-/// Whether an element has thermal noise: resistors, conductances and the physical resistances of
-/// devices. The parameters that only model a slope (`Q1.rpi`, `Q1.ro`, `U1.rout`) have none.
-pub fn is_noisy(element: &Element) -> bool {
-    let model = element.name.rsplit_once('.').is_some_and(|(_, last)| MODELS.contains(&last));
-    matches!(element.class, Class::Resistor | Class::Conductance) && !model
 }
 
 /// Elements by the device or block that they belong to, in the order of the file.

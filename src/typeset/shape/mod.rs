@@ -18,7 +18,7 @@ pub use compact::compact;
 pub use nested::{Layered, nested};
 pub use powers::powers;
 pub use product::product;
-pub use sections::{Quantity, Section, sections};
+pub use sections::{NumericSection, Quantity, Section, sections};
 
 use num_bigint::BigInt;
 use num_rational::BigRational;

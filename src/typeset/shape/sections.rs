@@ -2,15 +2,20 @@
 //!
 //! Numerator and denominator are factored over the rational numbers; each factor is a section that
 //! begins with 1. First order, 1 + s·b₁: the corner is 1/b₁. Second order, 1 + s·b₁ + s²·b₂: ω0² = 1/b₂
-//! and Q² = b₂/b₁². Of a higher order that does not factor there is no such closed form, which is said.
+//! and Q² = b₂/b₁². Of a higher order that does not factor there is no such closed form, which is said;
+//! its sections are given by numbers, where the symbols have values.
 
 use num_rational::BigRational;
-use num_traits::{Signed, ToPrimitive};
+use num_traits::{One, Signed, ToPrimitive};
 
 use super::bode::lowest;
 use super::compact::{Coefficients, factors, product};
 use super::{Lettering, with_s};
-use crate::algebra::{Fraction, Polynomial, Var};
+use crate::algebra::{Fraction, Polynomial, Univariate, Var};
+use crate::analysis::roots::find;
+use crate::circuit::SymbolRole;
+use crate::elimination::symbol_of;
+use crate::numeric::exact_pi;
 use crate::typeset::{Formula, Letter};
 
 /// A quantity of a section.
@@ -37,6 +42,23 @@ pub struct Section {
     pub multiplicity: u32,
     /// Empty for an order above 2: no closed form.
     pub quantities: Vec<Quantity>,
+    /// Of an order above 2 the sections of first and second order at the nominal values, by rising
+    /// frequency; empty where values are missing.
+    pub parts: Vec<NumericSection>,
+}
+
+/// A section by numbers.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct NumericSection {
+    /// The corner or ω0, in rad/s.
+    pub frequency: f64,
+    /// Q of a second-order section, negative with a positive real part; infinite on the imaginary
+    /// axis. None for the first order.
+    pub q: Option<f64>,
+    /// Whether the real part is positive.
+    pub right: bool,
+    /// How often it occurs.
+    pub multiplicity: u32,
 }
 
 /// The shape `sections`: the product of the sections, and what each is.
@@ -52,8 +74,13 @@ pub fn sections(fraction: &Fraction, letters: Lettering<'_>) -> (Formula, Vec<Se
     let nominal = nominal(&factor, letters).filter(|_| factor.symbols() > 0);
     let nominal = nominal.as_ref().and_then(ToPrimitive::to_f64);
     let quantity = Quantity { name: "gain", factor: factor.clone(), radicand: None, nominal };
-    let mut list =
-        vec![Section { poles: false, order: 0, multiplicity: 1, quantities: vec![quantity] }];
+    let mut list = vec![Section {
+        poles: false,
+        order: 0,
+        multiplicity: 1,
+        quantities: vec![quantity],
+        parts: Vec::new(),
+    }];
     let s = Formula::power(Formula::s(), above_power as i32 - below_power as i32);
     let mut written = vec![factor, s];
     for (side, poles) in sides.into_iter().zip([false, true]) {
@@ -65,7 +92,8 @@ pub fn sections(fraction: &Fraction, letters: Lettering<'_>) -> (Formula, Vec<Se
             let (formula, quantities) = section(&factor, &mut coefficients, letters);
             let power = i32::try_from(multiplicity).unwrap_or(i32::MAX);
             written.push(Formula::power(formula, if poles { -power } else { power }));
-            list.push(Section { poles, order, multiplicity, quantities });
+            let parts = if order > 2 { by_numbers(&factor, letters) } else { Vec::new() };
+            list.push(Section { poles, order, multiplicity, quantities, parts });
         }
     }
     (product(written), list)
@@ -113,6 +141,32 @@ fn section(
         _ => Vec::new(),
     };
     (Formula::sum(terms), quantities.into_iter().flatten().collect())
+}
+
+/// The sections of a factor at the nominal values.
+fn by_numbers(factor: &Polynomial, letters: Lettering<'_>) -> Vec<NumericSection> {
+    let value = |variable: Var| {
+        let symbol = symbol_of(variable).and_then(|id| letters.symbols.get(id.0 as usize))?;
+        if symbol.role == SymbolRole::Pi { Some(exact_pi()) } else { symbol.nominal.clone() }
+    };
+    let parts = factor.coefficients(Var::S);
+    if parts.iter().flat_map(Polynomial::variables).any(|variable| value(variable).is_none()) {
+        return Vec::new();
+    }
+    let coefficients: Vec<BigRational> = parts
+        .iter()
+        .map(|part| part.evaluate(|variable| value(variable).unwrap_or_else(BigRational::one)))
+        .collect();
+    let roots = find(&Univariate::from_rationals(&coefficients)).unwrap_or_default();
+    let upper = roots.iter().filter(|root| root.value.im >= 0.0);
+    upper
+        .map(|root| NumericSection {
+            frequency: root.value.norm(),
+            q: (!root.is_real()).then(|| root.value.norm() / (-2.0 * root.value.re)),
+            right: root.value.re > 0.0,
+            multiplicity: root.multiplicity,
+        })
+        .collect()
 }
 
 /// A fraction as square · rest: what stands before a square root, and under it. Of the two signs

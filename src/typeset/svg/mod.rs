@@ -1,50 +1,91 @@
-//! Pictures: the few pieces of SVG 1.1 that plots need, written by hand.
+//! Pictures: the few kinds of strokes and texts that plots and drawings need, printed as SVG 1.1 by hand,
+//! or as TikZ for LaTeX.
 //!
-//! Coordinates have two decimals. Every text is escaped in one place. Colours stand in rules of a
-//! style sheet, with overrides for dark surroundings by `prefers-color-scheme`, and every rule
-//! begins with the identifier of its picture, so that several can share one page. A picture has a
-//! title and a description for those who do not see it.
+//! Lengths are pixels, x to the right and y downwards. Coordinates have two decimals. Every text is
+//! escaped in one place per format. Colours stand in rules of a style sheet, with overrides for dark
+//! screens by `prefers-color-scheme`, and every rule begins with the identifier of its picture, so that
+//! several can share one page. A picture has a title and a description for those who do not see it.
 
 mod axis;
+mod style;
+mod tikz;
 
 pub use axis::{Axis, label, ticks};
 
 use std::fmt::Write;
 
+use super::visible;
+use style::Rule;
+
 /// A picture under construction.
 #[derive(Clone, Debug)]
 pub struct Picture {
     identifier: String,
-    width: f64,
-    height: f64,
+    size: [f64; 2],
     title: String,
     description: String,
-    rules: String,
-    dark_rules: String,
-    body: String,
-    clips: u32,
+    rules: Vec<Rule>,
+    items: Vec<Item>,
+}
+
+/// A stroke or a text, with its classes.
+#[derive(Clone, Debug)]
+enum Item {
+    /// Data in the words of SVG's paths.
+    Path {
+        class: String,
+        data: String,
+    },
+    Circle {
+        class: String,
+        place: [f64; 2],
+        radius: f64,
+    },
+    Rectangle {
+        class: String,
+        corner: [f64; 2],
+        size: [f64; 2],
+    },
+    Text {
+        class: String,
+        place: [f64; 2],
+        anchor: Anchor,
+        turned: bool,
+        text: String,
+    },
+    BeginClip {
+        corner: [f64; 2],
+        size: [f64; 2],
+    },
+    EndClip,
+}
+
+/// Where a text stands about its point.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Anchor {
+    /// The text begins there.
+    Start,
+    /// Its middle is there.
+    Middle,
+    /// It ends there.
+    End,
+}
+
+impl Anchor {
+    fn name(self) -> &'static str {
+        match self {
+            Self::Start => "start",
+            Self::Middle => "middle",
+            Self::End => "end",
+        }
+    }
 }
 
 impl Picture {
     /// An empty picture of that size, in pixels; the identifier is what rules and labels refer to.
     #[must_use]
-    pub fn new(
-        identifier: &str,
-        [width, height]: [f64; 2],
-        title: &str,
-        description: &str,
-    ) -> Self {
-        let mut picture = Self {
-            identifier: plain(identifier),
-            width,
-            height,
-            title: title.to_owned(),
-            description: description.to_owned(),
-            rules: String::new(),
-            dark_rules: String::new(),
-            body: String::new(),
-            clips: 0,
-        };
+    pub fn new(identifier: &str, size: [f64; 2], title: &str, description: &str) -> Self {
+        let mut picture = Self::bare(identifier, size, title, description);
         picture.rule("text", "font:13px sans-serif;fill:#222", "fill:#ddd");
         picture.rule(".frame", "fill:none;stroke:#888;stroke-width:1", "stroke:#777");
         picture.rule(".grid", "fill:none;stroke:#ddd;stroke-width:1", "stroke:#3a3a3a");
@@ -53,88 +94,186 @@ impl Picture {
         picture
     }
 
-    /// A rule for what the selector finds in this picture, and what differs in dark surroundings.
-    pub fn rule(&mut self, selector: &str, style: &str, dark: &str) {
-        let id = &self.identifier;
-        let _ = writeln!(self.rules, "#{id} {selector}{{{style}}}");
-        if !dark.is_empty() {
-            let _ = writeln!(self.dark_rules, "#{id} {selector}{{{dark}}}");
+    /// The same without any rules.
+    #[must_use]
+    pub fn bare(identifier: &str, size: [f64; 2], title: &str, description: &str) -> Self {
+        Self {
+            identifier: plain(identifier),
+            size,
+            title: visible::line(title).into_owned(),
+            description: visible::line(description).into_owned(),
+            rules: Vec::new(),
+            items: Vec::new(),
         }
     }
 
+    /// What rules and labels refer to; unique on a page.
+    #[must_use]
+    pub fn named(mut self, identifier: &str) -> Self {
+        self.identifier = plain(identifier);
+        self
+    }
+
+    /// What the picture shows.
+    #[must_use]
+    pub fn title(&self) -> &str {
+        &self.title
+    }
+
+    /// The same in words for those who do not see it.
+    #[must_use]
+    pub fn description(&self) -> &str {
+        &self.description
+    }
+
+    /// A rule for what the selector (`text`, `.class`) finds in this picture, and what differs on dark
+    /// screens. Of two rules for one thing the later one counts.
+    pub fn rule(&mut self, selector: &str, style: &str, dark: &str) {
+        self.rules.push(Rule {
+            selector: selector.to_owned(),
+            style: style.to_owned(),
+            dark: dark.to_owned(),
+        });
+    }
+
     /// A straight line.
-    pub fn line(&mut self, class: &str, [x1, y1]: [f64; 2], [x2, y2]: [f64; 2]) {
-        self.path(class, &[[x1, y1], [x2, y2]]);
+    pub fn line(&mut self, class: &str, from: [f64; 2], to: [f64; 2]) {
+        self.path(class, &[from, to]);
     }
 
     /// A polyline.
     pub fn path(&mut self, class: &str, points: &[[f64; 2]]) {
-        let mut data = String::new();
-        for (index, &[x, y]) in points.iter().enumerate() {
-            let command = if index == 0 { 'M' } else { 'L' };
-            let _ = write!(data, "{command}{} {}", number(x), number(y));
-        }
-        let _ = writeln!(self.body, "<path class=\"{}\" d=\"{data}\"/>", escaped(class));
+        self.data(class, polyline(points));
+    }
+
+    /// A closed polygon.
+    pub fn polygon(&mut self, class: &str, points: &[[f64; 2]]) {
+        self.data(class, polyline(points) + "Z");
+    }
+
+    /// A path in the words of SVG: `M`, `L`, `A`, `Z` with numbers.
+    pub fn data(&mut self, class: &str, data: String) {
+        self.items.push(Item::Path { class: class.to_owned(), data });
     }
 
     /// A circle.
-    pub fn circle(&mut self, class: &str, [x, y]: [f64; 2], radius: f64) {
-        let (x, y, r) = (number(x), number(y), number(radius));
-        let class = escaped(class);
-        let _ = writeln!(self.body, "<circle class=\"{class}\" cx=\"{x}\" cy=\"{y}\" r=\"{r}\"/>");
+    pub fn circle(&mut self, class: &str, place: [f64; 2], radius: f64) {
+        self.items.push(Item::Circle { class: class.to_owned(), place, radius });
     }
 
     /// A rectangle from its upper left corner.
-    pub fn rectangle(&mut self, class: &str, [x, y]: [f64; 2], [width, height]: [f64; 2]) {
-        let (x, y, w, h) = (number(x), number(y), number(width), number(height));
-        let class = escaped(class);
-        let _ = writeln!(
-            self.body,
-            "<rect class=\"{class}\" x=\"{x}\" y=\"{y}\" width=\"{w}\" height=\"{h}\"/>"
-        );
+    pub fn rectangle(&mut self, class: &str, corner: [f64; 2], size: [f64; 2]) {
+        self.items.push(Item::Rectangle { class: class.to_owned(), corner, size });
     }
 
-    /// A text; `anchor` is `start`, `middle` or `end`.
-    pub fn text(&mut self, class: &str, [x, y]: [f64; 2], anchor: &str, text: &str) {
-        let (x, y, text) = (number(x), number(y), escaped(text));
-        let (class, anchor) = (escaped(class), escaped(anchor));
-        let _ = writeln!(
-            self.body,
-            "<text class=\"{class}\" x=\"{x}\" y=\"{y}\" text-anchor=\"{anchor}\">{text}</text>"
-        );
+    /// A text.
+    pub fn text(&mut self, class: &str, place: [f64; 2], anchor: Anchor, text: &str) {
+        self.put_text(class, place, anchor, false, text);
+    }
+
+    /// A text that reads upwards.
+    pub fn upright_text(&mut self, class: &str, place: [f64; 2], anchor: Anchor, text: &str) {
+        self.put_text(class, place, anchor, true, text);
+    }
+
+    fn put_text(&mut self, class: &str, place: [f64; 2], anchor: Anchor, turned: bool, text: &str) {
+        let (class, text) = (class.to_owned(), visible::line(text).into_owned());
+        self.items.push(Item::Text { class, place, anchor, turned, text });
     }
 
     /// Begins a group that is cut off at a rectangle; [`Self::end_clip`] ends it.
-    pub fn begin_clip(&mut self, [x, y]: [f64; 2], [width, height]: [f64; 2]) {
-        let (x, y, w, h) = (number(x), number(y), number(width), number(height));
-        self.clips += 1;
-        let id = format!("{}-clip-{}", self.identifier, self.clips);
-        let _ = writeln!(
-            self.body,
-            "<clipPath id=\"{id}\"><rect x=\"{x}\" y=\"{y}\" width=\"{w}\" height=\"{h}\"/></clipPath>\n\
-             <g clip-path=\"url(#{id})\">"
-        );
+    pub fn begin_clip(&mut self, corner: [f64; 2], size: [f64; 2]) {
+        self.items.push(Item::BeginClip { corner, size });
     }
 
     /// Ends the group of [`Self::begin_clip`].
     pub fn end_clip(&mut self) {
-        self.body.push_str("</g>\n");
+        self.items.push(Item::EndClip);
     }
 
-    /// The whole picture.
+    /// The picture as an SVG element.
     #[must_use]
-    pub fn finish(self) -> String {
-        let Self { identifier: id, rules, dark_rules, body, .. } = &self;
-        let (width, height) = (number(self.width), number(self.height));
+    pub fn svg(&self) -> String {
+        let id = &self.identifier;
+        let [width, height] = self.size.map(number);
         let (title, description) = (escaped(&self.title), escaped(&self.description));
-        format!(
+        let mut out = format!(
             "<svg xmlns=\"http://www.w3.org/2000/svg\" id=\"{id}\" role=\"img\" width=\"{width}\" \
              height=\"{height}\" viewBox=\"0 0 {width} {height}\" aria-labelledby=\"{id}-title \
              {id}-description\">\n<title id=\"{id}-title\">{title}</title>\n<desc \
-             id=\"{id}-description\">{description}</desc>\n<style>\n{rules}@media \
-             (prefers-color-scheme: dark){{\n{dark_rules}}}\n</style>\n{body}</svg>\n"
-        )
+             id=\"{id}-description\">{description}</desc>\n<style>\n"
+        );
+        for Rule { selector, style, .. } in &self.rules {
+            let _ = writeln!(out, "#{id} {selector}{{{style}}}");
+        }
+        out.push_str("@media screen and (prefers-color-scheme: dark){\n");
+        for Rule { selector, dark, .. } in self.rules.iter().filter(|rule| !rule.dark.is_empty()) {
+            let _ = writeln!(out, "#{id} {selector}{{{dark}}}");
+        }
+        out.push_str("}\n</style>\n");
+        let mut clips = 0;
+        for item in &self.items {
+            self.item(&mut out, item, &mut clips);
+        }
+        out.push_str("</svg>\n");
+        out
     }
+
+    fn item(&self, out: &mut String, item: &Item, clips: &mut u32) {
+        let class = |class: &String| match class.as_str() {
+            "" => String::new(),
+            class => format!(" class=\"{}\"", escaped(class)),
+        };
+        let _ = match item {
+            Item::Path { class: c, data } => {
+                writeln!(out, "<path{} d=\"{}\"/>", class(c), escaped(data))
+            }
+            Item::Circle { class: c, place, radius } => {
+                let ([x, y], r) = (place.map(number), number(*radius));
+                writeln!(out, "<circle{} cx=\"{x}\" cy=\"{y}\" r=\"{r}\"/>", class(c))
+            }
+            Item::Rectangle { class: c, corner, size } => {
+                let ([x, y], [w, h]) = (corner.map(number), size.map(number));
+                let class = class(c);
+                writeln!(out, "<rect{class} x=\"{x}\" y=\"{y}\" width=\"{w}\" height=\"{h}\"/>")
+            }
+            Item::Text { class: c, place, anchor, turned, text } => {
+                let [x, y] = place.map(number);
+                let turn = if *turned {
+                    format!(" transform=\"rotate(-90 {x} {y})\"")
+                } else {
+                    String::new()
+                };
+                let (class, anchor, text) = (class(c), anchor.name(), escaped(text));
+                writeln!(
+                    out,
+                    "<text{class} x=\"{x}\" y=\"{y}\" text-anchor=\"{anchor}\"{turn}>{text}</text>"
+                )
+            }
+            Item::BeginClip { corner, size } => {
+                let ([x, y], [w, h]) = (corner.map(number), size.map(number));
+                *clips += 1;
+                let id = format!("{}-clip-{clips}", self.identifier);
+                writeln!(
+                    out,
+                    "<clipPath id=\"{id}\"><rect x=\"{x}\" y=\"{y}\" width=\"{w}\" \
+                     height=\"{h}\"/></clipPath>\n<g clip-path=\"url(#{id})\">"
+                )
+            }
+            Item::EndClip => writeln!(out, "</g>"),
+        };
+    }
+}
+
+/// The path through these points.
+#[must_use]
+pub fn polyline(points: &[[f64; 2]]) -> String {
+    let mut data = String::new();
+    for (index, &[x, y]) in points.iter().enumerate() {
+        let command = if index == 0 { 'M' } else { 'L' };
+        let _ = write!(data, "{command}{} {}", number(x), number(y));
+    }
+    data
 }
 
 /// A coordinate with at most two decimals.
@@ -148,7 +287,7 @@ pub fn number(value: f64) -> String {
     if text == "-0" { "0".to_owned() } else { text.to_owned() }
 }
 
-/// A text between tags or in quotes; characters that XML does not allow are left out.
+/// A text between tags or in quotes, for XML and HTML.
 #[must_use]
 pub fn escaped(text: &str) -> String {
     let mut out = String::with_capacity(text.len());
@@ -158,9 +297,7 @@ pub fn escaped(text: &str) -> String {
             '<' => out.push_str("&lt;"),
             '>' => out.push_str("&gt;"),
             '"' => out.push_str("&quot;"),
-            '\t' | '\n' | '\r' => out.push(' '),
-            '\u{fffe}' | '\u{ffff}' => {}
-            c if c.is_control() => {}
+            '\'' => out.push_str("&#39;"),
             c => out.push(c),
         }
     }
@@ -185,22 +322,23 @@ mod tests {
         check(-0.001, "0");
         check(12.345, "12.35");
         check(f64::NAN, "0");
-        assert_eq!(escaped("a<b & \"c\"\u{1}"), "a&lt;b &amp; &quot;c&quot;");
+        assert_eq!(escaped("a<b & \"c\""), "a&lt;b &amp; &quot;c&quot;");
         assert_eq!(plain("2 β"), "p2--");
     }
 
     #[test]
     fn a_picture_is_well_formed() {
-        let mut picture = Picture::new("try", [100.0, 50.0], "a < b", "with \"quotes\" & more");
+        let mut picture =
+            Picture::new("try", [100.0, 50.0], "a < b\u{1}", "with \"quotes\" & more");
         picture.rule(".line", "stroke:#000", "stroke:#fff");
         picture.begin_clip([0.0, 0.0], [100.0, 50.0]);
         picture.line("line", [0.0, 0.0], [1.0, 2.0]);
         picture.end_clip();
-        picture.text("", [1.0, 2.0], "middle", "<>&\"");
-        let text = picture.finish();
+        picture.text("", [1.0, 2.0], Anchor::Middle, "<>&\"");
+        let text = picture.svg();
         let document = roxmltree::Document::parse(&text).expect("well formed");
         let title = document.descendants().find(|node| node.has_tag_name("title"));
-        assert_eq!(title.and_then(|node| node.text()), Some("a < b"));
+        assert_eq!(title.and_then(|node| node.text()), Some("a < b⟨U+0001⟩"));
         assert!(!text.contains("var("));
     }
 }

@@ -11,7 +11,7 @@ use crate::analysis::Entry;
 use crate::analysis::roots::{Locus, RootFacts, RootReport};
 use crate::circuit::Circuit;
 use crate::typeset::number::superscript;
-use crate::typeset::svg::{Axis, Picture, label, ticks};
+use crate::typeset::svg::{Anchor, Axis, Picture, label, ticks};
 
 const SIZE: [f64; 2] = [560.0, 560.0];
 const LEFT: f64 = 70.0;
@@ -22,7 +22,12 @@ const SIDE: f64 = 450.0;
 const LINEAR: f64 = 50.0;
 
 /// The picture of one result; with the paths of the poles where a locus is given.
-pub fn map(circuit: &Circuit, entry: &Entry, report: &RootReport, locus: Option<&Locus>) -> String {
+pub fn map(
+    circuit: &Circuit,
+    entry: &Entry,
+    report: &RootReport,
+    locus: Option<&Locus>,
+) -> Picture {
     let name = super::label(entry);
     let roots = || report.poles.iter().chain(&report.zeros).map(|facts| facts.root.value);
     let paths = || locus.into_iter().flat_map(|locus| locus.paths.iter().flatten().flatten());
@@ -50,12 +55,12 @@ pub fn map(circuit: &Circuit, entry: &Entry, report: &RootReport, locus: Option<
     );
     picture.rule(".arrow", "fill:#0b5394;stroke:none", "fill:#7fbcf5");
     picture.rule(".right", "fill:#c0392b;opacity:.07", "opacity:.16");
-    picture.text("", [LEFT + SIDE / 2.0, 20.0], "middle", &title);
+    picture.text("", [LEFT + SIDE / 2.0, 20.0], Anchor::Middle, &title);
     let key = match locus {
         Some(_) => "× poles, ○ zeros, • poles at ten times the value",
         None => "× poles, ○ zeros",
     };
-    picture.text("", [LEFT + SIDE, TOP - 8.0], "end", key);
+    picture.text("", [LEFT + SIDE, TOP - 8.0], Anchor::End, key);
     plane.ground(&mut picture);
     picture.begin_clip([LEFT, TOP], [SIDE, SIDE]);
     if let Some(locus) = locus {
@@ -74,12 +79,12 @@ pub fn map(circuit: &Circuit, entry: &Entry, report: &RootReport, locus: Option<
         picture.line("pole", [x - 5.5, y + 5.5], [x + 5.5, y - 5.5]);
         times(&mut picture, [x, y], facts.root.multiplicity);
     }
-    picture.finish()
+    picture
 }
 
 fn times(picture: &mut Picture, [x, y]: [f64; 2], multiplicity: u32) {
     if multiplicity > 1 {
-        picture.text("", [x + 9.0, y - 7.0], "start", &format!("({multiplicity})"));
+        picture.text("", [x + 9.0, y - 7.0], Anchor::Start, &format!("({multiplicity})"));
     }
 }
 
@@ -160,11 +165,11 @@ impl Plane {
                     let (across, up) = (x.place(tick), y.place(tick));
                     picture.line("grid", [across, TOP], [across, bottom]);
                     picture.line("grid", [LEFT, up], [right, up]);
-                    picture.text("", [across, bottom + 18.0], "middle", &label(tick, ""));
-                    picture.text("", [LEFT - 6.0, up + 4.0], "end", &label(tick, ""));
+                    picture.text("", [across, bottom + 18.0], Anchor::Middle, &label(tick, ""));
+                    picture.text("", [LEFT - 6.0, up + 4.0], Anchor::End, &label(tick, ""));
                 }
-                picture.text("", [right, bottom + 38.0], "end", "real part in 1/s");
-                picture.text("", [LEFT - 60.0, TOP - 10.0], "start", "imaginary part in 1/s");
+                picture.text("", [right, bottom + 38.0], Anchor::End, "real part in 1/s");
+                picture.text("", [LEFT - 60.0, TOP - 10.0], Anchor::Start, "imaginary part in 1/s");
             }
             Some(inner) => {
                 let decades = self.half.floor() as u32;
@@ -178,12 +183,12 @@ impl Plane {
                     let power = (libm::log10(inner).round() as i64) + i64::from(decade);
                     let across = x.place(f64::from(decade));
                     let size = format!("10{}", superscript(power));
-                    picture.text("", [across, bottom + 18.0], "middle", &size);
+                    picture.text("", [across, bottom + 18.0], Anchor::Middle, &size);
                     picture.line("axis", [across, bottom], [across, bottom + 4.0]);
                 }
                 let words =
                     "distance from the origin: size in 1/s, logarithmic; directions are true";
-                picture.text("", [right, bottom + 38.0], "end", words);
+                picture.text("", [right, bottom + 38.0], Anchor::End, words);
             }
         }
         picture.rectangle("frame", [LEFT, TOP], [SIDE, SIDE]);

@@ -3,9 +3,8 @@
 mod json;
 mod latex;
 mod map;
-mod table;
 mod text;
-mod words;
+pub(crate) mod words;
 
 pub use json::{ROOTS_SCHEMA, Roots, RootsResult, results};
 pub use latex::latex;

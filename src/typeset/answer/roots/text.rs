@@ -5,13 +5,13 @@ use std::fmt::Write;
 use num_rational::BigRational;
 use num_traits::One;
 
-use super::table::{Side, Table};
 use super::{Answer, Moved, Report, label, words};
 use crate::algebra::Fraction;
 use crate::analysis::roots::{
     Approximation, Chance, Conditions, Form, RootFacts, Sensitivity, Shift, Spread,
 };
 use crate::circuit::{SymbolId, Unit};
+use crate::typeset::answer::table::{Side, Table};
 use crate::typeset::answer::{TextStyle, lettering};
 use crate::typeset::number::{self, Medium};
 use crate::typeset::screen::Characters;

@@ -8,7 +8,7 @@ use crate::typeset::Formula;
 use crate::typeset::shape::{Lettering, signed};
 
 /// A fraction in lowest terms as a formula.
-pub(super) fn fraction(value: &Fraction, letters: Lettering<'_>) -> Formula {
+pub(crate) fn fraction(value: &Fraction, letters: Lettering<'_>) -> Formula {
     if value.is_zero() {
         return Formula::integer(0);
     }
@@ -35,7 +35,7 @@ pub(super) fn expression(approximation: &Approximation, letters: Lettering<'_>) 
 }
 
 /// The root of a single term whose powers are all even and whose number is a square.
-pub(super) fn exact_root(polynomial: &Polynomial) -> Option<Polynomial> {
+pub(crate) fn exact_root(polynomial: &Polynomial) -> Option<Polynomial> {
     let mut terms = polynomial.terms();
     let ((powers, coefficient), None) = (terms.next()?, terms.next()) else { return None };
     let number = square_root(&coefficient)?;
@@ -52,12 +52,12 @@ fn square_root(number: &BigInt) -> Option<BigInt> {
 }
 
 /// The two sides of `large ≫ small`.
-pub(super) fn sides(condition: &Condition, letters: Lettering<'_>) -> [Formula; 2] {
+pub(crate) fn sides(condition: &Condition, letters: Lettering<'_>) -> [Formula; 2] {
     [letters.polynomial(&condition.large), letters.polynomial(&condition.small)]
 }
 
 /// A polynomial that must be positive, as its positive terms above its negative ones.
-pub(super) fn inequality(polynomial: &Polynomial, letters: Lettering<'_>) -> [Formula; 2] {
+pub(crate) fn inequality(polynomial: &Polynomial, letters: Lettering<'_>) -> [Formula; 2] {
     let side = |positive: bool| {
         let terms = polynomial
             .terms()
@@ -72,7 +72,7 @@ pub(super) fn inequality(polynomial: &Polynomial, letters: Lettering<'_>) -> [Fo
 }
 
 /// Where the poles lie, in words.
-pub(super) fn verdict(verdict: Verdict, poles: usize) -> &'static str {
+pub(crate) fn verdict(verdict: Verdict, poles: usize) -> &'static str {
     match verdict {
         Verdict::Stable if poles == 0 => "stable: no poles",
         Verdict::Stable => "stable: every pole is in the left half plane",
@@ -93,7 +93,7 @@ pub(super) fn verdict_word(verdict: Verdict) -> &'static str {
 }
 
 /// Conditions in words, where no formula is needed.
-pub(super) fn plain_conditions(conditions: &Conditions) -> Option<&'static str> {
+pub(crate) fn plain_conditions(conditions: &Conditions) -> Option<&'static str> {
     match conditions {
         Conditions::Always => Some("whatever the values, as long as they are positive"),
         Conditions::Never => Some("no positive values change that"),
