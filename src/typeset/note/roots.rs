@@ -4,7 +4,7 @@ use super::document::{Blocks, Cell, Inline, Table, text};
 use super::words;
 use crate::algebra::{Fraction, Polynomial};
 use crate::analysis::Entry;
-use crate::analysis::roots::{Approximation, Conditions, Form, RootFacts, RootReport};
+use crate::analysis::roots::{Against, Approximation, Conditions, Form, RootFacts, RootReport};
 use crate::circuit::{Circuit, SymbolId};
 use crate::typeset::answer::lettering;
 use crate::typeset::answer::response::label;
@@ -150,8 +150,12 @@ fn facts(
     if let Some(gain) = &report.dc_gain {
         items.push(vec![text(format!("at dc: {}", words::quantity(gain.value, &unit, 5)))]);
     }
-    if let Some(edge) = &report.band_edge {
-        let against = if edge.from_dc { "dc" } else { "the value at high frequency" };
+    for edge in &report.band_edges {
+        let against = match edge.against {
+            Against::Dc => "dc",
+            Against::Infinity => "the value at high frequency",
+            Against::Peak => "the peak",
+        };
         let hz = words::quantity(edge.hz, "Hz", 5);
         items.push(vec![text(format!("−3 dB against {against} at {hz}"))]);
     }
@@ -188,8 +192,14 @@ fn heat(
         }
     }
     let gain = report.dc_gain.as_ref().and_then(|gain| gain.sensitivities.as_ref());
-    let edge = report.band_edge.as_ref().and_then(|edge| edge.sensitivities.as_ref());
-    for (words, list) in [("value at dc", gain), ("−3 dB edge", edge)] {
+    let edges = report.band_edges.iter().map(|edge| {
+        let words = match (report.band_edges.len(), edge.against) {
+            (1, _) => "−3 dB edge".to_owned(),
+            _ => format!("−3 dB edge at {}", words::quantity(edge.hz, "Hz", 3)),
+        };
+        (words, edge.sensitivities.as_ref())
+    });
+    for (words, list) in std::iter::once(("value at dc".to_owned(), gain)).chain(edges) {
         if let Some(list) = list {
             let each: Vec<(SymbolId, f64)> =
                 list.iter().map(|one| (one.symbol, one.value.re)).collect();
