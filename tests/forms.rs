@@ -66,11 +66,11 @@ fn sections_that_do_not_factor_are_given_by_numbers() {
     assert_eq!(
         sections,
         [
-            "constant: gain = 1/(1 + Ri/Ro) = 0.5",
+            "constant: gain = Ro/(Ri + Ro) = 0.5",
             "poles, order 5: no closed form, for it does not factor; at the nominal values",
+            "w0 = 2π · 159.2 mHz, Q = 1.618",
             "w0 = 2π · 159.2 mHz, Q = 0.618",
             "w = 2π · 159.2 mHz",
-            "w0 = 2π · 159.2 mHz, Q = 1.618",
         ]
     );
     // Without values there is nothing to say but that.

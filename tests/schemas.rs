@@ -115,6 +115,23 @@ fn targets_and_faults_are_as_their_schemas_say() {
 }
 
 #[test]
+fn verdicts_are_as_their_schema_says() {
+    let claims = [
+        ("examples/anti-alias.circuit", "H = 1/(1 + s C2 R1 + s^2 R1 R2 C1 C2)"),
+        ("examples/anti-alias.circuit", "H = 1/(1 + s C2)"),
+        ("examples/anti-alias.circuit", "H ~ 1 within 5 %"),
+        ("examples/hydrophone.circuit", "H = Ch/Cf"),
+        ("examples/preamplifier.circuit", "H.p1 ~ -1/(Rs*Q1.Cmu*(1 + Rc/Re))"),
+        ("examples/light-sensor.circuit", "Zt = -Rf"),
+    ];
+    let schema = schema("check");
+    for (file, claim) in claims {
+        let output = run(&["check", file, "--claim", claim, "--format", "json"]);
+        check(&schema, &output.stdout, claim);
+    }
+}
+
+#[test]
 fn a_schema_refuses_what_it_does_not_describe() {
     let errors = schema("error");
     let error = |line: Value| json!({"error": {"code": "syntax", "message": "m", "line": line, "column": 1, "help": null}});

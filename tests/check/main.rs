@@ -63,6 +63,13 @@ impl Bench {
         check::judge(&self.circuit, &claim, entry, unit).map_err(|error| error.to_string())
     }
 
+    /// All results of a question.
+    pub(crate) fn entries_of(&self, ask: &str) -> Vec<Entry> {
+        let of_ask = |name: &str| name.split('.').next() == Some(ask);
+        let found = self.entries.iter().filter(|(name, _)| of_ask(name));
+        found.map(|(_, entry)| entry.clone()).collect()
+    }
+
     pub(crate) fn entry(&self, name: &str) -> &Entry {
         &self.entries[name]
     }

@@ -42,7 +42,7 @@ pub struct Spread {
 const BATCH: usize = 256;
 
 /// Values that were drawn for the symbols with a tolerance.
-pub(crate) type Draw = Vec<(SymbolId, Number)>;
+type Draw = Vec<(SymbolId, Number)>;
 
 /// Draws so many circuits from that seed. `poles` and `zeros` are the nominal roots; `progress` is told
 /// now and then how many circuits are done.
@@ -74,6 +74,40 @@ pub fn monte_carlo(
         }
     }
     Chance { trials, seed, not_stable, poles: poles.spreads(), zeros: zeros.spreads() }
+}
+
+/// The symbols that have a tolerance.
+pub(crate) struct Toleranced<'a>(Vec<(SymbolId, &'a Number, [&'a Number; 2])>);
+
+impl<'a> Toleranced<'a> {
+    /// Those of a circuit.
+    pub(crate) fn new(circuit: &'a Circuit) -> Self {
+        let symbols = (0_u32..).map(SymbolId).zip(&circuit.symbols);
+        Self(
+            symbols
+                .filter_map(|(id, symbol)| {
+                    let nominal = symbol.nominal.as_ref()?;
+                    let tolerance = symbol.tolerance.as_ref()?;
+                    Some((id, nominal, [&tolerance.low, &tolerance.high]))
+                })
+                .collect(),
+        )
+    }
+
+    /// Whether no symbol has one.
+    pub(crate) fn is_empty(&self) -> bool {
+        self.0.is_empty()
+    }
+
+    /// A value for each, evenly between its limits.
+    pub(crate) fn draw(&self, random: &mut Random) -> Vec<(SymbolId, Number)> {
+        let values = self.0.iter().map(|&(id, nominal, [low, high])| {
+            // 2^-32 of the span is finer than any tolerance.
+            let part = Number::new((random.word() >> 32).into(), (1_u64 << 32).into());
+            (id, nominal + low + (high - low) * part)
+        });
+        values.collect()
+    }
 }
 
 /// One circuit that was drawn.
@@ -118,40 +152,6 @@ fn solved(values: &Nominal<'_>, draws: &[Draw]) -> Vec<Option<Solved>> {
     });
     all.sort_unstable_by_key(|(index, _)| *index);
     all.into_iter().map(|(_, solved)| solved).collect()
-}
-
-/// The symbols that have a tolerance.
-pub(crate) struct Toleranced<'a>(Vec<(SymbolId, &'a Number, [&'a Number; 2])>);
-
-impl<'a> Toleranced<'a> {
-    /// Those of a circuit.
-    pub(crate) fn new(circuit: &'a Circuit) -> Self {
-        let symbols = (0_u32..).map(SymbolId).zip(&circuit.symbols);
-        Self(
-            symbols
-                .filter_map(|(id, symbol)| {
-                    let nominal = symbol.nominal.as_ref()?;
-                    let tolerance = symbol.tolerance.as_ref()?;
-                    Some((id, nominal, [&tolerance.low, &tolerance.high]))
-                })
-                .collect(),
-        )
-    }
-
-    /// Whether no symbol has one.
-    pub(crate) fn is_empty(&self) -> bool {
-        self.0.is_empty()
-    }
-
-    /// A value for each, evenly between its limits.
-    pub(crate) fn draw(&self, random: &mut Random) -> Draw {
-        let values = self.0.iter().map(|&(id, nominal, [low, high])| {
-            // 2^-32 of the span is finer than any tolerance.
-            let part = Number::new((random.word() >> 32).into(), (1_u64 << 32).into());
-            (id, nominal + low + (high - low) * part)
-        });
-        values.collect()
-    }
 }
 
 /// The roots of all circuits, by the nominal root that they come from.

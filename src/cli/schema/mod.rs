@@ -9,9 +9,10 @@ use clap::builder::PossibleValuesParser;
 use super::{Failure, write_results};
 
 /// Names and texts.
-const SCHEMAS: [(&str, &str); 4] = [
+const SCHEMAS: [(&str, &str); 5] = [
     ("derive", include_str!("derive.json")),
     ("roots", include_str!("roots.json")),
+    ("check", include_str!("check.json")),
     ("inspect", include_str!("inspect.json")),
     ("error", include_str!("error.json")),
 ];

@@ -4,7 +4,7 @@ use super::document::{Blocks, Cell, Inline, Table, text};
 use super::words;
 use crate::algebra::{Fraction, Polynomial};
 use crate::analysis::Entry;
-use crate::analysis::roots::{Approximation, Conditions, Form, RootFacts, RootReport};
+use crate::analysis::roots::{Against, Approximation, Conditions, Form, RootFacts, RootReport};
 use crate::circuit::{Circuit, SymbolId};
 use crate::typeset::answer::lettering;
 use crate::typeset::answer::response::label;
@@ -151,7 +151,11 @@ fn facts(
         items.push(vec![text(format!("at dc: {}", words::quantity(gain.value, &unit, 5)))]);
     }
     for edge in &report.band_edges {
-        let against = phrases::against(edge.against);
+        let against = match edge.against {
+            Against::Dc => "dc",
+            Against::Infinity => "the value at high frequency",
+            Against::Peak => "the peak",
+        };
         let hz = words::quantity(edge.hz, "Hz", 5);
         items.push(vec![text(format!("−3 dB against {against} at {hz}"))]);
     }
@@ -188,14 +192,19 @@ fn heat(
         }
     }
     let gain = report.dc_gain.as_ref().and_then(|gain| gain.sensitivities.as_ref());
-    let gain = gain.map(|list| ("value at dc".to_owned(), list));
-    let edges = report.band_edges.iter().enumerate().filter_map(|(index, edge)| {
-        let name = format!("{}−3 dB edge", phrases::which_edge(report, index));
-        Some((name, edge.sensitivities.as_ref()?))
+    let edges = report.band_edges.iter().map(|edge| {
+        let words = match (report.band_edges.len(), edge.against) {
+            (1, _) => "−3 dB edge".to_owned(),
+            _ => format!("−3 dB edge at {}", words::quantity(edge.hz, "Hz", 3)),
+        };
+        (words, edge.sensitivities.as_ref())
     });
-    for (words, list) in gain.into_iter().chain(edges) {
-        let each = list.iter().map(|one| (one.symbol, one.value.re)).collect();
-        rows.push(Row { name: vec![text(words)], each });
+    for (words, list) in std::iter::once(("value at dc".to_owned(), gain)).chain(edges) {
+        if let Some(list) = list {
+            let each: Vec<(SymbolId, f64)> =
+                list.iter().map(|one| (one.symbol, one.value.re)).collect();
+            rows.push(Row { name: vec![text(words)], each });
+        }
     }
     let (columns, left_out) = columns(&rows);
     if columns.is_empty() {

@@ -134,7 +134,7 @@ mod tests {
         assert_eq!(words(&decibels([-83.0, 0.5])), ["−100", "−80", "−60", "−40", "−20", "0", "20"]);
         assert_eq!(
             words(&degrees([-179.0, -1.0])),
-            ["−180", "−135", "−90", "−45", "0", "45"][..5].to_vec()
+            ["−225", "−180", "−135", "−90", "−45", "0", "45"]
         );
         assert_eq!(
             words(&logarithmic([1.0, 4.0], "Hz", 8)),
@@ -142,7 +142,7 @@ mod tests {
         );
         assert_eq!(
             words(&logarithmic([4.7, 6.0], "Hz", 8)),
-            ["100 kHz", "200 kHz", "500 kHz", "1 MHz"][..].to_vec()
+            ["100 kHz", "200 kHz", "500 kHz", "1 MHz"]
         );
         assert_eq!(words(&linear([0.0, 1.0], "V", 5)), ["0 V", "500 mV", "1 V"]);
         assert!(words(&magnitudes([3.0, 3.0], "Ω")).len() >= 2);

@@ -10,7 +10,7 @@ use crate::typeset::Formula;
 use crate::typeset::shape::{Lettering, signed};
 
 /// What a band edge is measured against.
-pub(crate) fn against(against: Against) -> &'static str {
+pub(super) fn against(against: Against) -> &'static str {
     match against {
         Against::Dc => "dc",
         Against::Infinity => "high frequencies",
@@ -19,7 +19,7 @@ pub(crate) fn against(against: Against) -> &'static str {
 }
 
 /// Which of two band edges this is; nothing for the only one.
-pub(crate) fn which_edge(report: &RootReport, index: usize) -> &'static str {
+pub(super) fn which_edge(report: &RootReport, index: usize) -> &'static str {
     match (report.band_edges.len(), index) {
         (1, _) => "",
         (_, 0) => "lower ",
