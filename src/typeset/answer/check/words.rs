@@ -5,7 +5,7 @@ use crate::analysis::check::{Change, Step};
 use crate::analysis::limit_text;
 use crate::circuit::{Circuit, Claim, SymbolId, Value};
 use crate::elimination::variable_of;
-use crate::typeset::shape::{Lettering, compact};
+use crate::typeset::shape::{Lettering, compact, signed};
 use crate::typeset::{Dialect, Formula, SymbolTable, plain};
 
 /// A condition as it is written: `A0 to infinity`, `R3 = R1`, `R4/R3 = R2/R1`.
@@ -51,9 +51,19 @@ pub(super) fn formula(value: &Value, letters: Lettering<'_>) -> Formula {
     }
 }
 
-/// A fraction as one would write it by hand.
+/// Terms up to which the shortest form is looked for: beyond, that takes longer than the verdict.
+const LONGEST: usize = 30;
+
+/// A fraction as one would write it by hand; a long one as a plain quotient.
 pub(super) fn fraction(value: &Fraction, letters: Lettering<'_>) -> Formula {
-    if value.is_zero() { Formula::integer(0) } else { compact(value, letters) }
+    if value.is_zero() {
+        return Formula::integer(0);
+    }
+    if value.numerator().len() + value.denominator().len() <= LONGEST {
+        return compact(value, letters);
+    }
+    let (above, below) = signed(value);
+    Formula::quotient(letters.polynomial(&above), letters.polynomial(&below))
 }
 
 /// A repair in a sentence; `text` writes formulas.
