@@ -266,5 +266,5 @@ fn settled(
         return Some(plain);
     }
     let anew = measured(target, context.compact(&fraction), next.merged.clone());
-    Some(if anew.size() < plain.size() { anew } else { plain })
+    Some(if anew.size() <= plain.size() { anew } else { plain })
 }
