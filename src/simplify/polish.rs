@@ -50,6 +50,10 @@ pub(crate) struct Written {
 }
 
 impl Written {
+    fn new(formula: Formula, used: f64, merged: Vec<(u32, u32)>) -> Self {
+        Self { length: formula.symbols(), parts: parts(&formula), used, formula, merged }
+    }
+
     /// What counts: the symbols, and among formulas with as many of them the operands of sums.
     pub(crate) fn size(&self) -> (u64, u64) {
         (self.length, self.parts)
@@ -146,7 +150,7 @@ pub(crate) fn written(target: &Target, context: Context<'_>, fraction: &Fraction
 
 pub(crate) fn measured(target: &Target, formula: Formula, merged: Vec<(u32, u32)>) -> Written {
     let used = target.used(&Program::new(&formula));
-    Written { length: formula.symbols(), parts: parts(&formula), used, formula, merged }
+    Written::new(formula, used, merged)
 }
 
 /// How a formula is shortened.
@@ -210,7 +214,10 @@ fn next(
         }
     };
     for formula in prunings(&now.formula) {
-        offer(measured(coarse, formula, now.merged.clone()));
+        let used = coarse.used_within(&Program::new(&formula), manner.share);
+        if used <= manner.share {
+            offer(Written::new(formula, used, now.merged.clone()));
+        }
     }
     if manner.rewrite && now.length <= REWRITTEN {
         for candidate in merges(coarse, context, now, manner.share) {
@@ -259,5 +266,5 @@ fn settled(
         return Some(plain);
     }
     let anew = measured(target, context.compact(&fraction), next.merged.clone());
-    Some(if anew.size() < plain.size() { anew } else { plain })
+    Some(if anew.size() <= plain.size() { anew } else { plain })
 }

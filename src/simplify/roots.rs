@@ -263,6 +263,13 @@ fn figure(
             None => break,
         }
     }
+    // What is left may have something in common above and below.
+    if let Some(rest) = fraction(&formula, context.letters) {
+        let anew = context.compact(&rest);
+        if anew.symbols() < formula.symbols() {
+            formula = anew;
+        }
+    }
     let value = value(&formula);
     // A root or a gain beyond the band can be far from the truth while the function in it is not.
     let holds = value.is_finite() && (value / wanted - 1.0).abs() <= BELIEVED;

@@ -44,6 +44,10 @@ const SMALL: usize = 400;
 /// Terms of a fraction up to which it is written without picking terms before.
 const WRITABLE: usize = 500;
 
+/// A formula that begins this many times as long as the best one does not overtake it.
+const HOPELESS: u64 = 6;
+/// Terms of a fraction up to which picking is left to the shortening.
+const FEW: usize = 20;
 /// The same once there is a formula of at most so many symbols.
 const WORTH: usize = 250;
 const SHORT: u64 = 40;
@@ -128,11 +132,16 @@ impl Search<'_> {
     /// Writes what is left of the function in two ways: with the terms that matter, and with all.
     fn follow(&mut self, reduced: &Reduced, watch: &mut dyn Watch) {
         let share = f64::midpoint(reduced.used.max(0.6), 1.0);
-        let picked = terms::fraction(self.target, &reduced.elimination, share, true, watch);
+        let whole = terms::fraction(self.target, &reduced.elimination, share, false, watch);
+        let few = whole.as_ref().is_some_and(|fraction| terms(fraction) <= FEW);
+        let picked = if few {
+            None
+        } else {
+            terms::fraction(self.target, &reduced.elimination, share, true, watch)
+        };
         if let Some(fraction) = picked {
             self.take(&fraction, reduced, watch);
         }
-        let whole = terms::fraction(self.target, &reduced.elimination, share, false, watch);
         let worth = |fraction: &Fraction| {
             let short = self.best.as_ref().is_some_and(|best| best.written.length <= SHORT);
             terms(fraction) <= if short { WORTH } else { WRITABLE }
@@ -149,7 +158,9 @@ impl Search<'_> {
         }
         self.started.push(fraction.clone());
         let start = written(self.target, self.context, fraction);
-        if start.used > 1.0 {
+        let hopeless =
+            self.best.as_ref().is_some_and(|best| start.length > HOPELESS * best.written.length);
+        if start.used > 1.0 || hopeless {
             return;
         }
         if self.context.allows(fraction) {

@@ -148,6 +148,22 @@ impl Target {
         self.goal.used(self.worst(candidate).deviation())
     }
 
+    /// The share of the goal that a formula uses up; infinite as soon as that is more than `most`.
+    pub(crate) fn used_within(&self, program: &Program, most: f64) -> f64 {
+        let mut used = 0.0_f64;
+        for (sample, exact) in self.samples.iter().zip(&self.exact) {
+            let zero = ZERO * largest(exact);
+            for (&s, &exact) in self.points.iter().zip(exact) {
+                let deviation = apart(program.value(sample, s), exact, zero);
+                used = used.max(self.goal.used(deviation));
+                if used > most {
+                    return f64::INFINITY;
+                }
+            }
+        }
+        used
+    }
+
     /// The largest deviations of a candidate.
     pub(crate) fn worst(&self, candidate: &dyn Candidate) -> Worst {
         let mut worst = Worst::default();
