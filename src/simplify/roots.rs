@@ -224,7 +224,7 @@ fn of_side(
 
 /// The size of the root that is nearest to this size by its logarithm.
 fn nearest(roots: &[C], size: f64) -> Option<f64> {
-    let apart = |root: &C| (root.norm() / size).ln().abs();
+    let apart = |root: &C| libm::log(root.norm() / size).abs();
     roots.iter().min_by(|a, b| apart(a).total_cmp(&apart(b))).map(|root| root.norm())
 }
 

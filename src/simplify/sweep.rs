@@ -40,7 +40,7 @@ impl Grid {
             .map(|k| match k {
                 0 => low,
                 k if k == last => high,
-                k => low * (high / low).powf(k as f64 / last as f64),
+                k => low * libm::pow(high / low, k as f64 / last as f64),
             })
             .collect();
         hertz.extend(self.marked.iter().copied().filter(|hz| (low..=high).contains(hz)));
@@ -167,8 +167,8 @@ fn golden(pair: &Pair<'_>, low: f64, high: f64, of: &dyn Fn(&Point) -> f64) -> V
     if high <= low {
         return Vec::new();
     }
-    let at = |log: f64| pair.at(log.exp());
-    let (mut a, mut b) = (low.ln(), high.ln());
+    let at = |log: f64| pair.at(libm::exp(log));
+    let (mut a, mut b) = (libm::log(low), libm::log(high));
     let (mut c, mut d) = (b - RATIO * (b - a), a + RATIO * (b - a));
     let (mut at_c, mut at_d) = (at(c), at(d));
     for _ in 0..SECTIONS {

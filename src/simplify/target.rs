@@ -30,7 +30,7 @@ impl Deviation {
         if !size.is_finite() || size == 0.0 {
             return Self { db: f64::INFINITY, deg: 180.0 };
         }
-        Self { db: (20.0 * size.log10()).abs(), deg: ratio.arg().to_degrees().abs() }
+        Self { db: (20.0 * libm::log10(size)).abs(), deg: ratio.arg().to_degrees().abs() }
     }
 }
 

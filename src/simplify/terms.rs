@@ -49,7 +49,7 @@ pub(crate) fn fraction(
                 for rank in 0..MOST_TERMS {
                     let Some(term) = largest.term(side, power, rank) else { break };
                     let first = *first.get_or_insert(term.log2);
-                    if term.log2 < first + smallest.log2() {
+                    if term.log2 < first + libm::log2(smallest) {
                         break;
                     }
                     taken.push((term.powers, term.coefficient));
@@ -107,16 +107,16 @@ impl Terms {
             .iter()
             .map(|(_, powers, coefficient)| {
                 let number = coefficient.to_f64().unwrap_or(f64::INFINITY);
-                let (mut log, mut sign, mut s_power) = (number.abs().log2(), number.signum(), 0);
+                let (mut log, mut sign, mut s_power) = (libm::log2(number.abs()), number.signum(), 0);
                 for &(variable, power) in powers {
                     match symbol_of(variable) {
                         Some(symbol) => {
                             let value = symbols[symbol.0 as usize];
-                            log += f64::from(power) * value.abs().log2();
+                            log += f64::from(power) * libm::log2(value.abs());
                             sign *= value.signum().powi(power as i32);
                         }
                         None => {
-                            log += f64::from(power) * self.unit.log2();
+                            log += f64::from(power) * libm::log2(self.unit);
                             s_power = power as i32;
                         }
                     }

@@ -96,7 +96,7 @@ fn bound(value: f64) -> f64 {
     if value <= 0.0 || !value.is_finite() {
         return value;
     }
-    let unit = 10_f64.powf(value.log10().floor() - 2.0);
+    let unit = libm::pow(10.0, libm::log10(value).floor() - 2.0);
     (value / unit).ceil() * unit
 }
 
