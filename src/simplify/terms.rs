@@ -73,10 +73,12 @@ pub(crate) fn fraction(
     None
 }
 
+/// Side of the fraction, powers, coefficient.
+type Term = (usize, Vec<(Var, u32)>, BigInt);
+
 /// The terms of a fraction and their values.
 struct Terms {
-    /// Side, powers, coefficient.
-    terms: Vec<(usize, Vec<(Var, u32)>, BigInt)>,
+    terms: Vec<Term>,
     kept: Vec<bool>,
     unit: f64,
 }
@@ -107,7 +109,8 @@ impl Terms {
             .iter()
             .map(|(_, powers, coefficient)| {
                 let number = coefficient.to_f64().unwrap_or(f64::INFINITY);
-                let (mut log, mut sign, mut s_power) = (libm::log2(number.abs()), number.signum(), 0);
+                let (mut log, mut sign, mut s_power) =
+                    (libm::log2(number.abs()), number.signum(), 0);
                 for &(variable, power) in powers {
                     match symbol_of(variable) {
                         Some(symbol) => {
