@@ -51,7 +51,7 @@ fn main() {
     for sections in (5..=40).step_by(5) {
         let (time, bound) = least(&ladder(sections));
         let (n, seconds) = (sections as f64, time.as_secs_f64());
-        let growth = before.map(|(m, earlier)| (seconds / earlier).ln() / (n / m).ln());
+        let growth = before.map(|(m, earlier)| libm::log(seconds / earlier) / libm::log(n / m));
         let growth = growth.map_or(String::new(), |x| format!("{x:.1}"));
         println!("| {sections} | {:.2} ms | {bound:.0e} | {growth} |", 1e3 * seconds);
         before = Some((n, seconds));

@@ -87,7 +87,7 @@ impl Case {
             .collect();
         let (low, high) = self.band;
         let hertz: Vec<f64> = (0..points)
-            .map(|k| low * (high / low).powf((k as f64 + 0.37) / points as f64))
+            .map(|k| low * libm::pow(high / low, (k as f64 + 0.37) / points as f64))
             .collect();
         let transfer: &Transfer = &self.circuit.asks[0].transfers()[0];
         let witness = numeric::response(&self.circuit, transfer, &hertz, &values).expect("a solve");
@@ -106,7 +106,7 @@ impl Case {
                 }
             });
             let ratio = value / exact;
-            db = db.max((20.0 * ratio.norm().log10()).abs());
+            db = db.max((20.0 * libm::log10(ratio.norm())).abs());
             deg = deg.max(ratio.arg().to_degrees().abs());
         }
         (db, deg)
@@ -382,7 +382,7 @@ impl Generator {
     /// Evenly by the logarithm between two powers of ten; with a tolerance now and then.
     fn value(&mut self, low: f64, high: f64, unit: &str) -> String {
         let part = self.below(10_000) as f64 / 10_000.0;
-        let value = 10_f64.powf(low + (high - low) * part);
+        let value = libm::pow(10.0, low + (high - low) * part);
         let tolerance = ["", "", "", " +/- 1 %", " +/- 5 %", " +/- 20 %"][self.below(6) as usize];
         format!("{value:.3e} {unit}{tolerance}")
     }
