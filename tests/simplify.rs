@@ -16,7 +16,7 @@ use cofactor::algebra::modular::Random;
 use cofactor::analysis::{self, Entry, Options};
 use cofactor::circuit::{Circuit, SymbolRole, Transfer};
 use cofactor::simplify::answer::{Answer, SimplifyResult, result};
-use cofactor::simplify::{Goal, Simplified, SimplifyError, Unwatched, simplify};
+use cofactor::simplify::{Goal, Simplified, SimplifyError, Unwatched, Watch, simplify};
 use cofactor::typeset::{Letter, Style, SymbolTable};
 use cofactor::{language, numeric};
 use num_complex::Complex;

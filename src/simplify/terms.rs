@@ -109,7 +109,8 @@ impl Terms {
             .iter()
             .map(|(_, powers, coefficient)| {
                 let number = coefficient.to_f64().unwrap_or(f64::INFINITY);
-                let (mut log, mut sign, mut s_power) = (libm::log2(number.abs()), number.signum(), 0);
+                let (mut log, mut sign, mut s_power) =
+                    (libm::log2(number.abs()), number.signum(), 0);
                 for &(variable, power) in powers {
                     match symbol_of(variable) {
                         Some(symbol) => {
