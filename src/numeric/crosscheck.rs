@@ -80,7 +80,7 @@ pub struct FloatingEvidence {
     pub worst_hz: f64,
     /// The difference that was allowed there, relative likewise.
     pub bound: f64,
-    /// Largest condition number of the equations, at every fifth frequency.
+    /// Largest condition number of the equations, at every tenth frequency.
     pub largest_condition: f64,
     /// Whether every difference was allowed. With 0 points nothing was compared and nothing is
     /// said: double precision does not resolve the circuit, and the exact witnesses decide.

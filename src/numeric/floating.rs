@@ -29,7 +29,7 @@ type C = Complex<f64>;
 /// which sums the same products in another order.
 const ROUNDINGS: f64 = 256.0;
 /// An estimate of the condition costs as much as three solves, and changes slowly.
-const CONDITION_STEP: usize = 5;
+const CONDITION_STEP: usize = 10;
 /// From this many elements on, impedances stand as 1/Z: half as many unknowns. What that loses where
 /// numbers of very different size add up is in the bound.
 const LONG: usize = 200;
@@ -56,7 +56,7 @@ pub struct PointAnswer {
 pub struct Sweep<'a> {
     network: Network<'a>,
     symbols: Vec<C>,
-    pattern: Pattern,
+    pattern: Pattern<'a>,
     plan: Option<Plan>,
     numbers: Numbers,
     scaled: Scaled,
@@ -65,7 +65,7 @@ pub struct Sweep<'a> {
 
 /// A solved point, before its quality is examined.
 struct Solved<'s> {
-    pattern: &'s Pattern,
+    pattern: &'s Pattern<'s>,
     numbers: &'s Numbers,
     scaled: &'s Scaled,
     plan: &'s Plan,
@@ -93,8 +93,8 @@ impl<'a> Sweep<'a> {
             false => Form::Extended,
         };
         Ok(Self {
+            pattern: Pattern::new(&network, form, &symbols),
             symbols,
-            pattern: Pattern::new(&network, form),
             network,
             plan: None,
             numbers: Numbers::default(),
@@ -114,7 +114,7 @@ impl<'a> Sweep<'a> {
     }
 
     /// The largest condition number of the equations (estimated in the 1-norm, each time scaled for
-    /// the frequency) at every fifth of these frequencies, the first among them; at least 1.
+    /// the frequency) at every tenth of these frequencies, the first among them; at least 1.
     pub fn largest_condition(&mut self, frequencies: &[C]) -> f64 {
         let some = frequencies.iter().step_by(CONDITION_STEP);
         some.filter_map(|s| self.condition(*s).ok()).fold(1.0, f64::max)
@@ -265,7 +265,7 @@ impl Scaled {
         self.factors.clear();
     }
 
-    fn apply(&mut self, pattern: &Pattern, entries: &[C]) {
+    fn apply(&mut self, pattern: &Pattern<'_>, entries: &[C]) {
         if self.factors.is_empty() {
             self.choose(pattern, entries);
         }
@@ -274,7 +274,7 @@ impl Scaled {
             .extend(entries.iter().zip(&self.factors).map(|(entry, factor)| entry * factor));
     }
 
-    fn choose(&mut self, pattern: &Pattern, entries: &[C]) {
+    fn choose(&mut self, pattern: &Pattern<'_>, entries: &[C]) {
         let count = pattern.len();
         let mut sizes: Vec<f64> = entries.iter().map(|entry| size(*entry)).collect();
         for scale in [&mut self.row_scale, &mut self.column_scale] {
@@ -313,7 +313,7 @@ impl Scaled {
     }
 
     /// The 1-norm.
-    fn norm(&self, pattern: &Pattern) -> f64 {
+    fn norm(&self, pattern: &Pattern<'_>) -> f64 {
         let mut sums = vec![0.0; pattern.len()];
         for (column, value) in pattern.columns.iter().zip(&self.entries) {
             sums[*column] += value.norm();

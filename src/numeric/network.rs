@@ -121,6 +121,12 @@ impl<'a> Network<'a> {
         matches!(self.transfer.numerator, Probe::Voltage(..))
     }
 
+    /// What is wrong where an element's value divides by zero.
+    pub(crate) fn divides_by_zero(&self, element: usize) -> NumericError {
+        let element = self.circuit.elements[element].name.clone();
+        NumericError::DivisionByZero { element }
+    }
+
     /// The laws of the elements, in order; none for one that is taken out.
     pub(crate) fn laws(&self) -> impl Iterator<Item = Option<&'a Law>> {
         let elements = self.circuit.elements.iter().zip(&self.removed);

@@ -6,11 +6,11 @@
 use num_complex::Complex;
 use smallvec::{SmallVec, smallvec};
 
-use crate::circuit::Law;
+use crate::circuit::{Law, Value};
 use crate::numeric::field::size;
 use crate::numeric::network::{Form, Network, Stamp};
 use crate::numeric::sparse::Row;
-use crate::numeric::{Additive, Complexes, Field, NumericError};
+use crate::numeric::{Additive, Complexes, Field, NumericError, evaluate};
 
 type C = Complex<f64>;
 
@@ -43,16 +43,57 @@ impl Additive for Formal {
     }
 }
 
+/// A value of the list, as far as it is known before the frequency.
+#[derive(Debug)]
+enum Source<'a> {
+    Constant(C),
+    /// This times s.
+    TimesS(C),
+    /// Of this element.
+    General(&'a Value, usize),
+}
+
+impl<'a> Source<'a> {
+    fn new(value: &'a Value, element: usize, symbols: &[C]) -> Self {
+        let (mut factors, mut powers) = (vec![value], 0);
+        if let Value::Product(parts) = value {
+            factors = parts.iter().filter(|part| !matches!(part, Value::S)).collect();
+            powers = parts.len() - factors.len();
+        }
+        let mut product = C::ONE;
+        for factor in factors {
+            match evaluate(&Complexes, factor, symbols, &C::ZERO) {
+                Some(number) if !factor.holds_s() => product *= number,
+                _ => return Self::General(value, element),
+            }
+        }
+        match powers {
+            0 => Self::Constant(product),
+            1 => Self::TimesS(product),
+            _ => Self::General(value, element),
+        }
+    }
+
+    fn at(&self, network: &Network<'_>, symbols: &[C], s: C) -> Result<C, NumericError> {
+        match self {
+            Self::Constant(value) => Ok(*value),
+            Self::TimesS(factor) => Ok(factor * s),
+            Self::General(value, element) => evaluate(&Complexes, value, symbols, &s)
+                .ok_or_else(|| network.divides_by_zero(*element)),
+        }
+    }
+}
+
 /// Where the entries are, and which values add up to each.
 #[derive(Debug)]
-pub(super) struct Pattern {
+pub(super) struct Pattern<'a> {
     /// Where the entries of each row begin, and where the last row ends.
     pub(super) starts: Vec<usize>,
     /// Column of each entry, ascending in a row.
     pub(super) columns: Vec<usize>,
     entries: Vec<Places>,
-    /// For each element whether its impedance stands as 1/Z.
-    inverted: Vec<bool>,
+    /// The values in the order of their places, and which stand as reciprocals.
+    sources: Vec<(Source<'a>, bool)>,
     right: Vec<Places>,
     /// Numerator and denominator: entries of a row, and a constant.
     probes: [(Vec<(usize, Places)>, Places); 2],
@@ -71,29 +112,33 @@ pub(super) struct Numbers {
     pub(super) right: Vec<C>,
 }
 
-impl Pattern {
+impl<'a> Pattern<'a> {
     /// Of the equations in which impedances have a current of their own, or stand as 1/Z where that
     /// is not needed.
-    pub(super) fn new(network: &Network<'_>, form: Form) -> Self {
+    pub(super) fn new(network: &Network<'a>, form: Form, symbols: &[C]) -> Self {
         let branches = network.branches(|_| form == Form::Extended);
-        let mut next = ONE;
-        let mut place = || -> Places {
-            next += 1;
-            smallvec![(next, false)]
+        let mut sources = Vec::new();
+        let mut place = |value: &'a Value, element: usize, inverted: bool| -> Places {
+            sources.push((Source::new(value, element, symbols), inverted));
+            smallvec![(ONE + sources.len(), false)]
         };
         let stamps: Vec<Stamp<Places>> = network
             .laws()
             .zip(&branches.0)
-            .map(|(law, branch)| match law {
-                Some(Law::Impedance(_)) if branch.is_some() => Stamp::Impedance(place()),
-                Some(Law::Impedance(_) | Law::Admittance(_)) => Stamp::Admittance(place()),
+            .enumerate()
+            .map(|(index, (law, branch))| match law {
+                Some(Law::Impedance(z)) if branch.is_some() => {
+                    Stamp::Impedance(place(z, index, false))
+                }
+                Some(Law::Impedance(z)) => Stamp::Admittance(place(z, index, true)),
+                Some(Law::Admittance(y)) => Stamp::Admittance(place(y, index, false)),
                 Some(Law::ControlledVoltage(controls) | Law::ControlledCurrent(controls)) => {
-                    Stamp::Controls(controls.iter().map(|_| place()).collect())
+                    let gains = controls.iter().map(|control| place(&control.gain, index, false));
+                    Stamp::Controls(gains.collect())
                 }
                 _ => Stamp::None,
             })
             .collect();
-        let inverted = branches.0.iter().map(Option::is_none).collect();
         let system = network.write(&Formal, &stamps, branches);
         let (mut starts, mut columns, mut entries) = (vec![0], Vec::new(), Vec::<Places>::new());
         for mut row in system.rows {
@@ -111,7 +156,7 @@ impl Pattern {
         }
         let probes = system.probes.map(|probe| (probe.row, probe.constant));
         let (right, voltages) = (system.right, system.voltages);
-        Self { starts, columns, entries, inverted, right, probes, voltages }
+        Self { starts, columns, entries, sources, right, probes, voltages }
     }
 
     /// Number of equations.
@@ -141,16 +186,12 @@ impl Pattern {
         let values = &mut numbers.values;
         values.clear();
         values.push(C::ONE);
-        for (stamp, inverted) in network.stamps(&Complexes, symbols, &s)?.iter().zip(&self.inverted)
-        {
-            match stamp {
-                Stamp::Impedance(value) if *inverted => {
-                    values.push(Complexes.inverse(value).ok_or(NumericError::Singular)?);
-                }
-                Stamp::Impedance(value) | Stamp::Admittance(value) => values.push(*value),
-                Stamp::Controls(gains) => values.extend(gains),
-                Stamp::None => {}
-            }
+        for (source, inverted) in &self.sources {
+            let value = source.at(network, symbols, s)?;
+            values.push(match inverted {
+                true => Complexes.inverse(&value).ok_or(NumericError::Singular)?,
+                false => value,
+            });
         }
         numbers.entries.clear();
         numbers.entries.extend(self.entries.iter().map(|places| sum(values, places)));

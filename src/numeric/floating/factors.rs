@@ -62,7 +62,7 @@ pub(super) struct Plan {
 
 impl Plan {
     /// Chooses the pivots on these numbers; none when the matrix is exactly singular.
-    pub(super) fn new(pattern: &Pattern, entries: &[C]) -> Option<Self> {
+    pub(super) fn new(pattern: &Pattern<'_>, entries: &[C]) -> Option<Self> {
         let count = pattern.len();
         let mut work = pattern.rows(entries);
         let pivots = eliminate(&Complexes, &mut work, count);
@@ -118,16 +118,27 @@ pub(super) struct Factors {
 
 impl Factors {
     /// Factors in the order of the plan; false when a pivot is too small for it.
-    pub(super) fn compute(&mut self, plan: &Plan, pattern: &Pattern, entries: &[C]) -> bool {
+    pub(super) fn compute(&mut self, plan: &Plan, pattern: &Pattern<'_>, entries: &[C]) -> bool {
         self.factorise(plan, pattern, entries, REUSE_THRESHOLD)
     }
 
     /// The same with a plan made for these numbers: only a pivot of 0 stops it.
-    pub(super) fn compute_anyway(&mut self, plan: &Plan, pattern: &Pattern, entries: &[C]) -> bool {
+    pub(super) fn compute_anyway(
+        &mut self,
+        plan: &Plan,
+        pattern: &Pattern<'_>,
+        entries: &[C],
+    ) -> bool {
         self.factorise(plan, pattern, entries, 0.0)
     }
 
-    fn factorise(&mut self, plan: &Plan, pattern: &Pattern, entries: &[C], threshold: f64) -> bool {
+    fn factorise(
+        &mut self,
+        plan: &Plan,
+        pattern: &Pattern<'_>,
+        entries: &[C],
+        threshold: f64,
+    ) -> bool {
         let count = pattern.len();
         let Self { lower, upper, inverse, work } = self;
         lower.clear();
