@@ -308,7 +308,7 @@ fn what_is_stopped_is_marked_and_still_true() {
 }
 
 #[test]
-fn tight_goals_are_kept_and_the_chain_goes_on_beyond_them() {
+fn tight_goals_are_kept_and_the_chain_leads_to_the_exact_function() {
     let case = Case::new(file("common-emitter-high.circuit"));
     let mut last = u64::MAX;
     for goal in [goal(0.02, 0.2), goal(0.2, 2.0), goal(1.0, 10.0)] {
@@ -322,7 +322,9 @@ fn tight_goals_are_kept_and_the_chain_goes_on_beyond_them() {
     let steps = found.expect("a formula").steps;
     assert!(steps.len() >= 3, "{steps:?}");
     assert!(steps.windows(2).all(|two| two[0].length < two[1].length), "{steps:?}");
-    assert!(!steps[0].within && steps.iter().any(|step| step.within), "{steps:?}");
+    let db: Vec<f64> = steps.iter().map(|step| step.worst.db).collect();
+    assert!(db.windows(2).all(|two| two[1] < two[0]), "{db:?}");
+    assert!(steps.iter().any(|step| step.within) && db[db.len() - 1] < 1e-9, "{db:?}");
 }
 
 #[test]
