@@ -1,9 +1,9 @@
 //! Shorter formulas with a stated error.
 //!
 //! [`simplify()`] looks for the shortest formula that stays within a [`Goal`] over the band and the
-//! tolerances. Before the expansion whole elements are left out ([`dropping`]), during it the terms that
-//! matter are picked ([`terms`]), after it the formula is shortened as it is written ([`polish`]). The error
-//! is measured on the result against the exact function ([`sweep`]); a formula that fails is never
+//! tolerances. Before the expansion whole elements are left out (`dropping`), during it the terms that
+//! matter are picked (`terms`), after it the formula is shortened as it is written (`polish`). The error
+//! is measured on the result against the exact function (`sweep`); a formula that fails is never
 //! given.
 //!
 //! The length of what is printed decides, so this stands behind the shapes.

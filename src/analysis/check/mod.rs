@@ -2,9 +2,9 @@
 //!
 //! Equality is equality of fractions in lowest terms, so it is proved; values modulo a prime serve only
 //! to discard candidates before the exact algebra confirms one. [`judge`] tries in turn: equality, limits
-//! over the symbols that the claim leaves out ([`limits`]), and where the claim is wrong what is different
-//! ([`compare`]), which single change mends it ([`repair`]), and how far it is off ([`deviation`]).
-//! A claim with `~` is judged by numbers ([`about`]).
+//! over the symbols that the claim leaves out (`limits`), and where the claim is wrong what is different
+//! (`compare`), which single change mends it (`repair`), and how far it is off (`deviation`).
+//! A claim with `~` is judged by numbers (`about`).
 //!
 //! May use: the rest of [`crate::analysis`], [`crate::circuit`], [`crate::algebra`],
 //! [`crate::elimination`]. Prints nothing.
