@@ -231,6 +231,32 @@ fn hostile_text_is_text_in_pictures() {
 }
 
 #[test]
+fn claims_stand_in_the_note_with_their_verdicts() {
+    let folder = tempfile::tempdir().expect("a folder");
+    let file = folder.path().join("claims.circuit");
+    // A formula cannot hold `<script>`, the title of the same note can.
+    let circuit = "circuit \"<script>alert(1)</script>\"\n\
+                   in > voltage Vin > ground\nin > R1 = 1 kΩ > out > C1 = 1 nF > ground\n\
+                   ask H = V(out) / Vin\n\
+                   claim H = 1/(1 + s R1 C1)\nclaim H = 1/(1 - s R1 C1)\n";
+    fs::write(&file, circuit).expect("a file");
+    for format in ["html", "tex", "md"] {
+        let page = note(&file, format);
+        for words in ["Claims about H", "proved", "This claim is wrong.", "different", "repair"] {
+            assert!(page.contains(words), "{format}: {words}");
+        }
+        assert_eq!(page.matches("This claim is wrong.").count(), 1);
+        if format != "tex" {
+            let prose = page.split("````").next().expect("a part");
+            assert!(!prose.contains("<script"), "{format}");
+        }
+    }
+    let page = note(&file, "html");
+    check_page(&page);
+    assert!(!inner_text(parse(&page).root_element()).contains("was not judged"));
+}
+
+#[test]
 fn a_note_without_numbers_says_so() {
     let folder = tempfile::tempdir().expect("a folder");
     let file = folder.path().join("bare.circuit");

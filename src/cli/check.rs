@@ -192,7 +192,7 @@ impl Printer<'_> {
             Ok(unit) => (Some(unit), None),
             Err(clash) => (None, Some(unit_error(claim, &clash))),
         };
-        let numbered = self.with_numbers(claim);
+        let numbered = with_numbers(self.circuit, self.kept, claim);
         let circuit = self.circuit;
         let entry = self.entry(&numbered)?;
         let judgement = check::judge(circuit, &numbered, entry, unit)
@@ -251,24 +251,6 @@ impl Printer<'_> {
         }
     }
 
-    /// The claim with the numbers of what is not kept.
-    fn with_numbers(&self, claim: &Claim) -> Claim {
-        let Some(kept) = self.kept else { return claim.clone() };
-        let limited: Vec<SymbolId> =
-            self.circuit.limits.iter().filter_map(|limit| limit.symbol).collect();
-        let replace = |symbol: SymbolId| -> Option<Value> {
-            let known = self.circuit.symbols.get(symbol.0 as usize)?;
-            let stays = kept.iter().any(|name| name.trim() == known.name);
-            let number = known.nominal.clone().filter(|_| !stays && !limited.contains(&symbol))?;
-            Some(Value::Number(number))
-        };
-        Claim {
-            formula: claim.formula.replaced(&replace),
-            under_root: claim.under_root.as_ref().map(|root| root.replaced(&replace)),
-            ..claim.clone()
-        }
-    }
-
     /// The result that a claim is about; derived once.
     fn entry(&mut self, claim: &Claim) -> Result<&Entry, Failure> {
         let circuit = self.circuit;
@@ -297,10 +279,8 @@ impl Printer<'_> {
             self.answers.insert(ask.name.clone(), entries);
         }
         let entries = &self.answers[&ask.name];
-        let named = |entry: &&Entry| match &entry.source {
-            Some(source) if entries.len() > 1 => claim.answer == format!("{}.{source}", entry.name),
-            _ => claim.answer == entry.name,
-        };
+        let several = entries.len() > 1;
+        let named = |entry: &&Entry| is_about(claim, entry, several);
         entries
             .iter()
             .find(named)
@@ -338,13 +318,38 @@ impl Printer<'_> {
     }
 }
 
+/// The claim with the numbers of what is not kept.
+pub(super) fn with_numbers(circuit: &Circuit, kept: Option<&[String]>, claim: &Claim) -> Claim {
+    let Some(kept) = kept else { return claim.clone() };
+    let limited: Vec<SymbolId> = circuit.limits.iter().filter_map(|limit| limit.symbol).collect();
+    let replace = |symbol: SymbolId| -> Option<Value> {
+        let known = circuit.symbols.get(symbol.0 as usize)?;
+        let stays = kept.iter().any(|name| name.trim() == known.name);
+        let number = known.nominal.clone().filter(|_| !stays && !limited.contains(&symbol))?;
+        Some(Value::Number(number))
+    };
+    Claim {
+        formula: claim.formula.replaced(&replace),
+        under_root: claim.under_root.as_ref().map(|root| root.replaced(&replace)),
+        ..claim.clone()
+    }
+}
+
+/// Whether a claim is about a result, which may be one of several of its question.
+pub(super) fn is_about(claim: &Claim, entry: &Entry, several: bool) -> bool {
+    match &entry.source {
+        Some(source) if several => claim.answer == format!("{}.{source}", entry.name),
+        _ => claim.answer == entry.name,
+    }
+}
+
 /// Whether a name is that of a part of a question's answer: `P.z21`, `Vbus.Vbat`.
 fn is_part(ask: &Ask, name: &str) -> bool {
     let has_parts = matches!(ask.question, Question::TwoPort(_) | Question::Superposition(_));
     has_parts && name.strip_prefix(ask.name.as_str()).is_some_and(|rest| rest.starts_with('.'))
 }
 
-fn unit_error(claim: &Claim, clash: &UnitClash) -> UnitError {
+pub(super) fn unit_error(claim: &Claim, clash: &UnitClash) -> UnitError {
     let own = |span: Span| {
         (span.start.saturating_sub(claim.span.0), span.end.saturating_sub(claim.span.0))
     };

@@ -7,12 +7,16 @@ use std::path::{Path, PathBuf};
 use std::time::{Duration, SystemTime};
 
 use clap::{Args, ValueEnum};
-use cofactor::analysis::{self, Notice, Options};
-use cofactor::typeset::note::{self, Document, Material, Origin, html, markdown, tex};
+use cofactor::analysis::{self, Entry, Notice, Options, Survey, check};
+use cofactor::circuit::{Ask, Claim};
+use cofactor::language;
+use cofactor::typeset::answer::check::Checked;
+use cofactor::typeset::note::{self, Document, Material, Origin, Posed, html, markdown, tex};
 use cofactor::typeset::shape::Shape;
 use sha2::{Digest, Sha256};
 
 use super::args::{Colour, Format, Input, Output, ShapeName};
+use super::check::{is_about, unit_error, with_numbers};
 use super::failure::Failure;
 use super::input::{self, Loaded};
 use super::messages::Messages;
@@ -165,6 +169,7 @@ fn make(arguments: &Note, format: NoteFormat, messages: &Messages) -> Result<u8,
     let document = note::document(&Material {
         circuit: &loaded.circuit,
         answers: &answers,
+        claims: &claims(&loaded, arguments.input.keep.as_deref(), &answers),
         shape: arguments.shape.map_or(Shape::Compact, ShapeName::shape),
         remarks: &remarks(&loaded),
         origin: Origin {
@@ -178,6 +183,45 @@ fn make(arguments: &Note, format: NoteFormat, messages: &Messages) -> Result<u8,
     write(arguments.output.as_deref(), format, &document)?;
     let passed = answers.iter().flat_map(|(_, surveys)| surveys).all(|one| one.entry.passed());
     Ok(u8::from(!passed))
+}
+
+/// The claims of the file about these answers, judged.
+fn claims<'a>(
+    loaded: &'a Loaded,
+    kept: Option<&[String]>,
+    answers: &[(Ask, Vec<Survey>)],
+) -> Vec<Posed<'a>> {
+    let judged = |(claim, index): (&'a Claim, usize)| {
+        let entry = answers.iter().find_map(|(_, surveys)| {
+            let several = surveys.len() > 1;
+            surveys.iter().map(|one| &one.entry).find(|entry| is_about(claim, entry, several))
+        })?;
+        Some(Posed {
+            name: entry.name.clone(),
+            source: entry.source.clone(),
+            text: format!("{} = {}", claim.name, claim.text),
+            outcome: judge(loaded, kept, claim, index, entry),
+        })
+    };
+    loaded.circuit.claims.iter().zip(1..).filter_map(judged).collect()
+}
+
+fn judge<'a>(
+    loaded: &'a Loaded,
+    kept: Option<&[String]>,
+    claim: &'a Claim,
+    index: usize,
+    entry: &Entry,
+) -> Result<Checked<'a>, String> {
+    let circuit = &loaded.circuit;
+    let (unit, units) = match language::claim_units(circuit, claim) {
+        Ok(unit) => (Some(unit), None),
+        Err(clash) => (None, Some(unit_error(claim, &clash))),
+    };
+    let numbered = with_numbers(circuit, kept, claim);
+    let judgement =
+        check::judge(circuit, &numbered, entry, unit).map_err(|error| error.to_string())?;
+    Ok(Checked { circuit, claim, index, judgement, units })
 }
 
 /// What was said about the text of the file.

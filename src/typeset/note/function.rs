@@ -6,7 +6,7 @@ use num_rational::BigRational;
 use num_traits::{One, Zero};
 
 use super::document::{Block, Blocks, Inline, code, text};
-use super::{Material, roots, words};
+use super::{Material, claims, roots, words};
 use crate::algebra::Var;
 use crate::analysis::response::{Corner, Curves, Excitation, TimeCurve};
 use crate::analysis::{ClosedForm, Entry, Numbers, NumericForm, Survey};
@@ -43,6 +43,7 @@ pub(super) fn write(blocks: &mut Blocks, material: &Material<'_>, ask: &Ask, sur
     numeric(blocks, entry, setter, &left);
     ends(blocks, entry, setter, &left);
     noise(blocks, entry, setter, &left);
+    claims::write(blocks, material, entry);
     match &survey.numbers {
         Err(error) => blocks.paragraph(vec![
             text("No roots and no curves: "),

@@ -7,6 +7,7 @@
 //! May use: everything of [`crate::typeset`].
 
 mod circuit;
+mod claims;
 mod closing;
 mod document;
 mod function;
@@ -17,6 +18,7 @@ pub mod tex;
 
 pub use document::Document;
 
+use super::answer::check::Checked;
 use super::shape::Shape;
 use crate::analysis::{Notice, Survey};
 use crate::circuit::{Ask, Circuit};
@@ -29,12 +31,27 @@ pub struct Material<'a> {
     pub circuit: &'a Circuit,
     /// The questions with their answers.
     pub answers: &'a [(Ask, Vec<Survey>)],
+    /// What the file claims about them.
+    pub claims: &'a [Posed<'a>],
     /// How formulas are written.
     pub shape: Shape,
     /// What was said about the text of the file.
     pub remarks: &'a [Notice],
     /// Where it all comes from.
     pub origin: Origin<'a>,
+}
+
+/// A claim and what became of it.
+#[derive(Debug)]
+pub struct Posed<'a> {
+    /// The name of the result that it is about.
+    pub name: String,
+    /// The source whose share that is in a superposition.
+    pub source: Option<String>,
+    /// The claim as written.
+    pub text: String,
+    /// The verdict, or why there is none.
+    pub outcome: Result<Checked<'a>, String>,
 }
 
 /// What is needed to make the note again.
