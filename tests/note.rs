@@ -234,11 +234,11 @@ fn hostile_text_is_text_in_pictures() {
 fn claims_stand_in_the_note_with_their_verdicts() {
     let folder = tempfile::tempdir().expect("a folder");
     let file = folder.path().join("claims.circuit");
-    // A formula cannot hold `<script>`, the title of the same note can.
     let circuit = "circuit \"<script>alert(1)</script>\"\n\
                    in > voltage Vin > ground\nin > R1 = 1 kΩ > out > C1 = 1 nF > ground\n\
                    ask H = V(out) / Vin\n\
-                   claim H = 1/(1 + s R1 C1)\nclaim H = 1/(1 - s R1 C1)\n";
+                   claim H = 1/(1 + s R1 C1) # <script>alert(2)</script>\n\
+                   claim H = \\frac{1}{1 - s R_1 C_1}\n";
     fs::write(&file, circuit).expect("a file");
     for format in ["html", "tex", "md"] {
         let page = note(&file, format);
@@ -247,13 +247,18 @@ fn claims_stand_in_the_note_with_their_verdicts() {
         }
         assert_eq!(page.matches("This claim is wrong.").count(), 1);
         if format != "tex" {
-            let prose = page.split("````").next().expect("a part");
+            let prose = page.split("\n```text\n").next().expect("what is before the listing");
             assert!(!prose.contains("<script"), "{format}");
         }
     }
-    let page = note(&file, "html");
-    check_page(&page);
-    assert!(!inner_text(parse(&page).root_element()).contains("was not judged"));
+    // A claim in LaTeX is shown as text, and runs nothing.
+    assert!(note(&file, "tex").contains("\\textbackslash{}frac\\{1\\}"));
+    check_page(&note(&file, "html"));
+    // In the formula itself there is no place for a tag.
+    let hostile = circuit.replace("1/(1 + s R1 C1) #", "");
+    fs::write(&file, hostile).expect("a file");
+    let output = program(&["note", &file.display().to_string(), "--format", "html"]);
+    assert_eq!((output.status.code(), output.stdout.len()), (Some(2), 0));
 }
 
 #[test]

@@ -9,6 +9,9 @@ use crate::typeset::answer::check;
 use crate::typeset::answer::response::label;
 use crate::typeset::screen::{Characters, Screen};
 
+/// The deepest indent of a title in the text for a terminal.
+const TITLE: usize = 4;
+
 /// Each claim as it is written, its verdict and the reasons.
 pub(super) fn write(blocks: &mut Blocks, material: &Material<'_>, entry: &Entry) {
     let about = |posed: &&Posed<'_>| posed.name == entry.name && posed.source == entry.source;
@@ -43,7 +46,18 @@ fn facts(checked: &check::Checked<'_>) -> Vec<Vec<Inline>> {
     let screen = Screen { width: usize::MAX, characters: Characters::Unicode };
     let style = TextStyle { screen, quiet: false };
     let written = check::text(checked, style, &|_, piece| piece.to_owned());
-    // The columns of a terminal mean nothing here.
-    let line = |line: &str| line.split_whitespace().collect::<Vec<_>>().join(" ");
-    written.lines().map(|fact| vec![text(line(fact))]).collect()
+    let mut facts: Vec<String> = Vec::new();
+    for line in written.lines() {
+        let line = line.trim_end();
+        let fact = line.trim_start();
+        match facts.last_mut() {
+            // A line without a title goes on with the one before.
+            Some(last) if line.len() - fact.len() > TITLE => last.push_str(&format!("; {fact}")),
+            _ => facts.push(match fact.split_once("  ") {
+                Some((title, words)) => format!("{title}: {}", words.trim_start()),
+                None => fact.to_owned(),
+            }),
+        }
+    }
+    facts.into_iter().map(|fact| vec![text(fact)]).collect()
 }
