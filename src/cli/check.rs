@@ -83,16 +83,7 @@ pub(crate) fn run(arguments: &Check, messages: &Messages) -> Result<u8, Failure>
             "add a line such as `claim H = 1/(1 + s R1 C1)`, or give `--claim \"H = …\"`",
         ));
     }
-    let warnings = loaded.remarks.iter().map(|remark| {
-        let (line, column) = line_and_column(&sources[0].text, remark.span.start);
-        json::Warning {
-            code: remark.code.to_owned(),
-            message: remark.message.clone(),
-            line: Some(line),
-            column: Some(column),
-        }
-    });
-    let warnings = warnings.collect();
+    let warnings = input::warnings_about(&sources[0].text, &loaded.remarks);
     let judged = match &arguments.keep {
         Some(keep) => Some(input::keep_symbols(&circuit, keep)?),
         None => None,

@@ -5,7 +5,6 @@ use std::time::{Duration, Instant};
 
 use cofactor::analysis::{self, ClosedForm, Entry, Options};
 use cofactor::circuit::{Ask, Circuit, ElementId, Law};
-use cofactor::language::{Severity, line_and_column};
 use cofactor::typeset::answer::{self, Answer, TextStyle};
 use cofactor::typeset::json;
 use cofactor::typeset::screen::{Characters, Screen};
@@ -192,17 +191,7 @@ impl Printer<'_> {
             return Ok(());
         }
         let loaded = self.loaded;
-        let remarks = loaded.remarks.iter().map(|diagnostic| {
-            let (line, column) = line_and_column(&loaded.text, diagnostic.span.start);
-            debug_assert!(diagnostic.severity != Severity::Error, "errors end the run before");
-            json::Warning {
-                code: diagnostic.code.to_owned(),
-                message: diagnostic.message.clone(),
-                line: Some(line),
-                column: Some(column),
-            }
-        });
-        let mut warnings: Vec<json::Warning> = remarks.collect();
+        let mut warnings = input::warnings(loaded);
         for warning in std::mem::take(&mut self.warnings) {
             if !warnings.contains(&warning) {
                 warnings.push(warning);

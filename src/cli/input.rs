@@ -72,8 +72,14 @@ pub(crate) fn load_file(file: &Path, messages: &Messages) -> Result<Loaded, Fail
 
 /// What was said about the text, for JSON.
 pub(crate) fn warnings(loaded: &Loaded) -> Vec<json::Warning> {
+    warnings_about(&loaded.text, &loaded.remarks)
+}
+
+/// Remarks about a text, for JSON.
+pub(crate) fn warnings_about(text: &str, remarks: &[Diagnostic]) -> Vec<json::Warning> {
     let warning = |diagnostic: &Diagnostic| {
-        let (line, column) = line_and_column(&loaded.text, diagnostic.span.start);
+        debug_assert!(diagnostic.severity != Severity::Error, "errors end the run before");
+        let (line, column) = line_and_column(text, diagnostic.span.start);
         json::Warning {
             code: diagnostic.code.to_owned(),
             message: diagnostic.message.clone(),
@@ -81,7 +87,7 @@ pub(crate) fn warnings(loaded: &Loaded) -> Vec<json::Warning> {
             column: Some(column),
         }
     };
-    loaded.remarks.iter().map(warning).collect()
+    remarks.iter().map(warning).collect()
 }
 
 pub(crate) fn read_text(path: &Path) -> std::io::Result<String> {

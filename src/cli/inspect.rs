@@ -1,8 +1,7 @@
 //! `cofactor inspect`: the circuit as understood, as text, JSON or a picture.
 
-use cofactor::language::line_and_column;
 use cofactor::typeset::screen::{Characters, Screen};
-use cofactor::typeset::{drawing, inspect, json};
+use cofactor::typeset::{drawing, inspect};
 
 use super::args::{Format, Inspect, ListingFormat};
 use super::failure::Failure;
@@ -20,16 +19,7 @@ pub(crate) fn run(arguments: &Inspect, messages: &Messages) -> Result<u8, Failur
         }
         ListingFormat::Svg => drawing::draw(circuit).svg(),
         ListingFormat::Json => {
-            let warnings = loaded.remarks.iter().map(|diagnostic| {
-                let (line, column) = line_and_column(&loaded.text, diagnostic.span.start);
-                json::Warning {
-                    code: diagnostic.code.to_owned(),
-                    message: diagnostic.message.clone(),
-                    line: Some(line),
-                    column: Some(column),
-                }
-            });
-            let listing = inspect::listing(circuit, warnings.collect());
+            let listing = inspect::listing(circuit, input::warnings(&loaded));
             let mut text = serde_json::to_string_pretty(&listing)
                 .map_err(|error| Failure::output(&error.into()))?;
             text.push('\n');

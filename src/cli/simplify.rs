@@ -7,7 +7,6 @@ use clap::Args;
 
 use cofactor::analysis::{self, Entry, Options};
 use cofactor::circuit::{Ask, Circuit};
-use cofactor::language::line_and_column;
 use cofactor::numeric::{Assignment, Origin, frequencies};
 use cofactor::simplify::answer::{self, Answer, SIMPLIFY_SCHEMA, Simplify, SimplifyResult};
 use cofactor::simplify::{Goal, GoalError, SimplifyError, Watch, percentage, simplify};
@@ -211,19 +210,7 @@ impl Printer<'_> {
             return Ok(());
         }
         let loaded = self.loaded;
-        let mut warnings: Vec<json::Warning> = loaded
-            .remarks
-            .iter()
-            .map(|diagnostic| {
-                let (line, column) = line_and_column(&loaded.text, diagnostic.span.start);
-                json::Warning {
-                    code: diagnostic.code.to_owned(),
-                    message: diagnostic.message.clone(),
-                    line: Some(line),
-                    column: Some(column),
-                }
-            })
-            .collect();
+        let mut warnings = input::warnings(loaded);
         warnings.append(&mut self.warnings);
         let whole = Simplify {
             schema: SIMPLIFY_SCHEMA,
